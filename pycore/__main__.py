@@ -1,0 +1,50 @@
+"""The command line: `python -m pycore report JOB.json [--edition FILE] [--text]`."""
+
+import argparse
+import json
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+
+from pycore import __version__
+from pycore.api import handle
+from pycore.contract import REFUSAL_FORMAT, REQUEST_FORMAT
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run one command. Arguments: the words after the program's name.
+
+    Returns 0, or 2 where the job is refused (the refusal, as JSON, on standard output).
+    """
+    parser = argparse.ArgumentParser(prog="wedgewright", description=__doc__)
+    parser.add_argument("--version", action="version", version=__version__)
+    commands = parser.add_subparsers(dest="command", required=True)
+    report = commands.add_parser("report", help="report on one job document")
+    report.add_argument("job", type=Path, help="the job, a JSON file")
+    report.add_argument("--edition", type=Path, help="an edition of the shop's own, a JSON file")
+    report.add_argument("--text", action="store_true", help="print text instead of JSON")
+    chosen = parser.parse_args(arguments)
+    try:
+        answer = handle(_request(chosen.job, chosen.edition, chosen.text))
+    except OSError as error:
+        parser.exit(1, f"{error}\n")
+    parsed = json.loads(answer)
+    refused = parsed["format"] == REFUSAL_FORMAT
+    sys.stdout.write(parsed["text"] if chosen.text and not refused else answer + "\n")
+    return 2 if refused else 0
+
+
+def _request(job: Path, edition: Path | None, text: bool) -> str:
+    """Wrap the files' texts as they are: every number keeps its digits."""
+    job_text = job.read_text(encoding="utf-8", errors="surrogateescape")
+    if edition is None and not text:
+        return job_text
+    editions = [edition.read_text(encoding="utf-8")] if edition else []
+    return (
+        f'{{"format": "{REQUEST_FORMAT}", "do": "report", "text": {json.dumps(text)}, '
+        f'"editions": [{", ".join(editions)}], "job": {job_text}}}'
+    )
+
+
+if __name__ == "__main__":
+    sys.exit(main())

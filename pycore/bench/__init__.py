@@ -1,0 +1,1 @@
+"""The thinking: one question, one module. Values in, values out; no text, no pictures."""

@@ -1,0 +1,53 @@
+"""Where on the lens is the point, and is the lens moved to it or read at it?
+
+Two opposite jobs, never mixed. Spotting (uncut, before blocking): move the lens until the
+target stands at the expected reading, then dot; the dot is the prism reference point.
+Checking: put the marked point at the aperture, do not move the lens, read.
+"""
+
+from dataclasses import dataclass
+from decimal import Decimal
+
+from pycore.bench.expected import has_marked_height
+from pycore.job.body import SEGMENTED
+from pycore.job.document import Job
+from pycore.job.order import EyeOrder
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Point:
+    """The task at one lens and the code of the sentence that says where the point is."""
+
+    task: str
+    code: str
+    params: dict[str, str]
+
+
+def point_of(job: Job, order: EyeOrder) -> Point:
+    """Where the prism of one lens is spotted or checked.
+
+    Arguments: `job`; `order` of the eye. Returns the Point. Source: domain facts section 5
+    (progressive: midway between the engravings, 2 to 4 mm below the fitting cross).
+    """
+    design = order.lens.design or "single-vision"
+    kind = "segmented" if design in SEGMENTED else design
+    params = _positions(order)
+    if job.state == "uncut" and design in ("single-vision", "near") and not order.partner:
+        return Point(task="spotting", code="spot-single-vision", params=params)
+    if design == "progressive":
+        return Point(task="checking", code="check-progressive", params=params)
+    if kind == "segmented":
+        code = "check-segmented" if order.prp_height_mm is not None else "check-segmented-no-height"
+        return Point(task="checking", code=code, params=params)
+    if has_marked_height(order, job.state):
+        return Point(task="checking", code="check-single-vision", params=params)
+    return Point(task="checking", code="check-single-vision-no-height", params=params)
+
+
+def _positions(order: EyeOrder) -> dict[str, str]:
+    found: dict[str, Decimal | None] = {
+        "pd": order.near_pd_mm if order.lens.design == "near" else order.pd_mm,
+        "height": order.prp_height_mm,
+        "cross": order.cross_above_prp_mm,
+    }
+    return {name: "\u2013" if value is None else str(value) for name, value in found.items()}

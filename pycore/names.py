@@ -1,0 +1,179 @@
+"""Values as the report writes them: numbers beside their texts, a prism under all its names."""
+
+from collections.abc import Mapping
+from decimal import Decimal
+from typing import Any
+
+from pycore.decimals import fixed, signed, snap
+from pycore.optics.power import Power
+from pycore.optics.prism import Eye, Prism, horizontal_word, vertical_word
+from pycore.words import say
+
+Entry = dict[str, Any]
+_LETTERS = {"up": "U", "down": "D", "in": "I", "out": "O"}
+
+
+def number(value: Decimal) -> float:
+    """A Decimal as the report's JSON number, snapped once to 1e-9.
+
+    >>> number(Decimal("0.330000000001"))
+    0.33
+    """
+    return float(snap(value))
+
+
+def prism_entry(eye: Eye, prism: Prism) -> Entry:
+    """A prism under all its names: amount and base, components, quadrant, 180 notation, texts.
+
+    Arguments: `eye` whose in and out it is; `prism` in prism dioptres. Returns the entry.
+
+    >>> prism_entry("left", Prism(Decimal(-2), Decimal("-1.5")))["notation_180"]["words"]
+    'BD&I'
+    """
+    base_deg = prism.base_deg
+    across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
+    entry: Entry = {
+        "amount": number(prism.amount),
+        "base": None if base_deg is None else round(base_deg, 9),
+        "x": number(prism.x),
+        "y": number(prism.y),
+        "horizontal": {"amount": number(abs(prism.x)), "base": across},
+        "vertical": {"amount": number(abs(prism.y)), "base": along},
+        "quadrant": "-".join(word for word in (along, across) if word) or "none",
+        "notation_180": _in_180(eye, prism),
+    }
+    entry["shown"] = _prism_texts(entry, prism)
+    return entry
+
+
+def _in_180(eye: Eye, prism: Prism) -> Entry | None:
+    base_deg = prism.base_deg
+    if base_deg is None:
+        return None
+    across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
+    side = along or across or ""
+    degrees = base_deg if base_deg <= 180.0 else base_deg - 180.0
+    text = f"{degrees:03.0f}"
+    if along and text in ("000", "180"):  # never let rounding turn an up or down into in or out
+        text = f"{degrees:05.1f}"
+    words = "B" + "&".join(_LETTERS[word] for word in (along, across) if word)
+    return {"degrees": text, "side": side, "words": words}
+
+
+def _prism_texts(entry: Entry, prism: Prism) -> Entry:
+    amount = fixed(prism.amount, 2)
+    if entry["base"] is None:
+        text = say("text.no-prism")
+        return {
+            "amount": amount,
+            "base": "",
+            "horizontal": "0.00",
+            "vertical": "0.00",
+            "text": text,
+            "text_180": text,
+            "components": text,
+        }
+    base = degrees_text(entry["base"])
+    parts = [
+        say("text.component", amount=fixed(abs(part), 2), word=say(f"directions.{word}"))
+        for part, word in (
+            (prism.x, entry["horizontal"]["base"]),
+            (prism.y, entry["vertical"]["base"]),
+        )
+        if word
+    ]
+    components = " ".join(parts)
+    turned = entry["notation_180"]
+    return {
+        "amount": amount,
+        "base": base,
+        "horizontal": fixed(abs(prism.x), 2),
+        "vertical": fixed(abs(prism.y), 2),
+        "components": components,
+        "text": say("text.prism", amount=amount, base=base, components=components),
+        "text_180": say(
+            "text.prism-180", amount=amount, words=turned["words"], degrees=turned["degrees"]
+        ),
+    }
+
+
+def degrees_text(degrees: float) -> str:
+    """A base or an axis as people write it: one decimal, none where it is whole.
+
+    >>> degrees_text(26.565), degrees_text(37.0)
+    ('26.6', '37')
+    """
+    return fixed(Decimal(degrees), 1).removesuffix(".0")
+
+
+def power_text(power: Power) -> str:
+    """A power in ordinary notation.
+
+    >>> power_text(Power(Decimal("0.75"), Decimal("-2.25"), Decimal(20)))
+    '+0.75 \u22122.25 \u00d720'
+    """
+    sphere = signed(power.sphere, _places(power.sphere))
+    if not power.cylinder:
+        return sphere
+    cylinder = signed(power.cylinder, _places(power.cylinder))
+    return f"{sphere} {cylinder} \u00d7{plain(power.axis)}"
+
+
+def plain(value: Decimal) -> str:
+    """A number without trailing zeros. Arguments: `value`.
+
+    >>> plain(Decimal("180.0"))
+    '180'
+    """
+    return format(value.normalize() + 0, "f")
+
+
+def _places(value: Decimal) -> int:
+    exponent = value.as_tuple().exponent
+    return max(2, -exponent) if isinstance(exponent, int) else 2
+
+
+def power_entry(power: Power) -> Entry:
+    """A power in both cylinder forms and along 90 and 180, in dioptres.
+
+    Arguments: `power`. Returns the entry.
+
+    >>> power_entry(Power(Decimal(3), Decimal(-1), Decimal(180)))["at_90"]
+    2.0
+    """
+    at_90, at_180 = power.along(Decimal(90)), power.along(Decimal(180))
+    return {
+        "plus_form": _form(power.in_form(1)),
+        "minus_form": _form(power.in_form(-1)),
+        "at_90": number(at_90),
+        "at_180": number(at_180),
+        "shown": {"at_90": signed(at_90), "at_180": signed(at_180), "text": power_text(power)},
+    }
+
+
+def _form(power: Power) -> Entry:
+    sphere, cylinder = power.sphere, power.cylinder
+    return {
+        "sphere": number(sphere),
+        "cylinder": number(cylinder),
+        "axis": number(power.axis) if cylinder else None,
+        "shown": {
+            "sphere": signed(sphere, _places(sphere)),
+            "cylinder": signed(cylinder, _places(cylinder)) if cylinder else "0.00",
+            "axis": plain(power.axis) if cylinder else "",
+            "text": power_text(power),
+        },
+    }
+
+
+def spoken(params: Mapping[str, str]) -> dict[str, str]:
+    """Parameters as a sentence needs them: codes of checks, eyes and directions as words.
+
+    >>> spoken({"word": "up", "limit": "0.33"})
+    {'word': 'up', 'limit': '0.33'}
+    """
+    groups = {"check": "checks", "eye": "eyes", "word": "directions", "state": "states"}
+    return {
+        key: say(f"{groups[key]}.{value}") if key in groups and value else value
+        for key, value in params.items()
+    }

@@ -1,0 +1,1 @@
+"""Physics on plain values; knows no shop, no order and no standard."""

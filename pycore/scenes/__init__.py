@@ -1,0 +1,1 @@
+"""Pictures as numbers and roles: shapes in prism dioptres, no pixel, no colour, no sentence."""
