@@ -192,7 +192,7 @@ def test() -> None:
     install_browser()
     build()
     run_all(
-        lambda: run_node("--test", *sorted((ROOT / "tests" / "web").glob("*.test.mjs"))),
+        lambda: run_node("--test", "--test-force-exit", *sorted((ROOT / "tests" / "web").glob("test_*.mjs"))),
         lambda: run([sys.executable, "-m", "pytest", "--cov=pycore", "--cov-report=term:skip-covered"], environment=environment),
     )
 

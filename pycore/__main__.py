@@ -1,4 +1,4 @@
-"""The command line: `python -m pycore report JOB.json [--edition FILE] [--text]`."""
+"""The command line: `python -m pycore report JOB.json [--edition FILE] [--text]`, `schema`."""
 
 import argparse
 import json
@@ -9,6 +9,7 @@ from pathlib import Path
 from pycore import __version__
 from pycore.api import handle
 from pycore.contract import REFUSAL_FORMAT, REQUEST_FORMAT
+from pycore.schema import job_schema
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -23,7 +24,11 @@ def main(arguments: Sequence[str] | None = None) -> int:
     report.add_argument("job", type=Path, help="the job, a JSON file")
     report.add_argument("--edition", type=Path, help="an edition of the shop's own, a JSON file")
     report.add_argument("--text", action="store_true", help="print text instead of JSON")
+    commands.add_parser("schema", help="print the JSON Schema of the job document")
     chosen = parser.parse_args(arguments)
+    if chosen.command == "schema":
+        print(json.dumps(job_schema(), indent=2))
+        return 0
     try:
         answer = handle(_request(chosen.job, chosen.edition, chosen.text))
     except OSError as error:

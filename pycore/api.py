@@ -19,14 +19,16 @@ from pycore.decimals import fixed
 from pycore.echo import echo_of
 from pycore.editions.edition import OPTIONS, Edition
 from pycore.editions.reader import BUILT_IN, built_in, read_edition
-from pycore.errors import Fault, RefusedError
+from pycore.errors import Fault, Note, RefusedError
 from pycore.job.bench import Instrument, read_instrument
-from pycore.job.document import Job, read_job
+from pycore.job.body import Lens
+from pycore.job.document import PAIR_PD_MM, Job, read_job
 from pycore.job.fields import Fields
 from pycore.job.line import read_line
+from pycore.job.order import EyeOrder, read_eye
 from pycore.names import Entry, spoken
 from pycore.optics.prism import EYES, Eye, Prism, horizontal_word, vertical_word
-from pycore.report import case_of, report_of
+from pycore.report import case_of, note_entry, order_lines, report_of
 from pycore.result import result_text
 from pycore.words import say
 
@@ -244,29 +246,33 @@ def _read_order(envelope: Source) -> Entry:
     reading = read_line(line, bases)
     if reading.errors:
         raise RefusedError(reading.errors)
-    answer: Entry = {"format": "wedgewright.order/1"}
-    eyes = {"right": reading.right, "left": reading.left}
-    fields = {eye: found for eye, found in eyes.items() if found is not None}
-    job = {"format": JOB_FORMAT, "state": "uncut", **fields}
-    read = read_job(job)  # refuses figures out of range, with the field they would go to
-    report = report_of(case_of(read, None), scenes=False)
-    answer |= fields
+    given = {"right": reading.right, "left": reading.left}
+    found = {eye: fields for eye, fields in given.items() if fields is not None}
+    orders, notes = _try_order(found, reading.pd_mm)
+    lines = {order.eye: order_lines(order) for order in orders}
+    answer: Entry = {
+        "format": "wedgewright.order/1",
+        **found,
+        "echo": [text for texts in lines.values() for text in texts],
+        "order_lines": lines,
+        "notes": [note_entry(note) for note in (*reading.notes, *notes)],
+    }
+    if reading.lens:
+        answer["lens"] = dict(reading.lens)
     if reading.pd_mm is not None:
         answer["pd_mm"] = reading.pd_mm
-    lines = report["order_lines"]
-    answer["echo"] = [text for eye in EYES for text in lines.get(eye, [])]
-    answer["order_lines"] = lines
-    answer["notes"] = [
-        {
-            "code": note.code,
-            "field": note.field,
-            "params": spoken(note.params),
-            "severity": note.severity,
-            "about": note.about,
-        }
-        for note in (*reading.notes, *read.notes)
-    ]
     return answer
+
+
+def _try_order(found: Source, pd_mm: str | None) -> tuple[list[EyeOrder], list[Note]]:
+    """Read the eyes of a line as a job would, so that figures out of range are refused here."""
+    faults, notes = list[Fault](), list[Note]()
+    fields = Fields({**found, "pd_mm": pd_mm}, "", faults)
+    fields.number("pd_mm", *PAIR_PD_MM)
+    orders = [read_eye(inner, eye, Lens(), notes) for eye in EYES if (inner := fields.child(eye))]
+    if faults:
+        _refuse_all(faults)
+    return orders, notes
 
 
 def _eye(envelope: Source) -> Eye:

@@ -92,14 +92,14 @@ def report_of(case: Case, *, scenes: bool) -> Entry:
     for eye in EYES:
         order = job.order(eye)
         report[eye] = _lens_entry(case, order) if order else None
-    report["order_lines"] = {order.eye: _order_lines(order) for order in job.orders}
+    report["order_lines"] = {order.eye: order_lines(order) for order in job.orders}
     report["read_first"] = _read_first(case)
     report["pair"] = pair_entry(job, case.dues)
     if case.verdict:
         report["verdict"] = verdict_entry(case.verdict)
     if scenes:
         report["scenes"] = {eye: _scenes(case, eye) for eye in case.dues}
-    report["notes"] = [_note_entry(note) for note in _notes(case)]
+    report["notes"] = [note_entry(note) for note in _notes(case)]
     return report
 
 
@@ -186,8 +186,11 @@ def _optical_centre(order: EyeOrder, due_: Due) -> Entry | None:
     return {"right_mm": number(Decimal(point[0])), "up_mm": number(Decimal(point[1]))}
 
 
-def _order_lines(order: EyeOrder) -> list[str]:
-    """The order as understood, in the cylinder form written, then in the other."""
+def order_lines(order: EyeOrder) -> list[str]:
+    """The order as understood, in the cylinder form written, then in the other.
+
+    Arguments: `order` of one eye. Returns one or two lines.
+    """
     power = order.prescribed.power
     letter = say(f"letters.{order.eye}")
     tail = [_component_text(part) for part in _parts(order)]
@@ -288,7 +291,8 @@ def _notes_on_instrument(case: Case, eye: Eye) -> list[Note]:
     ]
 
 
-def _note_entry(note: Note) -> Entry:
+def note_entry(note: Note) -> Entry:
+    """A note as the report writes it. Arguments: `note`. Returns the entry."""
     return {
         "code": note.code,
         "field": note.field,

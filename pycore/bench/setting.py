@@ -46,8 +46,8 @@ def setting_onto_rings(expected: Prism, instrument: Instrument) -> Setting | Non
     Arguments and source as `setting_to_centre`. Returns None where it is on the rings anyway.
 
     >>> found = setting_onto_rings(Prism(Decimal(0), Decimal(8)), Instrument())
-    >>> found.scale.amount, found.residual.amount
-    (Decimal('3'), Decimal('5'))
+    >>> float(found.scale.amount), float(found.residual.amount)
+    (3.0, 5.0)
     """
     if on_rings(expected, instrument):
         return None

@@ -13,6 +13,7 @@ from pycore.job.order import EyeOrder, read_eye
 from pycore.optics.prism import EYES, Eye
 
 FORMAT = "wedgewright.job/1"
+PAIR_PD_MM = ("30", "100")
 STATES = ("uncut", "edged", "mounted")
 RULES = ("none", "two-thirds", "six-tenths", "amount", "unknown")
 
@@ -70,8 +71,18 @@ def read_job(source: Mapping[str, Any]) -> Job:
     Decimal('-2.00')
     """
     faults: list[Fault] = []
+    job = read_fields(Fields(source, "", faults))
+    if faults:
+        raise RefusedError(tuple(faults))
+    return job
+
+
+def read_fields(fields: Fields) -> Job:
+    """Read a job's fields, leaving every fault with them. Arguments: `fields`. Returns the Job.
+
+    The schema is made by the same walk (see `pycore.schema`).
+    """
     notes: list[Note] = []
-    fields = Fields(source, "", faults)
     if fields.text("format") != FORMAT:
         fields.refuse("format-unknown", "format", fields.raw("format"), "use-format", format=FORMAT)
     state = fields.word("state", STATES)
@@ -97,7 +108,7 @@ def read_job(source: Mapping[str, Any]) -> Job:
         thinning=_read_thinning(fields),
         right=eyes["right"],
         left=eyes["left"],
-        pd_mm=fields.number("pd_mm", "30", "100"),
+        pd_mm=fields.number("pd_mm", *PAIR_PD_MM),
         instrument=instrument,
         readings=read_readings(readings, instrument, notes) if readings else Readings(),
         demonstration=fields.flag("demonstration"),
@@ -106,8 +117,6 @@ def read_job(source: Mapping[str, Any]) -> Job:
     _read_signature(fields)
     _require_an_eye(fields, job)
     fields.finish()
-    if faults:
-        raise RefusedError(tuple(faults))
     return job
 
 
@@ -136,8 +145,7 @@ def _read_options(fields: Fields) -> dict[str, str]:
     inner = fields.child("edition_options")
     if inner is None:
         return {}
-    names = list(fields.raw("edition_options"))[:40] if inner.path else []
-    return {name: value for name in names if (value := inner.text(name))}
+    return {name: value for name in inner.names() if (value := inner.text(name))}
 
 
 def _read_thinning(fields: Fields) -> Thinning | None:

@@ -50,6 +50,10 @@ class Fields:
         value = self._source.get(name)
         return value is not None and not (isinstance(value, str) and not value.strip())
 
+    def names(self) -> tuple[str, ...]:
+        """The names of all fields that are there."""
+        return tuple(self._source)
+
     def raw(self, name: str) -> Any:
         """The field's decoded value as it came, or None."""
         self._seen.add(name)

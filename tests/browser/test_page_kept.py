@@ -1,0 +1,93 @@
+"""What is shown as saved outlives a kill of the browser; stored data can be erased; two windows do not fight."""
+
+from __future__ import annotations
+
+import os
+import re
+import signal
+import subprocess
+import time
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any
+
+from playwright.sync_api import Browser, BrowserType, Page, expect
+
+Start = Callable[[], tuple[Browser, Page]]
+
+
+def kill_browser(profile: Path) -> None:
+    """End, with the harshest signal, the browser process of one profile, found by its own command line."""
+    found = subprocess.run(["pgrep", "-f", f"--user-data-dir={profile}"], capture_output=True, text=True, check=False)
+    for identifier in found.stdout.split():
+        os.kill(int(identifier), signal.SIGKILL)
+    deadline = time.monotonic() + 20
+    while time.monotonic() < deadline:
+        if subprocess.run(["pgrep", "-f", f"--user-data-dir={profile}"], capture_output=True, check=False).returncode:
+            break
+        time.sleep(0.1)
+    for lock in profile.glob("Singleton*"):
+        lock.unlink(missing_ok=True)
+
+
+def open_profile(browser_type: BrowserType, arguments: dict[str, Any], profile: Path, dist: Path) -> Page:
+    context = browser_type.launch_persistent_context(profile, **arguments)
+    page = context.pages[0] if context.pages else context.new_page()
+    page.goto((dist / "index.html").as_uri())
+    return page
+
+
+def test_what_was_saved_outlives_a_kill(
+    browser_type: BrowserType, browser_type_launch_args: dict[str, Any], tmp_path: Path, dist: Path
+) -> None:
+    profile = tmp_path / "profile"
+    last = ""
+    for turn in range(4):
+        page = open_profile(browser_type, browser_type_launch_args, profile, dist)
+        if last:
+            expect(page.locator("#f-id")).to_have_value(last)
+            expect(page.locator(".save")).to_have_text("taken up where it was left")
+        last = f"T-{turn}-{'x' * turn}"
+        page.locator("#f-id").fill("")
+        page.locator("#f-id").press_sequentially(last)
+        page.locator("#f-left-sphere").fill(f"-{turn}.25")
+        expect(page.locator(".save")).to_have_text("saved")
+        kill_browser(profile)
+    page = open_profile(browser_type, browser_type_launch_args, profile, dist)
+    expect(page.locator("#f-id")).to_have_value(last)
+    expect(page.locator("#f-left-sphere")).to_have_value("-3.25")
+    page.context.close()
+
+
+def test_stored_data_is_erased_on_request(page_from_disk: Page) -> None:
+    page = page_from_disk
+    page.locator("#f-id").fill("T-1")
+    expect(page.locator(".save")).to_have_text("saved")
+    page.locator("#move-bench").click()
+    page.locator("#erase").click()
+    expect(page.locator("#erase-yes")).to_be_visible()
+    page.locator("#erase-yes").click()
+    expect(page.locator("#f-id")).to_have_value("")
+    page.reload()
+    expect(page.locator(".save")).not_to_have_text("")
+    expect(page.locator("#f-id")).to_have_value("")
+    assert page.evaluate("localStorage.length") == 0
+
+
+def test_a_second_window_says_that_it_does_not_save(page_from_disk: Page, dist: Path) -> None:
+    expect(page_from_disk.locator(".save")).to_have_text("saved")
+    second = page_from_disk.context.new_page()
+    second.goto((dist / "index.html").as_uri())
+    expect(second.locator(".save")).to_have_text(re.compile("another window"))
+    second.locator("#f-id").fill("T-2")
+    expect(second.locator(".save")).to_have_text(re.compile("another window"))
+    page_from_disk.locator("#f-id").fill("T-1")
+    expect(page_from_disk.locator(".save")).to_have_text("saved")
+
+
+def test_where_storage_is_refused_it_is_said_and_the_page_works(dist: Path, page: Page) -> None:
+    page.add_init_script("Object.defineProperty(globalThis, 'indexedDB', { get() { throw new DOMException('no', 'SecurityError'); } });")
+    page.goto((dist / "index.html").as_uri())
+    expect(page.locator(".save")).to_contain_text("not saved")
+    page.locator("#f-line").fill("R -1.00 L -1.00")
+    expect(page.locator(".line-echo .understood").first).to_be_visible(timeout=60_000)

@@ -1,0 +1,180 @@
+// The worker client: who is answered, who is superseded, and what happens when a worker dies. No Python runs here.
+import assert from "node:assert/strict";
+import { afterEach, beforeEach, test } from "node:test";
+import { startEngine } from "../../web/app/engine.js";
+
+/** Stands in for a browser's worker: keeps what it is sent, answers when the test says so. */
+class FakeWorker {
+  static made = [];
+  static refuse = false;
+
+  constructor() {
+    if (FakeWorker.refuse) throw new DOMException("refused", "SecurityError");
+    this.sent = [];
+    this.ended = false;
+    FakeWorker.made.push(this);
+  }
+
+  static get last() {
+    return FakeWorker.made.at(-1);
+  }
+
+  get asked() {
+    return this.sent.filter((message) => message.kind === "ask").map((message) => ({ id: message.id, ...JSON.parse(message.text) }));
+  }
+
+  postMessage(message) {
+    this.sent.push(message);
+  }
+
+  terminate() {
+    this.ended = true;
+  }
+
+  say(data) {
+    this.onmessage({ data });
+  }
+
+  /** Answers the newest question with the `do` of that question. */
+  answer() {
+    const { id, do: what } = this.asked.at(-1);
+    this.say({ kind: "answer", id, text: JSON.stringify({ format: "test", what }) });
+  }
+}
+
+/** Lets promises and messages that are under way arrive. */
+const settle = () => new Promise((resolve) => setTimeout(resolve, 5));
+
+let states;
+
+async function start(options = {}) {
+  states = [];
+  const engine = startEngine({ onState: (state) => states.push(state), ...options });
+  await settle();
+  return engine;
+}
+
+/** Says that the worker is ready, with a question waiting so that no warming up is in the way. */
+async function startAsked(options) {
+  const engine = await start(options);
+  const first = engine.ask({ do: "first" }, { lane: "first" });
+  FakeWorker.last.say({ kind: "ready" });
+  FakeWorker.last.answer();
+  await first;
+  return engine;
+}
+
+beforeEach(() => {
+  FakeWorker.made = [];
+  FakeWorker.refuse = false;
+  globalThis.Worker = FakeWorker;
+  globalThis.document = { visibilityState: "hidden", readyState: "complete", documentElement: { dataset: {} } };
+  globalThis.wedgewrightEngine = function () {};
+  globalThis.wedgewrightWasm = "the program";
+  globalThis.wedgewrightPython = "the library";
+});
+
+afterEach(() => {
+  delete globalThis.Worker;
+  delete globalThis.document;
+});
+
+test("the worker is given both payloads, and what was asked before it was ready is answered", async () => {
+  const engine = await start();
+  const answer = engine.ask({ do: "early" }, { lane: "a" });
+  assert.deepEqual(FakeWorker.last.sent, [
+    { kind: "wasm", text: "the program" },
+    { kind: "python", text: "the library" },
+  ]);
+  FakeWorker.last.say({ kind: "ready" });
+  assert.deepEqual(FakeWorker.last.asked, [{ id: 1, format: "wedgewright.request/1", sequence: 1, do: "early" }]);
+  FakeWorker.last.answer();
+  assert.deepEqual(await answer, { format: "test", what: "early" });
+  assert.deepEqual(states, ["reading", "starting", "ready"]);
+  assert.equal(engine.mode, "worker");
+});
+
+test("with nobody waiting, the first calls are spent on the demonstration", async () => {
+  await start();
+  FakeWorker.last.say({ kind: "ready" });
+  const [{ id, do: what }] = FakeWorker.last.asked;
+  assert.equal(what, "demonstration");
+  FakeWorker.last.say({ kind: "answer", id, text: JSON.stringify({ job: { id: "DEMO" } }) });
+  await settle();
+  assert.deepEqual(FakeWorker.last.asked.at(-1).job, { id: "DEMO" });
+});
+
+test("one question is under way at a time, the newest of a lane wins, and other lanes wait their turn", async () => {
+  const engine = await startAsked();
+  const worker = FakeWorker.last;
+  const running = engine.ask({ do: "one" }, { lane: "verdict" });
+  const superseded = engine.ask({ do: "two" }, { lane: "verdict" });
+  const other = engine.ask({ do: "other" }, { lane: "line" });
+  const newest = engine.ask({ do: "three" }, { lane: "verdict" });
+  assert.deepEqual(worker.asked.map(({ do: what }) => what), ["first", "one"]);
+  assert.equal(await running, null);
+  assert.equal(await superseded, null);
+  worker.answer();
+  worker.answer();
+  assert.equal((await other).what, "other");
+  worker.answer();
+  assert.equal((await newest).what, "three");
+  assert.deepEqual(worker.asked.map(({ do: what }) => what), ["first", "one", "other", "three"]);
+});
+
+test("an answer to a question that is no longer under way is dropped", async () => {
+  const engine = await startAsked();
+  const answer = engine.ask({ do: "now" }, { lane: "a" });
+  FakeWorker.last.say({ kind: "answer", id: 1, text: '{"format":"stale"}' });
+  FakeWorker.last.answer();
+  assert.equal((await answer).what, "now");
+});
+
+test("a crash restarts the worker once and asks again; the second crash is said", async () => {
+  const engine = await startAsked();
+  const [first] = FakeWorker.made;
+  const answer = engine.ask({ do: "again" }, { lane: "a" });
+  first.onerror({ message: "out of memory" });
+  await settle();
+  assert.equal(first.ended, true);
+  assert.equal(FakeWorker.made.length, 2);
+  assert.equal(engine.state, "restarted");
+  FakeWorker.last.say({ kind: "ready" });
+  FakeWorker.last.answer();
+  assert.equal((await answer).what, "again");
+
+  const lost = engine.ask({ do: "lost" }, { lane: "a" });
+  const waiting = engine.ask({ do: "waiting" }, { lane: "b" });
+  FakeWorker.last.say({ kind: "failed", message: "trap" });
+  assert.equal((await lost).errors[0].code, "engine-failed");
+  assert.equal((await waiting).errors[0].code, "engine-failed");
+  assert.equal((await engine.ask({ do: "later" }, { lane: "a" })).errors[0].code, "engine-failed");
+  assert.equal(FakeWorker.made.length, 2);
+  assert.deepEqual(states, ["reading", "starting", "ready", "restarted", "ready", "failed"]);
+});
+
+test("a question over its time ends the worker; the next one is answered by a new worker", async () => {
+  const engine = await startAsked({ timeLimitMs: 20 });
+  const [first] = FakeWorker.made;
+  const answer = await engine.ask({ do: "endless" }, { lane: "a" });
+  assert.equal(answer.errors[0].code, "engine-time-limit");
+  assert.equal(first.ended, true);
+  const next = engine.ask({ do: "next" }, { lane: "a" });
+  await settle();
+  FakeWorker.last.say({ kind: "ready" });
+  FakeWorker.last.answer();
+  assert.equal((await next).what, "next");
+});
+
+test("where workers are refused, the engine runs on the page's own thread", async () => {
+  FakeWorker.refuse = true;
+  globalThis.wedgewrightEngine = (port) => {
+    port.onmessage = ({ data }) => {
+      if (data.kind === "python") port.postMessage({ kind: "ready" });
+      if (data.kind === "ask") port.postMessage({ kind: "answer", id: data.id, text: '{"format":"here"}' });
+    };
+  };
+  const engine = await start();
+  assert.deepEqual(await engine.ask({ do: "report" }, { lane: "a" }), { format: "here" });
+  assert.equal(engine.mode, "main-thread");
+});

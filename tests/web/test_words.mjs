@@ -1,0 +1,60 @@
+// Every sentence the page can say is in the words file, and every word there is used.
+import assert from "node:assert/strict";
+import { readdirSync, readFileSync } from "node:fs";
+import { join } from "node:path";
+import { test } from "node:test";
+import * as fields from "../../web/app/fields.js";
+import { say, shown, useComma, useWords } from "../../web/app/words.js";
+
+const ROOT = new URL("../../web/", import.meta.url).pathname;
+const own = JSON.parse(readFileSync(join(ROOT, "words-page.en.json"), "utf8"));
+const sources = readdirSync(join(ROOT, "app"), { recursive: true })
+  .filter((name) => String(name).endsWith(".js") && !String(name).startsWith("generated"))
+  .map((name) => readFileSync(join(ROOT, "app", String(name)), "utf8"))
+  .join("\n");
+
+/** @param {any} node @param {string} path @returns {string[]} */
+function leaves(node, path) {
+  return typeof node === "string" ? [path] : Object.entries(node).flatMap(([name, inner]) => leaves(inner, `${path}.${name}`));
+}
+const known = leaves(own.page, "page");
+
+test("each code that stands in the sources has its words", () => {
+  const written = [...sources.matchAll(/"(page\.[\w.-]+)"/g)].map((match) => match[1]);
+  assert.ok(written.length > 80);
+  assert.deepEqual(written.filter((code) => !known.includes(code)), []);
+});
+
+test("each declared field has its label, each of its values its word", () => {
+  const specs = Object.values(fields).flatMap((part) => (typeof part === "function" ? part("right") : part)).flat();
+  const codes = specs.flatMap((spec) => [
+    `page.labels.${spec.label}`,
+    ...(spec.values ?? []).map((value) => `page.values.${spec.words}.${value || "blank"}`),
+  ]);
+  assert.ok(codes.length > 60);
+  assert.deepEqual(codes.filter((code) => !known.includes(code)), []);
+});
+
+test("no word of the page is without use", () => {
+  const groups = [...sources.matchAll(/`(page\.[^`]*?)\$\{/g)].map((match) => match[1]);
+  const labels = [...sources.matchAll(/(?:label|words): "(\w+)"/g)].flatMap((match) => [`page.labels.${match[1]}`, `page.values.${match[1]}`]);
+  const idle = known.filter(
+    (code) => !sources.includes(`"${code}"`) && !groups.some((start) => code.startsWith(start)) && !labels.some((label) => code.startsWith(label)),
+  );
+  assert.deepEqual(idle, []);
+});
+
+test("holes are filled with the text given, a missing word shows its code", () => {
+  useWords({ verdict: { "a.b": "{x} of {y}" } });
+  assert.equal(say("verdict.a.b", { x: "0.25", y: "0.67" }), "0.25 of 0.67");
+  assert.equal(say("verdict.a.b", { x: "1" }), "1 of {y}");
+  assert.equal(say("verdict.none"), "verdict.none");
+});
+
+test("the decimal sign is swapped, clause numbers and names are not", () => {
+  useComma(true);
+  assert.equal(shown("3.35 Δ at 26.6° (3.00 in 1.50 up)"), "3,35 Δ at 26,6° (3,00 in 1,50 up)");
+  assert.equal(shown("Z80.1-2015, 5.1.4"), "Z80.1-2015, 5.1.4");
+  useComma(false);
+  assert.equal(shown("3.35 Δ"), "3.35 Δ");
+});

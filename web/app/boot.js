@@ -1,0 +1,95 @@
+/**
+ * First of all, before anything else of the page: take away what the page's policy does not cover, make the one Trusted
+ * Types policy, and say where the engine's payloads come from.
+ */
+
+// A peer connection is not held back by the page's policy, and nothing here needs one.
+for (const name of ["RTCPeerConnection", "webkitRTCPeerConnection"]) {
+  Object.defineProperty(globalThis, name, { value: undefined, writable: false, configurable: false });
+}
+
+/** @typedef {"worker" | "wasm" | "python"} PayloadName */
+
+/** Where each payload lies in the folder, the id it has in the single file, and the global its script sets. */
+const PAYLOADS = {
+  worker: { file: "engine/worker.js", id: "", global: "wedgewrightEngine" },
+  wasm: { file: "engine/wasm.js", id: "wedgewright-wasm", global: "wedgewrightWasm" },
+  python: { file: "engine/python.js", id: "wedgewright-python", global: "wedgewrightPython" },
+};
+
+/** The addresses a script or a worker may have: our own payloads, and a Blob made here. */
+const isOurs = (/** @type {string} */ url) =>
+  url.startsWith("blob:") || Object.values(PAYLOADS).some(({ file }) => url === file);
+
+const trusted = /** @type {any} */ (globalThis).trustedTypes?.createPolicy("rt", {
+  createScriptURL(/** @type {string} */ url) {
+    if (!isOurs(url)) {
+      throw new TypeError("Not a script of this page.");
+    }
+    return url;
+  },
+});
+
+/**
+ * The address in the form that the page's policy asks for.
+ *
+ * @param {string} url
+ * @returns {string}
+ */
+export function scriptUrl(url) {
+  return trusted ? trusted.createScriptURL(url) : url;
+}
+
+/** Resolves when something of the page has been painted, or soon where that is not reported or the page is not shown. */
+export function afterFirstPaint() {
+  return new Promise((resolve) => {
+    const supported = globalThis.PerformanceObserver?.supportedEntryTypes?.includes("paint");
+    if (!supported || document.visibilityState === "hidden") {
+      setTimeout(resolve);
+      return;
+    }
+    new PerformanceObserver((entries, observer) => {
+      if (entries.getEntriesByName("first-contentful-paint").length > 0) {
+        observer.disconnect();
+        resolve(undefined);
+      }
+    }).observe({ type: "paint", buffered: true });
+    setTimeout(resolve, 500);
+  });
+}
+
+/** Resolves when the whole page has been read: the single file's payloads are then in it. */
+function wholePage() {
+  return new Promise((resolve) => {
+    if (document.readyState === "loading") {
+      document.addEventListener("DOMContentLoaded", resolve, { once: true });
+    } else {
+      resolve(undefined);
+    }
+  });
+}
+
+/**
+ * A payload of the engine: a text, or (worker) a function.
+ *
+ * @param {PayloadName} name
+ * @returns {Promise<any>}
+ */
+export async function payload(name) {
+  const { file, id, global } = PAYLOADS[name];
+  if (document.documentElement.dataset.single !== undefined) {
+    await wholePage();
+    return id ? document.getElementById(id)?.textContent : /** @type {any} */ (globalThis)[global];
+  }
+  if (!(global in globalThis)) {
+    performance.mark(`payload-${name}`);
+    await new Promise((resolve, reject) => {
+      const script = document.createElement("script");
+      script.src = scriptUrl(file);
+      script.onload = resolve;
+      script.onerror = () => reject(new Error(`${file} cannot be read.`));
+      document.head.append(script);
+    });
+  }
+  return /** @type {any} */ (globalThis)[global];
+}

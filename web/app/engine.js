@@ -1,0 +1,233 @@
+/**
+ * The page's side of the conversation with the core: one request at a time goes to the worker, the newest of each lane
+ * wins, and a worker that fails or takes too long is ended and started anew.
+ */
+import { afterFirstPaint, payload, scriptUrl } from "./boot.js";
+
+/** @typedef {"reading" | "starting" | "ready" | "restarted" | "failed"} EngineState */
+/** @typedef {{do: string, [key: string]: unknown}} EngineRequest the request without `format` and `sequence` */
+/** @typedef {{format: string, sequence?: number, [key: string]: any}} EngineAnswer */
+/**
+ * @typedef {object} Waiting
+ * @property {number} id
+ * @property {string} lane
+ * @property {string} text
+ * @property {(answer: EngineAnswer | null) => void} resolve
+ */
+/** @typedef {{postMessage: (message: object) => void, end: () => void}} Link */
+/** @typedef {{message: (data: any) => void, crash: (error: unknown) => void}} Listener */
+
+const TIME_LIMIT_MS = 20000;
+const START_LIMIT_MS = 120000;
+
+/**
+ * Opens a worker made of the engine's own text, or, where workers are refused, runs the engine on this thread.
+ *
+ * @param {(port: any) => void} engine
+ * @param {Listener} listener
+ * @returns {{link: Link, mode: "worker" | "main-thread"}}
+ */
+function openLink(engine, listener) {
+  try {
+    const url = URL.createObjectURL(new Blob([`(${engine})(self);`], { type: "text/javascript" }));
+    const worker = new Worker(scriptUrl(url));
+    worker.onmessage = ({ data }) => listener.message(data);
+    worker.onerror = (event) => listener.crash(event.message);
+    const end = () => {
+      worker.onmessage = worker.onerror = null;
+      worker.terminate();
+      URL.revokeObjectURL(url);
+    };
+    return { link: { postMessage: (message) => worker.postMessage(message), end }, mode: "worker" };
+  } catch {
+    const { port1, port2 } = new MessageChannel();
+    port1.onmessage = ({ data }) => listener.message(data);
+    engine(port2);
+    return { link: { postMessage: (message) => port1.postMessage(message), end: () => port1.close() }, mode: "main-thread" };
+  }
+}
+
+/**
+ * The answer where the engine itself has none to give: the same shape as the core's refusals, words by code.
+ *
+ * @param {string} code
+ * @returns {EngineAnswer}
+ */
+function refusal(code) {
+  const error = { code, field: "", given: "", params: {}, fix: "retry" };
+  return { format: "wedgewright.refusal/1", errors: [error] };
+}
+
+/**
+ * @param {{onState?: (state: EngineState) => void, timeLimitMs?: number}} [options]
+ */
+export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } = {}) {
+  /** @type {EngineState} */
+  let state = "reading";
+  /** @type {"worker" | "main-thread"} */
+  let mode = "worker";
+  /** @type {Map<string, Waiting>} one place a lane; the oldest goes first */
+  const waiting = new Map();
+  /** @type {Waiting | null} */
+  let running = null;
+  /** @type {Link | null} */
+  let link = null;
+  /** @type {ReturnType<typeof setTimeout> | undefined} */
+  let timer;
+  let ready = false;
+  let crashes = 0;
+  let sequence = 0;
+
+  const enter = (/** @type {EngineState} */ next) => {
+    state = next;
+    onState(next);
+  };
+
+  const sendNext = () => {
+    const next = waiting.values().next().value;
+    if (!ready || running || !link || !next) {
+      return;
+    }
+    waiting.delete(next.lane);
+    running = next;
+    timer = setTimeout(overTime, timeLimitMs);
+    link.postMessage({ kind: "ask", id: next.id, text: next.text });
+  };
+
+  const settle = (/** @type {EngineAnswer} */ answer) => {
+    clearTimeout(timer);
+    running?.resolve(answer);
+    running = null;
+  };
+
+  const giveUp = () => {
+    enter("failed");
+    settle(refusal("engine-failed"));
+    for (const entry of waiting.values()) {
+      entry.resolve(refusal("engine-failed"));
+    }
+    waiting.clear();
+  };
+
+  const closeLink = () => {
+    clearTimeout(timer);
+    ready = false;
+    link?.end();
+    link = null;
+  };
+
+  // The question that was being answered is asked once more of the new worker, unless a newer one has come.
+  const crashed = () => {
+    closeLink();
+    crashes += 1;
+    if (crashes > 1) {
+      giveUp();
+      return;
+    }
+    if (running && !waiting.has(running.lane)) {
+      waiting.set(running.lane, running);
+    } else {
+      running?.resolve(null);
+    }
+    running = null;
+    enter("restarted");
+    open();
+  };
+
+  const overTime = () => {
+    closeLink();
+    settle(refusal("engine-time-limit"));
+    enter("restarted");
+    open();
+  };
+
+  const listener = {
+    message: (/** @type {any} */ data) => {
+      if (data.kind === "ready") {
+        clearTimeout(timer);
+        ready = true;
+        enter("ready");
+        warmUp();
+        sendNext();
+      } else if (data.kind === "answer" && data.id === running?.id) {
+        settle(JSON.parse(data.text));
+        sendNext();
+      } else if (data.kind === "failed") {
+        crashed();
+      }
+    },
+    crash: crashed,
+  };
+
+  // The first calls of a fresh Python are slow; where nobody waits they are spent on the demonstration.
+  const warmUp = async () => {
+    if (waiting.size > 0) {
+      return;
+    }
+    const demonstration = await ask({ do: "demonstration" }, { lane: "warm-up" });
+    if (demonstration?.job) {
+      await ask({ do: "report", job: demonstration.job, sections: [], scenes: true }, { lane: "warm-up" });
+    }
+  };
+
+  const open = async () => {
+    try {
+      // Read side by side, the one that is needed first begun first.
+      const [engine, wasm, python] = [payload("worker"), payload("wasm"), payload("python")];
+      for (const read of [wasm, python]) {
+        read.catch(() => {}); // said where it is awaited, below
+      }
+      const opened = openLink(await engine, listener);
+      link = opened.link;
+      mode = opened.mode;
+      timer = setTimeout(crashed, START_LIMIT_MS);
+      const current = link;
+      current.postMessage({ kind: "wasm", text: await wasm });
+      current.postMessage({ kind: "python", text: await python });
+      if (state === "reading") {
+        enter("starting");
+      }
+    } catch {
+      closeLink();
+      giveUp();
+    }
+  };
+
+  /**
+   * Asks the core. A newer question of the same lane makes an older one that has no answer yet resolve to null.
+   *
+   * @param {EngineRequest} request
+   * @param {{lane: string}} lane
+   * @returns {Promise<EngineAnswer | null>}
+   */
+  function ask(request, { lane }) {
+    return new Promise((resolve) => {
+      if (state === "failed") {
+        resolve(refusal("engine-failed"));
+        return;
+      }
+      sequence += 1;
+      waiting.get(lane)?.resolve(null);
+      if (running?.lane === lane) {
+        running.resolve(null);
+      }
+      const text = JSON.stringify({ format: "wedgewright.request/1", sequence, ...request });
+      waiting.delete(lane); // so that the newer one takes its place at the end of the queue
+      waiting.set(lane, { id: sequence, lane, text, resolve });
+      sendNext();
+    });
+  }
+
+  onState(state);
+  afterFirstPaint().then(open);
+
+  return {
+    ask,
+    get state() {
+      return state;
+    },
+    get mode() {
+      return mode;
+    },
+  };
+}

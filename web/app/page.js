@@ -1,0 +1,254 @@
+/** Joins the parts: state to form, form to engine, answer to pictures. One way round, no return. */
+
+import { watchDock } from "./dock.js";
+import { byId, el, redraw } from "./dom.js";
+import { copyText, download, fileName } from "./files.js";
+import { createForm } from "./form.js";
+import { frame } from "./frame.js";
+import { fromJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
+import { hashOf, keepDraft, stamp } from "./keeping.js";
+import { createKeypad } from "./keypad.js";
+import { listenToKeys, moveOn } from "./keys.js";
+import { orderLine } from "./order-line.js";
+import { drawSheet } from "./print.js";
+import { applyTheme, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { createState } from "./state.js";
+import { createSteps } from "./steps.js";
+import { openStore } from "./store.js";
+import { outcomeOf, sentenceOf, verdictStrip } from "./verdict.js";
+import { benchView } from "./views/bench.js";
+import { decideView } from "./views/decide.js";
+import { keepView } from "./views/keep.js";
+import { orderView } from "./views/order.js";
+import { readView } from "./views/read.js";
+import { say, useComma } from "./words.js";
+
+/**
+ * @typedef {import("./types.js").Report} Report
+ * @typedef {import("./types.js").Fault} Fault
+ * @typedef {import("./keeping.js").KeptJob} KeptJob
+ */
+
+/** @param {typeof import("./engine.js").startEngine} startEngine */
+export function startPage(startEngine) {
+  const root = document.documentElement;
+  const settings = loadSettings();
+  applyTheme(settings);
+  useComma(settings.decimal === "comma");
+
+  const state = createState();
+  const form = createForm(state);
+  /** @type {import("./verdict.js").Standing} */
+  const standing = { report: null, faults: [], earlier: false, begun: false };
+  let place = toJob({}).place;
+  let hash = "";
+  /** @type {Record<string, string>} */
+  let understood = {};
+  /** @type {ReturnType<typeof frame>|null} */
+  let head = null;
+  /** @type {import("./store.js").Store|null} */
+  let store = null;
+
+  const engine = startEngine({
+    onState(code) {
+      root.dataset["engine"] = code;
+      head?.engine(code, engine.mode);
+    },
+  });
+  const steps = createSteps(engine, state, (faults) => refuse(faults));
+  const line = orderLine({ engine, state, settings });
+  const views = {
+    order: orderView({ form, state, line: line.node, demonstrate }),
+    read: readView({ form, state, steps }),
+    decide: decideView({ state, sign, print: () => window.print(), copy }),
+    keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
+    bench: benchView({ form, settings, settingsChanged, erase }),
+  };
+  const keypad = createKeypad({ settings, next: moveOn, setBase });
+  const top = frame({ state, views, settings, toggleKeypad, drawView });
+  head = top;
+  const strip = verdictStrip({ show: top.show, goTo });
+  top.engine(engine.state, engine.mode);
+
+  function toggleKeypad() {
+    keypad.toggle();
+    saveSettings(settings);
+    top.keypad();
+  }
+
+  function draw() {
+    form.answer({ echo: echoes(), faults: standing.faults });
+    drawView(settings.view);
+    strip.draw(standing);
+    top.draw();
+    root.dataset["earlier"] = String(standing.earlier);
+    performance.mark("dial-drawn");
+  }
+
+  /** @param {string} name only what is seen is drawn; the others are when they are shown */
+  function drawView(name) {
+    const view = views[/** @type {keyof typeof views} */ (name)];
+    if (view && "draw" in view) view.draw(standing);
+  }
+
+  /** @returns {Record<string, string>} what was understood, by the page's own places */
+  function echoes() {
+    return Object.fromEntries(Object.entries(understood).map(([path, text]) => [place(path), text]));
+  }
+
+  /** @param {Fault[]} faults those of a touch or step that could not be carried out */
+  function refuse(faults) {
+    standing.faults = faults.map((fault) => ({ ...fault, field: place(fault.field) }));
+    draw();
+  }
+
+  async function answer() {
+    standing.begun = hasOrder(state.entries);
+    if (!standing.begun) {
+      Object.assign(standing, { report: null, faults: [], earlier: false });
+      understood = {};
+      draw();
+      return;
+    }
+    const built = toJob(state.entries);
+    const given = await engine.ask({ do: "report", job: built.job, sections: [], scenes: true }, { lane: "verdict" });
+    if (!given) return;
+    place = built.place;
+    understood = given["echo"] ?? {};
+    const faults = /** @type {Fault[]} */ (given["errors"] ?? []);
+    standing.faults = faults.map((fault) => ({ ...fault, field: place(fault.field) }));
+    standing.earlier = faults.length > 0 && standing.report !== null;
+    if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
+    draw();
+    root.dataset["drawn"] = String(given.sequence ?? "");
+    if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
+    hash = await hashOf(JSON.stringify(built.job));
+  }
+
+  state.subscribe((entries) => {
+    form.show(entries);
+    answer();
+  });
+
+  async function demonstrate() {
+    const given = await engine.ask({ do: "demonstration" }, { lane: "demonstration" });
+    if (!given?.["job"]) {
+      if (given?.["errors"]) refuse(given["errors"]);
+      return;
+    }
+    state.replace({ ...nextJob(state.entries), ...fromJob(given["job"]) });
+    top.show("read");
+  }
+
+  function newJob() {
+    state.replace(nextJob(state.entries));
+    top.show("order");
+    byId("f-id").focus();
+  }
+
+  function exportFile() {
+    download(fileName(state.entries["id"]), `${JSON.stringify(toJob(state.entries).job, null, 1)}\n`);
+  }
+
+  /** @param {string} text @returns {string} "" or what was wrong with it */
+  function importText(text) {
+    let job;
+    try {
+      job = readJobFile(text);
+    } catch {
+      return "not_json";
+    }
+    if (!job || typeof job !== "object" || /** @type {any} */ (job).format !== "wedgewright.job/1") return "not_a_job";
+    state.replace(fromJob(job));
+    return "";
+  }
+
+  async function copy() {
+    const given = await engine.ask({ do: "report", job: toJob(state.entries).job, sections: [], text: true }, { lane: "text" });
+    const text = given?.["text"];
+    if (!text) return;
+    const taken = await copyText(text);
+    const area = el("textarea", { id: "f-copied", readonly: true, rows: 12 });
+    area.value = text;
+    views.keep.copied.hidden = false;
+    redraw(views.keep.copied, el("label", { for: "f-copied" }, say(taken ? "page.keep.copied" : "page.keep.copy_by_hand")), area);
+    if (taken) return;
+    top.show("keep");
+    area.focus();
+    area.select();
+  }
+
+  /** @param {string} initials */
+  function sign(initials) {
+    const at = stamp(new Date());
+    state.sign(initials, at);
+    const { entries } = state;
+    /** @type {KeptJob} */
+    const kept = { key: `${at} ${entries["id"] ?? ""}`, id: entries["id"] ?? "", at, initials, outcome: outcomeOf(standing), sentence: sentenceOf(standing), edition: standing.report?.verdict?.edition.name ?? "", entries };
+    store?.put("jobs", kept.key, kept).then(showJobs);
+  }
+
+  async function showJobs() {
+    const jobs = /** @type {KeptJob[]} */ ((await store?.all("jobs")) ?? []);
+    views.keep.showJobs(jobs.reverse());
+  }
+
+  /** @param {KeptJob} job */
+  function reopen(job) {
+    state.replace(job.entries);
+    top.show("read");
+  }
+
+  async function erase() {
+    await store?.erase().catch(() => {});
+    eraseSettings();
+    location.reload();
+  }
+
+  function settingsChanged() {
+    saveSettings(settings);
+    applyTheme(settings);
+    useComma(settings.decimal === "comma");
+    keypad.refresh();
+    top.keypad();
+    line.ask();
+    draw();
+  }
+
+  /** @param {string} path leads to the field that is to be mended */
+  function goTo(path) {
+    const control = form.nearest(path);
+    if (!control) return;
+    const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
+    if (name) top.show(name);
+    for (let node = control.node.parentElement; node; node = node.parentElement) if (node instanceof HTMLDetailsElement) node.open = true;
+    control.node.scrollIntoView({ block: "center" });
+    control.focus.focus();
+  }
+
+  /** @param {HTMLInputElement} from @param {string} base the base of the prism whose field is in use */
+  function setBase(from, base) {
+    const row = (from.dataset["path"] ?? "").replace(/\.(amount|base.*)$/, "");
+    state.set(`${row}.base`, base);
+  }
+
+  window.addEventListener("beforeprint", () => drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()) }));
+  listenToKeys({ state });
+  watchDock();
+
+  openStore()
+    .then(async (opened) => {
+      store = opened;
+      showJobs();
+      await keepDraft(state, opened, top.saved);
+    })
+    .catch(() => top.saved("off"));
+
+  engine.ask({ do: "list-editions" }, { lane: "editions" }).then((given) => {
+    if (given?.["editions"]) views.order.useEditions(given["editions"]);
+  });
+
+  top.show(settings.view);
+  draw();
+  keypad.refresh();
+}

@@ -1,0 +1,54 @@
+/** How this tablet shows things. Not part of any job; a loss of it would cost nothing. */
+
+const KEY = "wedgewright.settings";
+
+/**
+ * @typedef {object} Settings
+ * @property {"auto"|"light"|"dark"} theme
+ * @property {"point"|"comma"} decimal
+ * @property {"auto"|"on"|"off"} keypad
+ * @property {string} view
+ * @property {"360"|"180"} bases
+ */
+
+/** @type {Settings} */
+const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360" };
+
+/** @returns {Settings} */
+export function loadSettings() {
+  try {
+    return { ...DEFAULTS, ...JSON.parse(localStorage.getItem(KEY) ?? "{}") };
+  } catch {
+    return { ...DEFAULTS };
+  }
+}
+
+/** @param {Settings} settings */
+export function saveSettings(settings) {
+  try {
+    localStorage.setItem(KEY, JSON.stringify(settings));
+  } catch {
+    // Storage refused: the setting holds until the page is closed.
+  }
+}
+
+export function eraseSettings() {
+  try {
+    localStorage.removeItem(KEY);
+  } catch {
+    // Nothing was stored then.
+  }
+}
+
+/** @param {Settings} settings */
+export function applyTheme(settings) {
+  const root = document.documentElement;
+  if (settings.theme === "auto") delete root.dataset.theme;
+  else root.dataset.theme = settings.theme;
+}
+
+/** @param {Settings} settings whether our own keypad opens at a field */
+export function wantsKeypad(settings) {
+  if (settings.keypad !== "auto") return settings.keypad === "on";
+  return matchMedia("(pointer: coarse)").matches;
+}

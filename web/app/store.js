@@ -1,0 +1,62 @@
+/**
+ * What this tablet keeps: the draft in two slots by turns, and the signed jobs. Strict durability; a promise is kept only
+ * when the write is complete. Storage is shared by all pages opened from disk, hence the name.
+ */
+
+const NAME = "wedgewright";
+const STORES = ["drafts", "jobs"];
+
+/** @typedef {Awaited<ReturnType<typeof openStore>>} Store */
+
+/** @returns {Promise<IDBDatabase>} */
+function open() {
+  return new Promise((resolve, reject) => {
+    const request = indexedDB.open(NAME, 1);
+    request.onupgradeneeded = () => {
+      for (const name of STORES) request.result.createObjectStore(name);
+    };
+    request.onsuccess = () => resolve(request.result);
+    request.onerror = () => reject(request.error);
+    request.onblocked = () => reject(new Error("blocked"));
+  });
+}
+
+export async function openStore() {
+  const database = await open();
+  // Another window may erase the data; holding on would block it.
+  database.onversionchange = () => database.close();
+
+  /**
+   * @template T
+   * @param {string} store
+   * @param {IDBTransactionMode} mode
+   * @param {(place: IDBObjectStore) => IDBRequest<T>} act
+   * @returns {Promise<T>}
+   */
+  function transact(store, mode, act) {
+    return new Promise((resolve, reject) => {
+      const transaction = database.transaction(store, mode, { durability: "strict" });
+      const request = act(transaction.objectStore(store));
+      transaction.oncomplete = () => resolve(request.result);
+      transaction.onabort = () => reject(transaction.error);
+      transaction.onerror = () => reject(transaction.error);
+    });
+  }
+
+  return {
+    /** @param {string} store @param {IDBValidKey} key @param {unknown} value */
+    put: (store, key, value) => transact(store, "readwrite", (place) => place.put(value, key)),
+    /** @param {string} store @returns {Promise<any[]>} */
+    all: (store) => transact(store, "readonly", (place) => place.getAll()),
+    /** Removes everything that was ever kept here. */
+    erase() {
+      database.close();
+      return new Promise((resolve, reject) => {
+        const request = indexedDB.deleteDatabase(NAME);
+        request.onsuccess = () => resolve(undefined);
+        request.onerror = () => reject(request.error);
+        request.onblocked = () => reject(new Error("blocked"));
+      });
+    },
+  };
+}

@@ -1,0 +1,95 @@
+/** The reading: the pair as it lies there, right lens on the left, and everything that is read of it. */
+
+import { el, redraw } from "../dom.js";
+import * as fields from "../fields.js";
+import { lensCard } from "../lens-card.js";
+import { noteList } from "../notes.js";
+import { prismGroup } from "../prism-rows.js";
+import { repeats } from "../repeats.js";
+import { EYES } from "../types.js";
+import { say, shown } from "../words.js";
+
+/**
+ * @typedef {import("../types.js").Report} Report
+ * @typedef {import("../form.js").Form} Form
+ * @typedef {import("../state.js").State} State
+ */
+
+/** @param {string} eye @param {Form} form @param {State} state */
+function readingCard(eye, form, state) {
+  const place = `readings.${eye}`;
+  return el(
+    "section",
+    { class: "card", "aria-labelledby": `typed-${eye}` },
+    el("h2", { id: `typed-${eye}` }, say(`page.read.typed_${eye}`)),
+    prismGroup(form, state, `${place}.prism`, "read_prism"),
+    repeats(eye, state),
+    el("div", { class: "grid four" }, ...form.fields(fields.powers(place))),
+    el(
+      "details",
+      { class: "quiet", "data-key": `compensator-${eye}` },
+      el("summary", {}, say("page.read.compensator")),
+      el(
+        "div",
+        { class: "grid two" },
+        form.field({ path: `${place}.compensator.amount`, kind: "number", label: "compensator_amount" }),
+        form.field({ path: `${place}.compensator.base`, kind: "number", label: "base_any" }),
+      ),
+    ),
+    el(
+      "details",
+      { class: "quiet", "data-key": `slid-${eye}` },
+      el("summary", {}, say("page.read.slid")),
+      el("p", { class: "help" }, say("page.read.slid_help")),
+      el("div", { class: "grid two" }, ...form.fields(fields.slid(eye))),
+      form.field(fields.addSide(eye)),
+    ),
+  );
+}
+
+/** @param {Report} report where the point is: one line for both lenses where they say the same */
+function pointLines(report) {
+  const all = EYES.flatMap((eye) => {
+    const point = report[eye]?.point;
+    return point ? [{ eye, task: point.task, text: say(`points.${point.code}`, point.params) }] : [];
+  });
+  const alike = all.length === 2 && all[0]?.text === all[1]?.text;
+  return (alike ? all.slice(0, 1) : all).map(({ eye, task, text }) =>
+    el("p", { class: "point", "data-task": task }, alike || all.length === 1 ? null : el("strong", {}, `${say(`page.lenses.${eye}`)}: `), text),
+  );
+}
+
+/**
+ * @param {object} tools
+ * @param {Form} tools.form
+ * @param {State} tools.state
+ * @param {ReturnType<typeof import("../steps.js").createSteps>} tools.steps
+ */
+export function readView({ form, state, steps }) {
+  const summary = el("div", { class: "order-summary" });
+  const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
+  const notes = el("div", { class: "reading-notes" });
+  const pair = el("div", { class: "pair dials" }, ...cards.map((card) => card.node));
+  const node = el(
+    "div",
+    { class: "view read" },
+    el("h2", { class: "hidden" }, say("page.nav.read")),
+    summary,
+    pair,
+    notes,
+    el("div", { class: "pair" }, ...EYES.map((eye) => readingCard(eye, form, state))),
+    el("section", { class: "card", "aria-labelledby": "read-how" }, el("h2", { id: "read-how" }, say("page.read.how")), el("div", { class: "grid two" }, form.field(fields.READ_AT), form.field(fields.SLID_DISTANCE))),
+  );
+  return {
+    node,
+    /** @param {import("../verdict.js").Standing} standing */
+    draw({ report, earlier }) {
+      pair.classList.toggle("earlier", earlier);
+      for (const card of cards) card.draw(report);
+      const lines = EYES.flatMap((eye) => report?.order_lines?.[eye]?.slice(0, 1) ?? []);
+      redraw(summary, lines.length ? el("p", { class: "order-lines" }, ...lines.map((line) => el("span", {}, shown(line)))) : null, ...(report ? pointLines(report) : []));
+      const said = (report?.notes ?? []).filter(({ about }) => about === "reading" || about === "instrument");
+      redraw(notes, said.length ? noteList(said) : null);
+    },
+  };
+}

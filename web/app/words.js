@@ -1,0 +1,64 @@
+/** Every sentence comes from the words file, by code. Where a word is missing the code itself is shown. */
+
+/** @type {any} */
+let words = {};
+let comma = false;
+
+/** @param {object} all the groups of the words file */
+export function useWords(all) {
+  words = all;
+}
+
+/** @param {boolean} on whether numbers are shown with a decimal comma */
+export function useComma(on) {
+  comma = on;
+}
+
+/** @param {string} code @returns {string|undefined} */
+function look(code) {
+  if (!code) return undefined;
+  let place = words;
+  const steps = code.split(".");
+  // Codes of the core may hold points themselves ("points.progressive.mounted"): take the longest key there is.
+  for (let index = 0; index < steps.length; index += 1) {
+    const rest = steps.slice(index).join(".");
+    if (place && typeof place[rest] === "string") return place[rest];
+    place = place?.[steps[index]];
+  }
+  return typeof place === "string" ? place : undefined;
+}
+
+/** @param {string} code */
+export function has(code) {
+  return look(code) !== undefined;
+}
+
+/**
+ * The sentence of a code with its holes filled.
+ *
+ * @param {string} code e.g. "page.nav.order"
+ * @param {Record<string, unknown>} [params] text, already formatted
+ */
+export function say(code, params = {}) {
+  const sentence = look(code);
+  if (sentence === undefined) return code;
+  return sentence.replace(/\{(\w+)\}/g, (hole, name) =>
+    name in params ? shown(params[name]) : hole,
+  );
+}
+
+/**
+ * A text with numbers in it, as this shop writes its decimal sign. Swaps the sign, nothing else;
+ * clause numbers ("5.1.4", "Z80.1") are left alone.
+ *
+ * @param {unknown} text
+ */
+export function shown(text) {
+  const plain = text === null || text === undefined ? "" : String(text);
+  return comma ? plain.replace(/(?<![\w.])(\d+)\.(\d+)(?![\w.]*\d)/g, "$1,$2") : plain;
+}
+
+/** @param {string} eye "right", "left" or "pair" */
+export function eyeName(eye) {
+  return say(`page.eyes.${eye}`);
+}

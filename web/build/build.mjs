@@ -1,0 +1,76 @@
+/**
+ * Builds the page's folder and the single file out of the core, the page's sources and the pinned Pyodide.
+ *
+ *     node web/build/build.mjs --core pycore --web web --out dist --single dist-single
+ *
+ * The result depends on the inputs alone: names are sorted, no time of day and no path of this machine goes in.
+ */
+import { mkdir, readFile, rm, writeFile } from "node:fs/promises";
+import { createRequire } from "node:module";
+import { dirname, join, resolve } from "node:path";
+import { parseArgs } from "node:util";
+import { buildScripts, folderPage, singlePage } from "./page.mjs";
+import { base64OfGzip, buildPythonZip } from "./python.mjs";
+import { engineSource } from "./worker.mjs";
+import { writeWords } from "./words.mjs";
+
+const pyodideFolder = dirname(createRequire(import.meta.url).resolve("pyodide/package.json"));
+
+/**
+ * @param {string} folder
+ * @param {Record<string, string>} files path below the folder → text
+ */
+async function writeFolder(folder, files) {
+  await rm(folder, { recursive: true, force: true });
+  for (const name of Object.keys(files).sort()) {
+    await mkdir(dirname(join(folder, name)), { recursive: true });
+    await writeFile(join(folder, name), files[name]);
+  }
+}
+
+/** The notices of what is bundled, in one text. @param {string} folder */
+async function notices(folder) {
+  const names = ["bundled.txt", "mpl-2.0.txt", "python-3.13.txt"];
+  const texts = await Promise.all(names.map((name) => readFile(join(folder, name), "utf8")));
+  return texts.join(`\n${"=".repeat(120)}\n\n`);
+}
+
+async function main() {
+  const { values } = parseArgs({
+    options: {
+      core: { type: "string", default: "pycore" },
+      web: { type: "string", default: "web" },
+      out: { type: "string", default: "dist" },
+      single: { type: "string", default: "dist-single" },
+      licence: { type: "string", default: "LICENSE" },
+      notices: { type: "string", default: "notices" },
+    },
+  });
+  const core = resolve(values.core);
+  const web = resolve(values.web);
+  await writeWords(core, web);
+  const wasm = base64OfGzip(await readFile(join(pyodideFolder, "pyodide.asm.wasm")));
+  const python = base64OfGzip(await buildPythonZip(pyodideFolder, core));
+  const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
+  const page = {
+    html: await readFile(join(web, "index.html"), "utf8"),
+    ...(await buildScripts(web)),
+    engine,
+    wasm,
+    python,
+  };
+  await writeFolder(resolve(values.out), {
+    "index.html": folderPage(page),
+    "app.js": page.app,
+    "app.css": page.style,
+    "print.css": page.printStyle,
+    "engine/worker.js": engine,
+    "engine/wasm.js": `globalThis.wedgewrightWasm = "${wasm}";\n`,
+    "engine/python.js": `globalThis.wedgewrightPython = "${python}";\n`,
+    "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
+    "NOTICES.txt": await notices(resolve(values.notices)),
+  });
+  await writeFolder(resolve(values.single), { "wedgewright.html": singlePage(page) });
+}
+
+await main();

@@ -1,0 +1,55 @@
+/** Starts the engine of a built folder under Node, which is dressed as a browser's worker for it. */
+import { readFileSync } from "node:fs";
+import { join } from "node:path";
+import { runInThisContext } from "node:vm";
+
+/**
+ * @param {string} folder the built folder
+ * @returns {Promise<{ask: (request: object) => Promise<any>, exit: (code: number) => void}>}
+ */
+export async function startBuiltEngine(folder) {
+  for (const name of ["worker", "wasm", "python"]) {
+    runInThisContext(readFileSync(join(folder, "engine", `${name}.js`), "utf8"), { filename: `${name}.js` });
+  }
+  const page = /** @type {any} */ (globalThis);
+  const exit = process.exit.bind(process);
+  // Pyodide asks by these names where it runs; without `process` and with the rest it is as in a worker.
+  delete page.process;
+  page.self = page;
+  page.location = new URL("https://offline.invalid/");
+  page.WorkerGlobalScope = class {
+    static [Symbol.hasInstance]() {
+      return true;
+    }
+  };
+
+  /** @type {Map<number, (text: string) => void>} */
+  const answers = new Map();
+  /** @type {{onmessage: any, postMessage: (message: any) => void}} */
+  const port = { onmessage: null, postMessage: () => {} };
+  const ready = new Promise((resolve, reject) => {
+    port.postMessage = (message) => {
+      if (message.kind === "ready") {
+        resolve(undefined);
+      } else if (message.kind === "answer") {
+        answers.get(message.id)?.(message.text);
+      } else {
+        reject(new Error(message.message));
+      }
+    };
+  });
+  page.wedgewrightEngine(port);
+  port.onmessage({ data: { kind: "wasm", text: page.wedgewrightWasm } });
+  port.onmessage({ data: { kind: "python", text: page.wedgewrightPython } });
+  await ready;
+
+  let id = 0;
+  const ask = (/** @type {object} */ request) =>
+    new Promise((resolve) => {
+      id += 1;
+      answers.set(id, (text) => resolve(JSON.parse(text)));
+      const text = JSON.stringify({ format: "wedgewright.request/1", sequence: id, ...request });
+      port.onmessage({ data: { kind: "ask", id, text } });
+    });
+  return { ask, exit };
+}

@@ -1,0 +1,40 @@
+/**
+ * The engine's side of the conversation with the page. It runs in a worker, or on the page's own thread where workers are
+ * refused; it knows a port to listen at and nothing of the page.
+ *
+ * From the page: {kind: "wasm" | "python", text} once each, then {kind: "ask", id, text}.
+ * To the page: {kind: "ready"}, {kind: "answer", id, text}, {kind: "failed", message}.
+ */
+import { startPython } from "./python.js";
+
+/**
+ * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
+ */
+
+/**
+ * @param {Port} port
+ * @param {import("./python.js").PyodideBehind} pyodideBehind
+ */
+export function serve(port, pyodideBehind) {
+  /** @type {Record<string, (text: string) => void>} */
+  const arrived = {};
+  const payload = (/** @type {string} */ kind) => new Promise((resolve) => (arrived[kind] = resolve));
+  const handle = startPython(pyodideBehind, payload("wasm"), payload("python"));
+  handle.then(
+    () => port.postMessage({ kind: "ready" }),
+    (error) => port.postMessage({ kind: "failed", message: String(error) }),
+  );
+  port.onmessage = async ({ data }) => {
+    if (data.kind in arrived) {
+      arrived[data.kind](data.text);
+      return;
+    }
+    try {
+      const answer = (await handle)(data.text);
+      port.postMessage({ kind: "answer", id: data.id, text: answer });
+    } catch (error) {
+      // `handle` of the core never raises: what comes here is a fault of the runtime itself, after which it is not used again.
+      port.postMessage({ kind: "failed", message: String(error) });
+    }
+  };
+}
