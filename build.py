@@ -38,9 +38,10 @@ class StepError(Exception):
 
 def run(command: list[str | Path], *, folder: Path = ROOT, environment: Mapping[str, str] | None = None) -> None:
     """Run a command to its end, or raise StepError."""
-    finished = subprocess.run([str(part) for part in command], cwd=folder, env={**os.environ, **(environment or {})})
+    words = [str(part) for part in command]
+    finished = subprocess.run(words, cwd=folder, env={**os.environ, **(environment or {})}, check=False)
     if finished.returncode != 0:
-        raise StepError(f"failed with exit code {finished.returncode}: {' '.join(str(part) for part in command[:4])} …")
+        raise StepError(f"failed with exit code {finished.returncode}: {' '.join(words[:4])} …")
 
 
 def files_below(path: Path) -> list[Path]:
@@ -108,10 +109,11 @@ def node() -> Path:
 
 
 def run_node(*arguments: str | Path, folder: Path = ROOT) -> None:
-    """Run our Node, itself first on the path for what it starts in turn."""
+    """Run our Node, itself first on the path for what it starts in turn, trusting whom this machine trusts."""
     program = node()
     path = os.pathsep.join([str(program.parent), os.environ.get("PATH", os.defpath)])
-    run([program, *arguments], folder=folder, environment={"PATH": path, "npm_config_cache": str(TOOLS / "npm-cache")})
+    settings = {"PATH": path, "NODE_USE_SYSTEM_CA": "1", "npm_config_cache": str(TOOLS / "npm-cache")}
+    run([program, *arguments], folder=folder, environment=settings)
 
 
 def install_web() -> None:
@@ -119,7 +121,7 @@ def install_web() -> None:
     package = node().parent if os.name == "nt" else node().parent.parent / "lib"
     inputs = [WEB / "package.json", WEB / "package-lock.json", WEB / ".npmrc", ROOT / "requirements" / "build.txt"]
     npm = package / "node_modules" / "npm" / "bin" / "npm-cli.js"
-    make = lambda: run_node(npm, "ci", "--silent", folder=WEB)  # noqa: E731
+    make = lambda: run_node(npm, "ci", "--loglevel=error", folder=WEB)  # noqa: E731
     step("install the page's packages", inputs, [WEB / "node_modules" / "pyodide"], make)
 
 
@@ -142,7 +144,10 @@ def build_and_show() -> None:
     """Build, open the page where there is a desktop, and print the demonstration's report."""
     build()
     open_page()
-    print(f"\nThe page:        {DIST / 'index.html'}\nThe single file: {SINGLE}\n\nThe demonstration job, by the built engine:\n", flush=True)
+    print(
+        f"\nThe page:        {DIST / 'index.html'}\nThe single file: {SINGLE}\n\nThe demonstration job, by the built engine:\n",
+        flush=True,
+    )
     run_node(WEB / "build" / "report.mjs", DIST)
 
 
@@ -173,6 +178,11 @@ def python_with(*purposes: str) -> dict[str, str]:
     return {"PYTHONPATH": os.pathsep.join([str(ROOT), *(str(install_python(purpose)) for purpose in purposes)])}
 
 
+def run_python(*arguments: str | Path, purposes: tuple[str, ...]) -> None:
+    """Run this Python with the packages of these purposes and none of this machine's own (that is `-S`)."""
+    run([sys.executable, "-S", *arguments], environment=python_with(*purposes))
+
+
 def run_all(*actions: Callable[[], None]) -> None:
     """Do each of these, though one before it failed, and then fail if any did."""
     failures = []
@@ -187,36 +197,34 @@ def run_all(*actions: Callable[[], None]) -> None:
 
 def test() -> None:
     """Run every test: the core, its door, the page, and the page in a real browser."""
-    environment = python_with("test", "build")
     install_wheels()
     install_browser()
     build()
+    coverage = ["--cov=pycore", "--cov-report=term:skip-covered"]
     run_all(
         lambda: run_node("--test", "--test-force-exit", *sorted((ROOT / "tests" / "web").glob("test_*.mjs"))),
-        lambda: run([sys.executable, "-m", "pytest", "--cov=pycore", "--cov-report=term:skip-covered"], environment=environment),
+        lambda: run_python("-m", "pytest", *coverage, purposes=("test", "build")),
     )
 
 
 def check() -> None:
     """Look the sources over: style, types, layers, docstrings."""
     install_web()
-    tools, tests = python_with("check"), python_with("test", "build")
-    typescript, eslint = WEB / "node_modules" / "typescript" / "bin" / "tsc", WEB / "node_modules" / "eslint" / "bin" / "eslint.js"
+    packages = WEB / "node_modules"
     run_all(
-        lambda: run([sys.executable, "-m", "ruff", "check", ROOT], environment=tools),
-        lambda: run([sys.executable, "-m", "mypy"], environment=tools),
-        lambda: run_node(typescript, "--project", WEB),
-        lambda: run_node(eslint, ".", folder=WEB),
-        lambda: run([sys.executable, "-m", "pytest", "tests/test_house.py", "-m", "not slow"], environment=tests),
+        lambda: run_python("-m", "ruff", "check", ROOT, purposes=("check",)),
+        lambda: run_python("-m", "mypy", purposes=("check",)),
+        lambda: run_node(packages / "typescript" / "bin" / "tsc", "--project", WEB),
+        lambda: run_node(packages / "eslint" / "bin" / "eslint.js", ".", folder=WEB),
+        lambda: run_python("-m", "pytest", "tests/test_house.py", purposes=("test", "build")),
     )
 
 
 def speed() -> None:
     """Measure the start and a keystroke, as ratios within one run, and the sizes."""
-    environment = python_with("test")
     install_browser()
     build()
-    run([sys.executable, ROOT / "tests" / "speed" / "speed.py"], environment=environment)
+    run_python(ROOT / "tests" / "speed" / "speed.py", purposes=("test",))
 
 
 COMMANDS: dict[str, Callable[[], None]] = {
@@ -231,7 +239,9 @@ COMMANDS: dict[str, Callable[[], None]] = {
 
 def main() -> int:
     """Read the command line and do what it says."""
-    parser = argparse.ArgumentParser(description="Build, open and test Wedgewright.", epilog="Without a command: build, open, and show a report.")
+    parser = argparse.ArgumentParser(
+        description="Build, open and test Wedgewright.", epilog="Without a command: build, open, and show a report."
+    )
     names = parser.add_subparsers(dest="command", metavar="COMMAND")
     for name, command in COMMANDS.items():
         names.add_parser(name, help=command.__doc__, description=command.__doc__)

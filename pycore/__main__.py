@@ -1,6 +1,7 @@
 """The command line: `python -m pycore report JOB.json [--edition FILE] [--text]`, `schema`."""
 
 import argparse
+import io
 import json
 import sys
 from collections.abc import Sequence
@@ -26,12 +27,14 @@ def main(arguments: Sequence[str] | None = None) -> int:
     report.add_argument("--text", action="store_true", help="print text instead of JSON")
     commands.add_parser("schema", help="print the JSON Schema of the job document")
     chosen = parser.parse_args(arguments)
+    if isinstance(sys.stdout, io.TextIOWrapper):
+        sys.stdout.reconfigure(encoding="utf-8")  # the prism sign, whatever the console speaks
     if chosen.command == "schema":
         print(json.dumps(job_schema(), indent=2))
         return 0
     try:
         answer = handle(_request(chosen.job, chosen.edition, chosen.text))
-    except OSError as error:
+    except (OSError, UnicodeDecodeError) as error:
         parser.exit(1, f"{error}\n")
     parsed = json.loads(answer)
     refused = parsed["format"] == REFUSAL_FORMAT

@@ -108,6 +108,16 @@ def signed(value: Decimal, places: int = 2) -> str:
     return text if text.startswith(TRUE_MINUS) or float(text) == 0 else "+" + text
 
 
+def decimal_places(value: Decimal) -> int:
+    """Count the decimals a number needs, trailing zeros left out.
+
+    >>> decimal_places(Decimal("0.1250")), decimal_places(Decimal(20))
+    (3, 0)
+    """
+    exponent = value.normalize().as_tuple().exponent
+    return -exponent if isinstance(exponent, int) and exponent < 0 else 0
+
+
 def places_to_tell_apart(first: Decimal, second: Decimal, least: int = 2) -> int:
     """Count the decimals at which two different values also look different (at most 9).
 

@@ -4,7 +4,7 @@ from collections.abc import Iterator, Mapping
 from decimal import Decimal
 from typing import Any
 
-from pycore.decimals import NumberError, read_decimal, signed
+from pycore.decimals import NumberError, decimal_places, read_decimal, signed
 from pycore.job.order import WORDS
 from pycore.names import plain
 from pycore.optics.prism import Eye, from_base, horizontal_word, vertical_word
@@ -59,9 +59,7 @@ def _understood(path: str, key: str, text: str) -> str:
     except NumberError:
         return ""
     if key in _SIGNED_DIOPTRES:
-        exponent = number.as_tuple().exponent
-        places = max(2, -exponent) if isinstance(exponent, int) else 2
-        return say("text.dioptres", number=signed(number, places))
+        return say("text.dioptres", number=signed(number, max(2, decimal_places(number))))
     if key in _DIOPTRES:
         return say("text.dioptres", number=plain(number))
     if key in _PRISM:

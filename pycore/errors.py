@@ -28,7 +28,7 @@ class Note:
     """Something a person should know that refuses nothing.
 
     Arguments: `code`; `field` the path it is about, or ""; `params` texts for the sentence;
-    `severity` note, warning or ask; `about` order, reading, verdict or instrument.
+    `severity` note, warning or ask; `about` order, reading, verdict, instrument or layout.
 
     >>> Note(code="axis-zero", field="right.axis").severity
     'note'

@@ -4,7 +4,7 @@ from collections.abc import Mapping
 from decimal import Decimal
 from typing import Any
 
-from pycore.decimals import fixed, signed, snap
+from pycore.decimals import decimal_places, fixed, signed, snap
 from pycore.optics.power import Power
 from pycore.optics.prism import Eye, Prism, horizontal_word, vertical_word
 from pycore.words import say
@@ -34,7 +34,7 @@ def prism_entry(eye: Eye, prism: Prism) -> Entry:
     across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
     entry: Entry = {
         "amount": number(prism.amount),
-        "base": None if base_deg is None else round(base_deg, 9),
+        "base": None if base_deg is None else round(base_deg, 9) % 360.0,
         "x": number(prism.x),
         "y": number(prism.y),
         "horizontal": {"amount": number(abs(prism.x)), "base": across},
@@ -53,9 +53,11 @@ def _in_180(eye: Eye, prism: Prism) -> Entry | None:
     across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
     side = along or across or ""
     degrees = base_deg if base_deg <= 180.0 else base_deg - 180.0
-    text = f"{degrees:03.0f}"
-    if along and text in ("000", "180"):  # never let rounding turn an up or down into in or out
-        text = f"{degrees:05.1f}"
+    text, places = f"{degrees:03.0f}", 0
+    # Never let rounding turn an up or down into in or out, whose words stand at 0 and 180 only.
+    while along and float(text) in (0.0, 180.0) and places < 9:
+        places += 1
+        text = f"{degrees:0{4 + places}.{places}f}"
     words = "B" + "&".join(_LETTERS[word] for word in (along, across) if word)
     return {"degrees": text, "side": side, "words": words}
 
@@ -97,13 +99,25 @@ def _prism_texts(entry: Entry, prism: Prism) -> Entry:
     }
 
 
+def thinning_text(found: Decimal) -> str:
+    """A vertical prism common to both lenses in words. Arguments: `found` up positive.
+
+    >>> thinning_text(Decimal("-1.33"))
+    '1.33 down'
+    """
+    word = vertical_word(found)
+    amount = fixed(abs(found), 2)
+    return say("text.component", amount=amount, word=say(f"directions.{word}")) if word else amount
+
+
 def degrees_text(degrees: float) -> str:
     """A base or an axis as people write it: one decimal, none where it is whole.
 
     >>> degrees_text(26.565), degrees_text(37.0)
     ('26.6', '37')
     """
-    return fixed(Decimal(degrees), 1).removesuffix(".0")
+    text = fixed(Decimal(degrees), 1).removesuffix(".0")
+    return "0" if text == "360" else text
 
 
 def power_text(power: Power) -> str:
@@ -129,8 +143,7 @@ def plain(value: Decimal) -> str:
 
 
 def _places(value: Decimal) -> int:
-    exponent = value.as_tuple().exponent
-    return max(2, -exponent) if isinstance(exponent, int) else 2
+    return max(2, decimal_places(value))
 
 
 def power_entry(power: Power) -> Entry:

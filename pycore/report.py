@@ -5,7 +5,16 @@ from dataclasses import dataclass
 from decimal import Decimal
 
 import pycore
-from pycore.bench.expected import Due, due, notes_on_thinning, read_first, read_prism, sightings_of
+from pycore.bench.expected import (
+    Due,
+    due,
+    notes_on_thinning,
+    notes_on_thinning_found,
+    read_first,
+    read_prism,
+    sightings_of,
+    thinning_found,
+)
 from pycore.bench.matter import Matter, matter_of
 from pycore.bench.order_check import order_notes
 from pycore.bench.point import point_of
@@ -34,6 +43,7 @@ from pycore.names import (
     power_text,
     prism_entry,
     spoken,
+    thinning_text,
 )
 from pycore.optics.power import Power, point_with_prism
 from pycore.optics.prism import EYES, Eye, Prism
@@ -195,7 +205,7 @@ def order_lines(order: EyeOrder) -> list[str]:
     letter = say(f"letters.{order.eye}")
     tail = [_component_text(part) for part in _parts(order)]
     if order.prescribed.add:
-        tail.append(say("text.add", number=plain(order.prescribed.add)))
+        tail.append(say("text.add", number=fixed(order.prescribed.add, 2)))
     forms: list[Power | None] = [power]
     if power and power.cylinder:
         forms.append(power.transposed())
@@ -251,6 +261,9 @@ def _notes(case: Case) -> list[Note]:
         due_ = case.dues[order.eye]
         if due_.power and _optical_centre(order, due_) is None and snap(due_.expected.amount):
             notes.append(_note_on_decentring(order, due_))
+    found = thinning_found(case.dues, {eye: read_prism(job, eye) for eye in case.dues})
+    if found is not None:
+        notes += notes_on_thinning_found(case.dues, found, thinning_text(found))
     for eye in case.dues:
         notes += _notes_on_instrument(case, eye)
     return notes
@@ -265,7 +278,7 @@ def _note_on_decentring(order: EyeOrder, due_: Due) -> Note:
         code = "decentring-thinning-unknown"
     else:
         code = "decentring-too-weak"
-    return Note(code=code, field=f"{order.eye}.prism", params={"eye": order.eye})
+    return Note(code=code, field=f"{order.eye}.prism", params={"eye": order.eye}, about="layout")
 
 
 def _notes_on_instrument(case: Case, eye: Eye) -> list[Note]:

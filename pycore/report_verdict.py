@@ -4,15 +4,16 @@ from collections.abc import Mapping
 from decimal import Decimal
 
 from pycore.bench.doubt import ACCEPTED_DOUBT
-from pycore.bench.expected import Due, read_prism
+from pycore.bench.expected import Due, read_prism, thinning_found
 from pycore.bench.matter import PAIR, Check, component_of
-from pycore.bench.verdict import Missing, Verdict
+from pycore.bench.verdict import Verdict
+from pycore.bench.verdict_missing import Missing
 from pycore.bench.verdict_prism import COMPONENTS
-from pycore.decimals import fixed, places_to_tell_apart, signed, snap
+from pycore.decimals import decimal_places, fixed, places_to_tell_apart, signed, snap
 from pycore.editions.edition import Range, Row
 from pycore.job.document import Job
-from pycore.names import Entry, number, plain, spoken
-from pycore.optics.prism import Eye, Prism
+from pycore.names import Entry, number, plain, spoken, thinning_text
+from pycore.optics.prism import Eye, Prism, vertical_word
 from pycore.words import say
 
 CAUTIONS = ("prescriber", "local-law", "sign-off")
@@ -32,9 +33,9 @@ def pair_entry(job: Job, dues: Mapping[Eye, Due]) -> Entry | None:
     entry: Entry = {
         component: _component_entry(component, ordered, read) for component in COMPONENTS
     }
-    found = _thinning_found(dues, reads)
-    if found:
-        entry["thinning_found"] = found
+    found = thinning_found(dues, reads)
+    if found is not None:
+        entry["thinning_found"] = _thinning_entry(found)
     return entry
 
 
@@ -59,23 +60,12 @@ def _pair_text(component: str, value: Decimal) -> str:
     return say(f"text.pair-{component}-{sense}", amount=fixed(abs(value), 2))
 
 
-def _thinning_found(dues: Mapping[Eye, Due], reads: Mapping[Eye, Prism | None]) -> Entry | None:
-    """Half the sum of both vertical errors, where the thinning is not known, in prism dioptres."""
-    right, left = reads["right"], reads["left"]
-    if right is None or left is None or any(due.vertical_known for due in dues.values()):
-        return None
-    up = (right.y - dues["right"].expected.y + left.y - dues["left"].expected.y) / 2
-    word = "down" if up < 0 else "up"
-    adds = [due.add for due in dues.values() if due.add]
+def _thinning_entry(found: Decimal) -> Entry:
+    """The thinning found in both lenses, up positive, in prism dioptres."""
     return {
-        "amount": number(abs(up)),
-        "base": None if not snap(up) else word,
-        "exceeds_add": bool(adds) and abs(up) > min(adds),
-        "shown": say(
-            "text.component",
-            amount=fixed(abs(up), 2),
-            word=say(f"directions.{word}") if snap(up) else "",
-        ),
+        "amount": number(abs(found)),
+        "base": vertical_word(found),
+        "shown": thinning_text(found),
     }
 
 
@@ -145,8 +135,7 @@ def _check_texts(check: Check, doubt: float) -> Entry:
 
 def _decimals(value: Decimal) -> int:
     """The decimals a typed figure has, up to 3; a computed one is not shown in full."""
-    exponent = value.normalize().as_tuple().exponent
-    places = -exponent if isinstance(exponent, int) and exponent < 0 else 0
+    places = decimal_places(value)
     return places if places <= 3 else 0
 
 

@@ -93,7 +93,9 @@ def test_another_build_elsewhere_is_the_same(dist: Path, single_file: Path, tmp_
 
 @pytest.mark.slow
 def test_a_step_is_done_once(dist: Path) -> None:
-    again = subprocess.run([sys.executable, "-W", "error", build.ROOT / "build.py", "build"], capture_output=True, text=True, check=True)
+    again = subprocess.run(
+        [sys.executable, "-W", "error", build.ROOT / "build.py", "build"], capture_output=True, text=True, check=True
+    )
     assert again.stdout == ""
     assert dist.exists()
 

@@ -11,6 +11,7 @@ from decimal import Decimal
 from pycore.decimals import from_float
 
 ACCEPTED_DOUBT = 0.05
+_REACH = 10.0  # standard uncertainties; nothing that counts lies beyond
 _STEPS = 400  # of the circle's sum; compared with scipy to 1e-9 in the tests
 
 
@@ -46,14 +47,20 @@ def chance_within_circle(distance: Decimal, radius: Decimal, uncertainty: float)
     d, r = float(distance), float(radius)
     if uncertainty <= 0:
         return 1.0 if distance <= radius else 0.0
-    # Slices across the circle at x = r sin(t): smooth to its ends, so a plain sum converges.
+    # Slices across the circle, from where the Gaussian begins to where it or the circle ends,
+    # at x = middle + half sin(t): smooth to both ends, so a plain sum converges.
+    low, high = max(-r, d - _REACH * uncertainty), min(r, d + _REACH * uncertainty)
+    middle, half = (low + high) / 2.0, (high - low) / 2.0
+    if half <= 0:
+        return 0.0
     chance = 0.0
     for step in range(_STEPS):
         angle = math.pi * ((step + 0.5) / _STEPS - 0.5)
-        x, half = r * math.sin(angle), r * math.cos(angle)
+        x = middle + half * math.sin(angle)
+        across = math.sqrt(max(0.0, (r - x) * (r + x)))
         density = math.exp(-0.5 * ((x - d) / uncertainty) ** 2)
-        chance += density * math.erf(half / (uncertainty * math.sqrt(2.0))) * half
-    return min(1.0, chance * math.pi / _STEPS / (uncertainty * math.sqrt(2.0 * math.pi)))
+        chance += density * math.erf(across / (uncertainty * math.sqrt(2.0))) * math.cos(angle)
+    return min(1.0, chance * half * math.pi / _STEPS / (uncertainty * math.sqrt(2.0 * math.pi)))
 
 
 def largest_accepted(limit: Decimal, chance: Callable[[Decimal], float]) -> Decimal | None:

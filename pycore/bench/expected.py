@@ -4,9 +4,11 @@ Expected = prescribed (or the maker's stated values) + prism thinning; for a len
 match an existing partner, plus the partner's own vertical difference, so that the pair agrees.
 """
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
 
+from pycore.decimals import snap
 from pycore.errors import Note
 from pycore.job.bench import EyeReading
 from pycore.job.document import Job
@@ -86,7 +88,7 @@ def due(job: Job, eye: Eye) -> Due | None:
     if order is None:
         return None
     verified = order.verified
-    partner = None if order.partner else _partner_of(job, eye)
+    partner = _partner_of(job)
     if partner:
         thinning = _difference_of_partner(job, partner)
     else:
@@ -104,13 +106,15 @@ def due(job: Job, eye: Eye) -> Due | None:
     )
 
 
-def _partner_of(job: Job, eye: Eye) -> EyeOrder | None:
-    other = job.order("left" if eye == "right" else "right")
-    return other if other and other.partner else None
+def _partner_of(job: Job) -> EyeOrder | None:
+    return next((order for order in job.orders if order.partner), None)
 
 
 def _difference_of_partner(job: Job, partner: EyeOrder) -> Prism | None:
-    """The vertical prism beyond its own prescription that the existing lens shows, if read."""
+    """The vertical prism beyond its own prescription that the existing lens shows, if read.
+
+    It is due in both lenses: the new one is made to match it, so that the pair agrees.
+    """
     seen = read_prism(job, partner.eye)
     if seen is None:
         return None
@@ -136,6 +140,38 @@ def sightings_of(job: Job, eye: Eye) -> tuple[Prism, ...]:
     reading: EyeReading = job.readings.of(eye)
     sense = job.instrument.compensator
     return tuple(sighting.lens_prism(sense) for sighting in reading.sightings)
+
+
+def thinning_found(dues: Mapping[Eye, Due], reads: Mapping[Eye, Prism | None]) -> Decimal | None:
+    """Half the sum of both vertical errors where the thinning is not known: what both share.
+
+    Arguments: `dues`; `reads` prism dioptres. Returns prism dioptres, up positive, or None.
+    Source: the job document, version 1.
+    """
+    right, left = reads.get("right"), reads.get("left")
+    if right is None or left is None or any(due_.vertical_known for due_ in dues.values()):
+        return None
+    return (right.y - dues["right"].expected.y + left.y - dues["left"].expected.y) / 2
+
+
+def notes_on_thinning_found(dues: Mapping[Eye, Due], found: Decimal, text: str) -> list[Note]:
+    """Warnings on thinning found that no rule would give.
+
+    Arguments: `dues`; `found` prism dioptres, up positive; `text` of the amount.
+    """
+    adds = [due_.add for due_ in dues.values() if due_.add]
+    codes = ["thinning-found-not-down"] * (snap(found) > 0)
+    codes += ["thinning-found-exceeds-add"] * (bool(adds) and snap(abs(found)) > min(adds))
+    return [
+        Note(
+            code=code,
+            field="thinning",
+            severity="warning",
+            about="reading",
+            params={"amount": text},
+        )
+        for code in codes
+    ]
 
 
 def read_first(right: Due | None, left: Due | None) -> Eye | None:
@@ -169,7 +205,8 @@ def notes_on_thinning(job: Job) -> list[Note]:
         notes.append(
             Note(code="thinning-differs", field="thinning.left_amount", severity="warning")
         )
-    if thinning is None and not _has_one_power(job):
+    unknown = thinning is None or thinning.rule == "unknown"
+    if unknown and not _has_one_power(job) and not _partner_of(job):
         notes.append(Note(code="thinning-not-known", field="thinning"))
     for order in job.orders:
         if order.partner and read_prism(job, order.eye) is None:

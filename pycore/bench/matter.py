@@ -66,7 +66,7 @@ class Matter:
     job: Job
     edition: Edition
     chosen: Mapping[str, str]
-    design: str
+    designs: Mapping[Eye, str]
     dues: Mapping[Eye, Due]
     reads: Mapping[Eye, Prism]
     counts: Mapping[Eye, int]
@@ -86,22 +86,41 @@ class Matter:
         read, due_ = self.reads.get(eye), self.dues.get(eye)
         return read - due_.expected if read is not None and due_ else None
 
+    @property
+    def own_eyes(self) -> tuple[Eye, ...]:
+        """The eyes whose lens is judged: those ordered, without an existing partner lens."""
+        return tuple(eye for eye, due_ in self.dues.items() if not due_.partner)
+
     def row(
         self,
         check: str,
         sizes: Mapping[str, Decimal],
         state: str | None = None,
         component: str | None = None,
+        eye: Eye | None = None,
     ) -> Row | None:
-        """The edition's row for this job. Arguments as `Edition.row`; `state` if not the job's."""
-        return self.edition.row(
-            check,
-            design=self.design,
-            state=state or self.job.state,
-            chosen=self.chosen,
-            sizes=sizes,
-            component=component,
-        )
+        """The edition's row for one lens's design, or for the pair's.
+
+        Arguments as `Edition.row`; `state` if not the job's; `eye` for one lens. Where the
+        pair's designs differ the smaller limit holds, and an alternative must be open to both
+        (common practice).
+        """
+        designs = {self.designs[eye]} if eye else set(self.designs.values())
+        rows = [
+            self.edition.row(
+                check,
+                design=design,
+                state=state or self.job.state,
+                chosen=self.chosen,
+                sizes=sizes,
+                component=component,
+            )
+            for design in sorted(designs)
+        ]
+        found = [row for row in rows if row]
+        if len(found) < len(rows) and check.startswith("prp."):
+            return None
+        return min(found, key=lambda row: row.limit(sizes), default=None)
 
     def option(self, name: str) -> str:
         """The value chosen for an option, or "" where the edition does not offer it."""
@@ -146,12 +165,15 @@ def design_group(design: str | None) -> str:
 def matter_of(job: Job, edition: Edition) -> Matter:
     """Lay one job beside one edition. Arguments: `job`; `edition`. Returns the Matter."""
     dues = {eye: found for eye in EYES if (found := due(job, eye))}
-    designs = [order.lens.design for order in job.orders if not order.partner]
+    designs = {order.eye: design_group(order.lens.design) for order in job.orders}
+    own = {eye: design for eye, design in designs.items() if not dues[eye].partner}
     return Matter(
         job=job,
         edition=edition,
         chosen={**edition.options, **job.edition_options},
-        design=design_group(designs[0] if designs else None),
+        designs={
+            eye: own.get(eye) or next(iter(own.values()), design) for eye, design in designs.items()
+        },
         dues=dues,
         reads={eye: read for eye in dues if (read := read_prism(job, eye)) is not None},
         counts={eye: len(sightings_of(job, eye)) for eye in dues},

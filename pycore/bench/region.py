@@ -10,6 +10,7 @@ from pycore.bench.verdict_prism import (
     lens_row,
     lens_uncertainty,
     lens_vertical_is_known,
+    pair_decides_vertical,
     pair_row,
     pair_uncertainty,
 )
@@ -77,12 +78,14 @@ def _span(matter: Matter, eye: Eye, component: str) -> Span:
     expected = component_of(matter.dues[eye].expected, component)
     if matter.job.state == "mounted":
         spans.append(_pair_span(matter, eye, component, expected))
-        row = matter.row(f"prism.{component}.each", {})
+        row = matter.row(f"prism.{component}.each", {}, eye=eye)
         known = component == "horizontal" or lens_vertical_is_known(matter, eye)
         if row and known:
             limit = row.limit({})
             spans.append(_around(matter, expected, limit, lens_uncertainty(matter, eye)))
     else:
+        if component == "vertical" and pair_decides_vertical(matter):
+            spans.append(_pair_span(matter, eye, component, expected))
         found = lens_row(matter, eye, component)
         if found and (component == "horizontal" or lens_vertical_is_known(matter, eye)):
             spans.append(_around(matter, expected, found[1], lens_uncertainty(matter, eye)))

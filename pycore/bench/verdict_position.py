@@ -24,7 +24,7 @@ def height_check(matter: Matter, prism: Check) -> Check | None:
     is set at its own expected prism; the other slides vertically until the ordered pair prism
     appears. Source: Z80.1-2010, 8.4 as quoted; facts section 1, corrections.
     """
-    row = _open_row(matter, "prp.height", "vertical")
+    row = open_row(matter, "vertical")
     if row is None:
         return None
     ordered = {eye: order.prp_height_mm for eye in EYES if (order := matter.job.order(eye))}
@@ -38,7 +38,7 @@ def distance_check(matter: Matter, prism: Check) -> Check | None:
 
     Arguments as `height_check`. Source: Z80.1-2010, 8.5 as quoted.
     """
-    row = _open_row(matter, "prp.distance", "horizontal")
+    row = open_row(matter, "horizontal")
     if row is None:
         return None
     ordered = {eye: order.pd_mm for eye in EYES if (order := matter.job.order(eye))}
@@ -59,10 +59,8 @@ def position_check(matter: Matter, eye: Eye, prism: Check) -> Check | None:
     and the error across it is beyond the limit (no shift can take that away).
     """
     due, error = matter.dues[eye], matter.error(eye) or NO_PRISM
-    if due.power is None or matter.option("prism-alternatives") == "prism-only":
-        return None
-    row = matter.row("prp.position", {"power": due.power.strongest})
-    if row is None:
+    row = position_row(matter, eye)
+    if row is None or due.power is None:
         return None
     measured = _measured_offset_mm(matter, eye)
     deviation = measured
@@ -108,15 +106,27 @@ def _error_that_no_shift_moves(matter: Matter, eye: Eye, error: Prism) -> Decima
     return abs(from_float(float(error.x) * math.cos(radians) + float(error.y) * math.sin(radians)))
 
 
-def _open_row(matter: Matter, check: str, component: str) -> Row | None:
-    """The row of the millimetre alternative, where the lenses' power opens it."""
-    if matter.option("prism-alternatives") == "prism-only":
+def open_row(matter: Matter, component: str) -> Row | None:
+    """The pair's row of millimetres for one component, where the lenses' power opens it.
+
+    Arguments: `matter`; `component` vertical (heights) or horizontal (distances).
+    """
+    if matter.option("prism-alternatives") == "prism-only" or not matter.pair_is_ordered:
         return None
     sizes = [abs(due.power.along(MERIDIAN[component])) for due in matter.dues.values() if due.power]
     if not sizes:
         return None
     both = matter.option("millimetre-power") == "both-lenses"
+    check = "prp.height" if component == "vertical" else "prp.distance"
     return matter.row(check, {"power": min(sizes) if both else max(sizes)}, state="mounted")
+
+
+def position_row(matter: Matter, eye: Eye) -> Row | None:
+    """One unmounted lens's row of millimetres, where its power opens it."""
+    power = matter.dues[eye].power
+    if power is None or matter.option("prism-alternatives") == "prism-only":
+        return None
+    return matter.row("prp.position", {"power": power.strongest}, eye=eye)
 
 
 def _each_or_difference(

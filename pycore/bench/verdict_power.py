@@ -2,6 +2,7 @@
 
 import math
 from collections.abc import Iterator
+from dataclasses import replace
 from decimal import Decimal
 
 from pycore.angles import half_turn
@@ -22,9 +23,8 @@ def power_checks(matter: Matter) -> Iterator[Check]:
     order's meridians: the one of greatest power, both where they are equally strong or the
     edition limits each. Source: Z80.1-1999 and later, table heading; facts section 1.
     """
-    for eye, due in matter.dues.items():
-        if due.partner:
-            continue
+    for eye in matter.own_eyes:
+        due = matter.dues[eye]
         reading = matter.job.readings.of(eye)
         seen = _seen_power(due, reading)
         if seen is not None and due.power is not None:
@@ -32,6 +32,26 @@ def power_checks(matter: Matter) -> Iterator[Check]:
             yield from _cylinder_checks(matter, eye, due.power, seen, reading.axis is not None)
         if due.add is not None and reading.add is not None:
             yield from _add_check(matter, eye, due.add, reading.add)
+
+
+def power_limits(matter: Matter) -> Iterator[tuple[str, Decimal, float]]:
+    """Each limit of power, cylinder, axis and add with one reading's standard uncertainty.
+
+    Arguments: `matter`. Yields the check, its limit and the uncertainty, in D or degrees.
+    """
+    one_d, one_deg = float(matter.uncertainty.power_d), float(matter.uncertainty.axis_deg)
+    for eye in matter.own_eyes:
+        due = matter.dues[eye]
+        if due.power is None:
+            continue
+        sizes = {"power": due.power.strongest, "cylinder": abs(due.power.cylinder)}
+        found = {"power": one_d, "cylinder": one_d * ROOT_TWO}
+        found |= {"axis": one_deg} if due.power.cylinder else {}
+        found |= {"add": one_d * ROOT_TWO} if due.add else {}
+        for check, uncertainty in found.items():
+            row = matter.row(check, {**sizes, "add": due.add or Decimal(0)}, eye=eye)
+            if row:
+                yield check, row.limit(sizes), uncertainty
 
 
 def _seen_power(due: Due, reading: EyeReading) -> Power | None:
@@ -46,7 +66,7 @@ def _seen_power(due: Due, reading: EyeReading) -> Power | None:
 
 def _principal_checks(matter: Matter, eye: Eye, ordered: Power, seen: Power) -> Iterator[Check]:
     sizes = {"power": ordered.strongest, "cylinder": abs(ordered.cylinder)}
-    row = matter.row("power", sizes)
+    row = matter.row("power", sizes, eye=eye)
     if row is None:
         return
     found = seen.principal
@@ -64,19 +84,20 @@ def _cylinder_checks(
     matter: Matter, eye: Eye, ordered: Power, seen: Power, axis_read: bool
 ) -> Iterator[Check]:
     sizes = {"power": ordered.strongest, "cylinder": abs(ordered.cylinder)}
-    if matter.row("cylinder", sizes):
+    if matter.row("cylinder", sizes, eye=eye):
         wanted, read = ordered.cylinder, seen.cylinder
         yield _check(matter, "cylinder", f"cylinder.{eye}", eye, wanted, read, "D", ROOT_TWO, sizes)
-    if axis_read and seen.cylinder and ordered.cylinder and matter.row("axis", sizes):
+    if axis_read and seen.cylinder and ordered.cylinder and matter.row("axis", sizes, eye=eye):
         turn = half_turn(seen.axis - ordered.axis + 90) - 90
-        yield _check(
+        axis = _check(
             matter, "axis", f"axis.{eye}", eye, ordered.axis, ordered.axis + turn, "°", 1.0, sizes
         )
+        yield replace(axis, read=half_turn(axis.read) or Decimal(180))
 
 
 def _add_check(matter: Matter, eye: Eye, wanted: Decimal, read: Decimal) -> Iterator[Check]:
     sizes = {"add": wanted}
-    if matter.row("add", sizes):
+    if matter.row("add", sizes, eye=eye):
         yield _check(matter, "add", f"add.{eye}", eye, wanted, read, "D", ROOT_TWO, sizes)
 
 
@@ -92,7 +113,7 @@ def _check(
     sizes: dict[str, Decimal],
 ) -> Check:
     """One check; `readings` is the root of how many focus readings make up the figure."""
-    row = matter.row(id_, sizes)
+    row = matter.row(id_, sizes, eye=eye)
     assert row is not None  # the callers have looked
     deviation, limit = read - ordered, row.limit(sizes)
     one = matter.uncertainty.axis_deg if unit == "°" else matter.uncertainty.power_d

@@ -7,7 +7,13 @@ from decimal import Decimal
 
 from pycore.bench.doubt import chance_within, chance_within_circle
 from pycore.bench.matter import MERIDIAN, PAIR, Check, Matter, component_of
-from pycore.bench.verdict_position import distance_check, height_check, position_check
+from pycore.bench.verdict_position import (
+    distance_check,
+    height_check,
+    open_row,
+    position_check,
+    position_row,
+)
 from pycore.decimals import snap
 from pycore.editions.edition import Row
 from pycore.optics.power import Power
@@ -27,8 +33,8 @@ def prism_checks(matter: Matter) -> Iterator[Check]:
     if matter.pair_is_ordered and len(matter.reads) == 2:
         for component in COMPONENTS:
             yield from _pair_checks(matter, component, counts=mounted)
-    for eye in matter.dues:
-        if eye not in matter.reads or matter.dues[eye].partner:
+    for eye in matter.own_eyes:
+        if eye not in matter.reads:
             continue
         if mounted:
             yield from _each_lens_checks(matter, eye)
@@ -104,8 +110,8 @@ def _pair_checks(matter: Matter, component: str, counts: bool) -> Iterator[Check
         return
     if component == "vertical" and not matter.vertical_pair_is_readable:
         return
-    if component == "vertical" and not all(due.vertical_known for due in matter.dues.values()):
-        counts = True  # without the thinning only the pair can be judged vertically
+    if component == "vertical" and pair_decides_vertical(matter):
+        counts = True
     row, limit = found
     uncertainty = pair_uncertainty(matter)
     right, left = matter.dues["right"].expected, matter.dues["left"].expected
@@ -127,11 +133,16 @@ def _pair_checks(matter: Matter, component: str, counts: bool) -> Iterator[Check
     )
     check_of = height_check if component == "vertical" else distance_check
     other = check_of(matter, prism) if counts else None
-    if other and other.counts and matter.option("prism-alternatives") == "replace":
-        prism = _as_information(prism)
-    yield prism
+    replaced = matter.option("prism-alternatives") == "replace" and open_row(matter, component)
+    yield _as_information(prism) if counts and replaced else prism
     if other:
         yield other
+
+
+def pair_decides_vertical(matter: Matter) -> bool:
+    """Tell whether only the pair can be judged vertically: the thinning is not known, or a
+    lens has no marked vertical point."""
+    return not all(lens_vertical_is_known(matter, eye) for eye in matter.own_eyes)
 
 
 def _as_information(check: Check) -> Check:
@@ -143,7 +154,7 @@ def _each_lens_checks(matter: Matter, eye: Eye) -> Iterator[Check]:
     for component in COMPONENTS:
         if component == "vertical" and not lens_vertical_is_known(matter, eye):
             continue
-        row = matter.row(f"prism.{component}.each", {})
+        row = matter.row(f"prism.{component}.each", {}, eye=eye)
         if row:
             yield _component_check(matter, eye, component, row, row.limit({}), f"each.{eye}")
 
@@ -167,7 +178,7 @@ def lens_sizes(matter: Matter, eye: Eye, component: str) -> dict[str, Decimal]:
 def lens_row(matter: Matter, eye: Eye, component: str) -> tuple[Row, Decimal] | None:
     """A single lens's row for one component and its limit in prism dioptres, or None."""
     sizes = lens_sizes(matter, eye, component)
-    row = matter.row("prism.lens", sizes, component=component)
+    row = matter.row("prism.lens", sizes, component=component, eye=eye)
     return (row, row.limit(sizes)) if row else None
 
 
@@ -186,7 +197,8 @@ def lens_checks(matter: Matter, eye: Eye) -> Iterator[Check]:
     """The checks of one uncut or edged lens, in prism dioptres and mm."""
     if judged_as_vector(matter, eye):
         prism = _vector_check(matter, eye)
-        yield prism
+        replaced = matter.option("prism-alternatives") == "replace" and position_row(matter, eye)
+        yield _as_information(prism) if replaced else prism
         position = position_check(matter, eye, prism)
         if position:
             yield position

@@ -112,6 +112,8 @@ def _read_row(fields: Fields, local: bool) -> Row:
         meridians=fields.word("meridians", ("strongest", "both")) or "strongest",
     )
     if limit:
+        if not limit.has("fixed") and not limit.has("per_dioptre"):
+            limit.refuse("number-missing", "fixed", "", "type-number")
         limit.finish()
     fields.finish()
     return row
@@ -146,7 +148,10 @@ def _read_row_option(fields: Fields) -> tuple[str, str] | None:
     if inner is None:
         return None
     name = inner.word("id", tuple(OPTIONS))
-    value = inner.word("value", OPTIONS[name]) if name else None
+    value = inner.word("value", OPTIONS[name]) if name else inner.text("value")
+    for part in ("id", "value"):
+        if not inner.has(part):
+            inner.refuse("choice-missing", part, "", "choose-one", allowed=", ".join(OPTIONS))
     inner.finish()
     return (name, value) if name and value else None
 

@@ -79,6 +79,8 @@ def from_base(amount: Decimal, base_deg: Decimal) -> Prism:
     exact = _QUARTERS.get(base_deg % 360)
     if exact is not None:
         return Prism(amount * exact[0] + 0, amount * exact[1] + 0)
+    if base_deg % 360 >= 180:  # in decimals, so that theta and theta + 180 cancel exactly
+        return -from_base(amount, base_deg % 360 - 180)
     degrees = float(base_deg)
     return Prism(
         from_float(float(amount) * cosine(degrees)), from_float(float(amount) * sine(degrees))

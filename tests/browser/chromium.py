@@ -38,7 +38,8 @@ def find() -> Path | None:
 def succeeds(*command: str) -> bool:
     """Whether a command can be run and ends well; its output is shown only if it does not."""
     try:
-        finished = subprocess.run(command, capture_output=True, text=True, env={**os.environ, "DEBIAN_FRONTEND": "noninteractive"})
+        environment = {**os.environ, "DEBIAN_FRONTEND": "noninteractive"}
+        finished = subprocess.run(command, capture_output=True, text=True, env=environment, check=False)
     except OSError:
         return False
     if finished.returncode != 0:

@@ -9,7 +9,7 @@ from types import ModuleType
 from typing import Any
 
 import pytest
-from playwright.sync_api import BrowserContext, Page, expect
+from playwright.sync_api import Page, expect
 
 RESULTS = Path(__file__).resolve().parents[2] / "test-results"
 
@@ -35,7 +35,7 @@ def browser_type_launch_args(browser_type_launch_args: dict[str, Any]) -> dict[s
 
 
 @pytest.fixture
-def watched(context: BrowserContext) -> Iterator[Callable[[Page], Page]]:
+def watched() -> Iterator[Callable[[Page], Page]]:
     """A function that makes the test fail for any error which a page reports."""
     errors: list[str] = []
 

@@ -133,7 +133,10 @@ def show(what: str, value: str, goal: str = "") -> None:
 
 def measure_starts(browser: Browser, plain_address: str) -> dict[str, list[float]]:
     """The three starts, interleaved, and whether each first paint came before the engine was read."""
-    addresses = {"folder": (ROOT / "dist" / "index.html").as_uri(), "single file": (ROOT / "dist-single" / "wedgewright.html").as_uri()}
+    addresses = {
+        "folder": (ROOT / "dist" / "index.html").as_uri(),
+        "single file": (ROOT / "dist-single" / "wedgewright.html").as_uri(),
+    }
     times: dict[str, list[float]] = {"plain": [], "folder": [], "single file": [], "paint": [], "read": []}
     for _ in range(STARTS):
         for name in ("plain", "folder", "single file"):

@@ -73,4 +73,10 @@ async function main() {
   await writeFolder(resolve(values.single), { "wedgewright.html": singlePage(page) });
 }
 
-await main();
+try {
+  await main();
+} catch (error) {
+  // Not left to Node, whose own report quotes the line of Pyodide's script, which is a megabyte long.
+  console.error(error instanceof Error ? error.stack : error);
+  process.exitCode = 1;
+}

@@ -1,0 +1,289 @@
+"""What the door can be asked to do; each action takes the envelope and answers with an entry."""
+
+import json
+from collections.abc import Callable, Mapping
+from decimal import Decimal
+from typing import Any, NoReturn
+
+from pycore.bench.setting import snap_to_step
+from pycore.contract import JOB_FORMAT, check_job_size
+from pycore.data import package_text
+from pycore.decimals import decimal_places, fixed
+from pycore.echo import echo_of
+from pycore.editions.edition import OPTIONS, Edition
+from pycore.editions.reader import BUILT_IN, built_in, read_edition
+from pycore.errors import Fault, Note, RefusedError
+from pycore.job.bench import Instrument, read_instrument, taken_by_compensator
+from pycore.job.body import Lens
+from pycore.job.document import PAIR_PD_MM, Job, read_job
+from pycore.job.fields import Fields
+from pycore.job.line import read_line
+from pycore.job.order import EyeOrder, read_eye
+from pycore.names import Entry
+from pycore.optics.prism import EYES, Eye, Prism, horizontal_word, vertical_word
+from pycore.report import case_of, note_entry, order_lines, report_of
+from pycore.result import result_text
+
+Source = Mapping[str, Any]
+Action = Callable[[Source, Fields], Entry]
+MAXIMUM_EDITIONS = 20
+MAXIMUM_SECTIONS = 20
+MAXIMUM_STEPS = "400"
+
+
+def _refuse(code: str, field: str, given: str, fix: str, **params: str) -> NoReturn:
+    raise RefusedError((Fault(code=code, field=field, given=given[:64], params=params, fix=fix),))
+
+
+def _job_source(envelope: Source) -> Source:
+    job = envelope.get("job")
+    if not isinstance(job, Mapping):
+        _refuse("object-expected", "job", str(job), "send-again")
+    check_job_size(job)
+    if "format" not in job:
+        _refuse("format-unknown", "format", "", "use-format", format=JOB_FORMAT)
+    return job
+
+
+def _checked(fields: Fields) -> None:
+    """Refuse the envelope where one of its keys is wrong or unknown."""
+    fields.finish()
+    if fields.faults:
+        raise RefusedError(tuple(fields.faults))
+
+
+def _report(envelope: Source, fields: Fields) -> Entry:
+    scenes, text = fields.flag("scenes"), fields.flag("text")
+    for key in ("job", "editions", "sections"):
+        fields.raw(key)
+    _check_sections(envelope.get("sections"))
+    _checked(fields)
+    source = _job_source(envelope)
+    job = read_job(source)
+    report = report_of(case_of(job, _edition_for(job, envelope)), scenes=scenes)
+    report["echo"] = echo_of(source)
+    if text:
+        report["text"] = result_text(report)
+    return report
+
+
+def _check_sections(sections: Any) -> None:
+    """The names of sections to work out; order and verdict alone so far."""
+    if sections is None:
+        return
+    if not isinstance(sections, list) or len(sections) > MAXIMUM_SECTIONS:
+        _refuse("list-expected", "sections", "", "send-again")
+    for name in sections:
+        _refuse("choice-unknown", "sections", str(name), "choose-one", allowed="\u2013")
+
+
+def _edition_for(job: Job, envelope: Source) -> Edition | None:
+    """The edition a job names, with its options and state checked."""
+    if job.edition is None:
+        return None
+    shop = _shop_editions(envelope)
+    if job.edition not in (*BUILT_IN, *shop):
+        allowed = ", ".join((*BUILT_IN, *shop))
+        _refuse("edition-unknown", "edition", job.edition, "choose-one", allowed=allowed)
+    edition = shop.get(job.edition) or built_in(job.edition)
+    faults = [*_option_faults(job, edition)]
+    if job.state not in edition.states:
+        others = [*map(built_in, BUILT_IN), *shop.values()]
+        covering = ", ".join(other.name for other in others if job.state in other.states)
+        faults.append(
+            Fault(
+                code="edition-does-not-cover-state",
+                field="edition",
+                given=job.edition,
+                params={"edition": edition.name, "state": job.state, "allowed": covering},
+                fix="choose-edition",
+            )
+        )
+    if faults:
+        raise RefusedError(tuple(faults))
+    return edition
+
+
+def _option_faults(job: Job, edition: Edition) -> list[Fault]:
+    faults = []
+    for name, value in job.edition_options.items():
+        allowed = OPTIONS.get(name, ()) if name in edition.options else ()
+        if value not in allowed:
+            code = "choice-unknown" if allowed else "option-not-offered"
+            params = {"allowed": ", ".join(allowed or edition.options), "edition": edition.name}
+            field = f"edition_options.{name}"
+            faults.append(
+                Fault(code=code, field=field, given=value, params=params, fix="choose-one")
+            )
+    return faults
+
+
+def _shop_editions(envelope: Source) -> dict[str, Edition]:
+    given = envelope.get("editions")
+    if given is None:
+        return {}
+    if not isinstance(given, list) or len(given) > MAXIMUM_EDITIONS:
+        _refuse("list-expected", "editions", "", "send-again")
+    editions = {}
+    for source in given:
+        edition = read_edition(source, local=True)
+        if edition.id in BUILT_IN:
+            _refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
+        if edition.id in editions:
+            _refuse("edition-id-twice", "edition.id", edition.id, "rename-edition")
+        editions[edition.id] = edition
+    return editions
+
+
+def _check_edition(envelope: Source, fields: Fields) -> Entry:
+    fields.raw("edition")
+    _checked(fields)
+    edition = read_edition(envelope.get("edition") or {}, local=True)
+    if edition.id in BUILT_IN:
+        _refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
+    return {"format": "wedgewright.edition-check/1", "edition": _edition_entry(edition)}
+
+
+def _list_editions(envelope: Source, fields: Fields) -> Entry:
+    fields.raw("editions")
+    _checked(fields)
+    editions = [*map(built_in, BUILT_IN), *_shop_editions(envelope).values()]
+    return {"format": "wedgewright.editions/1", "editions": list(map(_edition_entry, editions))}
+
+
+def _edition_entry(edition: Edition) -> Entry:
+    return {
+        "id": edition.id,
+        "name": edition.name,
+        "states": list(edition.states),
+        "provenance": list(edition.provenances),
+        "sha256": edition.sha256,
+        "rows": len(edition.rows),
+        "options": [
+            {
+                "id": name,
+                "default": default,
+                "why": name,
+                "values": [{"id": value, "why": f"{name}.{value}"} for value in OPTIONS[name]],
+            }
+            for name, default in edition.options.items()
+        ],
+    }
+
+
+def _demonstration(_envelope: Source, fields: Fields) -> Entry:
+    _checked(fields)
+    job = json.loads(package_text("job/demonstration.json"))
+    return {"format": "wedgewright.demonstration/1", "job": job}
+
+
+def _read_order(envelope: Source, fields: Fields) -> Entry:
+    for key in ("line", "bases"):
+        fields.raw(key)
+    _checked(fields)
+    line, bases = envelope.get("line"), envelope.get("bases", "360")
+    if not isinstance(line, str):
+        _refuse("text-expected", "line", str(line), "type-text")
+    if bases not in ("360", "180"):
+        _refuse("choice-unknown", "bases", str(bases), "choose-one", allowed="360, 180")
+    reading = read_line(line, bases)
+    if reading.errors:
+        raise RefusedError(reading.errors)
+    given = {"right": reading.right, "left": reading.left}
+    found = {eye: fields for eye, fields in given.items() if fields is not None}
+    orders, notes = _try_order(found, reading.pd_mm)
+    lines = {order.eye: order_lines(order) for order in orders}
+    answer: Entry = {
+        "format": "wedgewright.order/1",
+        **found,
+        "echo": [text for texts in lines.values() for text in texts],
+        "order_lines": lines,
+        "notes": [note_entry(note) for note in (*reading.notes, *notes)],
+    }
+    if reading.lens:
+        answer["lens"] = dict(reading.lens)
+    if reading.pd_mm is not None:
+        answer["pd_mm"] = reading.pd_mm
+    return answer
+
+
+def _try_order(found: Source, pd_mm: str | None) -> tuple[list[EyeOrder], list[Note]]:
+    """Read the eyes of a line as a job would, so that figures out of range are refused here."""
+    faults, notes = list[Fault](), list[Note]()
+    fields = Fields({**found, "pd_mm": pd_mm}, "", faults)
+    fields.number("pd_mm", *PAIR_PD_MM)
+    orders = [read_eye(inner, eye, Lens(), notes) for eye in EYES if (inner := fields.child(eye))]
+    if faults:
+        raise RefusedError(tuple(faults))
+    return orders, notes
+
+
+def _eye(envelope: Source) -> Eye:
+    eye = envelope.get("eye")
+    if eye not in EYES:
+        _refuse("choice-unknown", "eye", str(eye), "choose-one", allowed=", ".join(EYES))
+    return "right" if eye == "right" else "left"
+
+
+def _touch(envelope: Source, fields: Fields) -> Entry:
+    """Where the target was touched on the dial, as a reading at the instrument's step."""
+    eye = _eye(envelope)
+    job = fields.raw("job")
+    given = job.get("instrument") if isinstance(job, Mapping) else None
+    instrument = read_instrument(Fields(given or {}, "instrument", fields.faults))
+    x, y = fields.number("x", "-60", "60"), fields.number("y", "-60", "60")
+    for name in ("x", "y"):
+        if not fields.has(name):
+            fields.refuse("number-missing", name, "", "type-number")
+    fields.raw("eye")
+    _checked(fields)
+    seen = Prism(x or Decimal(0), y or Decimal(0))
+    return _reading(eye, snap_to_step(seen, instrument.prism_step), instrument)
+
+
+def _step(envelope: Source, fields: Fields) -> Entry:
+    """The reading moved by whole steps; where nothing is read yet, from the expected point."""
+    eye = _eye(envelope)
+    right = fields.number("right", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
+    up = fields.number("up", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
+    fine = fields.flag("fine")
+    for key in ("job", "eye"):
+        fields.raw(key)
+    _checked(fields)
+    job = read_job(_job_source(envelope))
+    due = case_of(job, None).dues.get(eye)
+    if due is None:
+        _refuse("eye-not-there", eye, "", "order-eye-first")
+    step = job.instrument.fine_step if fine else job.instrument.prism_step
+    reading = job.readings.of(eye)
+    if reading.prism:
+        start = reading.prism.seen
+    else:
+        taken = taken_by_compensator(reading.compensator, job.instrument.compensator)
+        start = snap_to_step(due.expected - taken, step)
+    return _reading(eye, start + Prism(right * step, up * step), job.instrument)
+
+
+def _reading(eye: Eye, seen: Prism, instrument: Instrument) -> Entry:
+    """A reading as the job document writes it, horizontal first, both always there."""
+    places = max(2, *(decimal_places(part) for part in (seen.x, seen.y, instrument.prism_step)))
+    across, along = horizontal_word(eye, seen.x) or "in", vertical_word(seen.y) or "up"
+    return {
+        "format": "wedgewright.reading/1",
+        "eye": eye,
+        "prism": [
+            {"amount": fixed(abs(seen.x), places), "base": across},
+            {"amount": fixed(abs(seen.y), places), "base": along},
+        ],
+    }
+
+
+ACTIONS: Mapping[str, Action] = {
+    "report": _report,
+    "read-order": _read_order,
+    "touch": _touch,
+    "step": _step,
+    "check-edition": _check_edition,
+    "list-editions": _list_editions,
+    "demonstration": _demonstration,
+}
