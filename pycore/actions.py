@@ -59,8 +59,12 @@ def _report(envelope: Source, fields: Fields) -> Entry:
     _check_sections(envelope.get("sections"))
     _checked(fields)
     source = _job_source(envelope)
-    job = read_job(source)
-    report = report_of(case_of(job, _edition_for(job, envelope)), scenes=scenes)
+    try:
+        job = read_job(source)
+        edition = _edition_for(job, envelope)
+    except RefusedError as refused:
+        raise RefusedError(refused.faults, echo_of(source)) from None
+    report = report_of(case_of(job, edition), scenes=scenes)
     report["echo"] = echo_of(source)
     if text:
         report["text"] = result_text(report)

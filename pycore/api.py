@@ -36,6 +36,8 @@ def handle(request: str) -> str:
             answer = ACTIONS["report"]({"job": source}, Fields({}, "", []))
     except RefusedError as refused:
         answer = refusal(refused.faults)
+        if refused.echo:
+            answer["echo"] = refused.echo
     except Exception as error:  # the door's promise: a slip of ours is an answer, not a crash
         fault = Fault(
             code="internal", field="", params={"kind": type(error).__name__}, fix="report-fault"

@@ -44,10 +44,13 @@ class Note:
 class RefusedError(Exception):
     """Carries every fault found in one request to the door. Internal to the package.
 
+    Arguments: `faults`; `echo` what was understood all the same, by path.
+
     >>> RefusedError((Fault(code="a", field="b"),)).faults[0].field
     'b'
     """
 
-    def __init__(self, faults: tuple[Fault, ...]) -> None:
+    def __init__(self, faults: tuple[Fault, ...], echo: Mapping[str, str] | None = None) -> None:
         super().__init__(", ".join(f"{fault.field}: {fault.code}" for fault in faults))
         self.faults = faults
+        self.echo = dict(echo or {})
