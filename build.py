@@ -174,8 +174,12 @@ def serve() -> None:
 
 
 def python_with(*purposes: str) -> dict[str, str]:
-    """The environment in which this Python finds the packages of these purposes, and the core."""
-    return {"PYTHONPATH": os.pathsep.join([str(ROOT), *(str(install_python(purpose)) for purpose in purposes)])}
+    """The environment in which this Python finds the packages of these purposes, and the core.
+
+    The browser's driver is given our Node: the one it brings needs a library that a fresh Debian lacks.
+    """
+    folders = [ROOT, *(install_python(purpose) for purpose in purposes)]
+    return {"PYTHONPATH": os.pathsep.join(map(str, folders)), "PLAYWRIGHT_NODEJS_PATH": str(node())}
 
 
 def run_python(*arguments: str | Path, purposes: tuple[str, ...]) -> None:
@@ -200,10 +204,11 @@ def test() -> None:
     install_wheels()
     install_browser()
     build()
-    coverage = ["--cov=pycore", "--cov-report=term:skip-covered"]
+    # The report is made by a process of its own: Python 3.11.2 may refuse to parse after a test has exhausted its stack.
     run_all(
         lambda: run_node("--test", "--test-force-exit", *sorted((ROOT / "tests" / "web").glob("test_*.mjs"))),
-        lambda: run_python("-m", "pytest", *coverage, purposes=("test", "build")),
+        lambda: run_python("-m", "coverage", "run", "-m", "pytest", purposes=("test", "build")),
+        lambda: run_python("-m", "coverage", "report", purposes=("test",)),
     )
 
 

@@ -6,6 +6,7 @@ from decimal import Decimal
 from typing import Any, NoReturn
 
 from pycore.bench.setting import snap_to_step
+from pycore.case import case_of
 from pycore.contract import JOB_FORMAT, check_job_size
 from pycore.data import package_text
 from pycore.decimals import decimal_places, fixed
@@ -21,13 +22,13 @@ from pycore.job.line import read_line
 from pycore.job.order import EyeOrder, read_eye
 from pycore.names import Entry
 from pycore.optics.prism import EYES, Eye, Prism, horizontal_word, vertical_word
-from pycore.report import case_of, note_entry, order_lines, report_of
+from pycore.report import note_entry, order_lines, report_of
 from pycore.result import result_text
+from pycore.sections import SECTIONS, add_sections
 
 Source = Mapping[str, Any]
 Action = Callable[[Source, Fields], Entry]
 MAXIMUM_EDITIONS = 20
-MAXIMUM_SECTIONS = 20
 MAXIMUM_STEPS = "400"
 
 
@@ -56,7 +57,7 @@ def _report(envelope: Source, fields: Fields) -> Entry:
     scenes, text = fields.flag("scenes"), fields.flag("text")
     for key in ("job", "editions", "sections"):
         fields.raw(key)
-    _check_sections(envelope.get("sections"))
+    wanted = _wanted_sections(envelope.get("sections"))
     _checked(fields)
     source = _job_source(envelope)
     try:
@@ -64,21 +65,27 @@ def _report(envelope: Source, fields: Fields) -> Entry:
         edition = _edition_for(job, envelope)
     except RefusedError as refused:
         raise RefusedError(refused.faults, echo_of(source)) from None
-    report = report_of(case_of(job, edition), scenes=scenes)
+    case = case_of(job, edition)
+    report = report_of(case, scenes=scenes)
+    add_sections(report, case, wanted, scenes=scenes)
     report["echo"] = echo_of(source)
     if text:
         report["text"] = result_text(report)
     return report
 
 
-def _check_sections(sections: Any) -> None:
-    """The names of sections to work out; order and verdict alone so far."""
+def _wanted_sections(sections: Any) -> tuple[str, ...]:
+    """The names of the sections to work out: all where nothing is said, none for an empty list."""
     if sections is None:
-        return
-    if not isinstance(sections, list) or len(sections) > MAXIMUM_SECTIONS:
+        return tuple(SECTIONS)
+    if not isinstance(sections, list):
         _refuse("list-expected", "sections", "", "send-again")
     for name in sections:
-        _refuse("choice-unknown", "sections", str(name), "choose-one", allowed="\u2013")
+        if name not in SECTIONS:
+            _refuse(
+                "choice-unknown", "sections", str(name), "choose-one", allowed=", ".join(SECTIONS)
+            )
+    return tuple(dict.fromkeys(sections))
 
 
 def _edition_for(job: Job, envelope: Source) -> Edition | None:

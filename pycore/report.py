@@ -1,13 +1,10 @@
 """Makes the report of one job: what is due, what was read, the verdict, the pictures."""
 
-from collections.abc import Mapping
-from dataclasses import dataclass
 from decimal import Decimal
 
 import pycore
 from pycore.bench.expected import (
     Due,
-    due,
     notes_on_thinning,
     notes_on_thinning_found,
     read_first,
@@ -15,7 +12,6 @@ from pycore.bench.expected import (
     sightings_of,
     thinning_found,
 )
-from pycore.bench.matter import Matter, matter_of
 from pycore.bench.order_check import order_notes
 from pycore.bench.point import point_of
 from pycore.bench.region import region_of
@@ -26,14 +22,12 @@ from pycore.bench.setting import (
     setting_onto_rings,
     setting_to_centre,
 )
-from pycore.bench.verdict import Verdict, judge
 from pycore.bench.verdict_prism import lens_uncertainty
+from pycore.case import Case
 from pycore.contract import CONTRACT, REPORT_FORMAT
 from pycore.decimals import fixed, snap
-from pycore.editions.edition import Edition
 from pycore.errors import Note
 from pycore.job.bench import taken_by_compensator
-from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 from pycore.names import (
     Entry,
@@ -52,36 +46,6 @@ from pycore.scenes.dial import DialView, close_scene, dial_scene
 from pycore.words import say
 
 SINGULAR = Decimal("0.25")  # dioptres; below, decentring would need centimetres
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Case:
-    """One job with everything that its report is made of."""
-
-    job: Job
-    edition: Edition | None
-    dues: Mapping[Eye, Due]
-    matter: Matter | None
-    verdict: Verdict | None
-
-
-def case_of(job: Job, edition: Edition | None) -> Case:
-    """Think one job through. Arguments: `job`; `edition`, or None for no verdict."""
-    matter = matter_of(job, edition) if edition and _has_design(job) else None
-    return Case(
-        job=job,
-        edition=edition,
-        dues={eye: found for eye in EYES if (found := due(job, eye))},
-        matter=matter,
-        verdict=judge(matter) if matter else None,
-    )
-
-
-def _has_design(job: Job) -> bool:
-    """Without a design a lens with an add could be of two kinds, with two sets of limits."""
-    return any(order.lens.design for order in job.orders) or not any(
-        order.verified.add for order in job.orders
-    )
 
 
 def report_of(case: Case, *, scenes: bool) -> Entry:

@@ -64,6 +64,13 @@ class Recorder(Fields):
         """Record a power."""
         return self.number(name, "-" + high, high)
 
+    def numbers(self, name: str, most: int, low: str, high: str) -> tuple[Decimal, ...]:
+        """Record a list of numbers."""
+        ends = {"minimum": _json_number(low), "maximum": _json_number(high)}
+        items = {**_NUMBER, **ends}
+        self._note(name, {"type": ["array", "null"], "items": items, "maxItems": most})
+        return ()
+
     def child(self, name: str) -> "Fields | None":
         """Record an object and walk on into it."""
         inner = Recorder(self.at(name))

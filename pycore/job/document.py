@@ -7,12 +7,22 @@ from typing import Any
 
 from pycore.errors import Fault, Note, RefusedError
 from pycore.job.bench import Instrument, Readings, read_instrument, read_readings
-from pycore.job.body import Frame, Lens, Wear, read_frame, read_lens, read_wear
+from pycore.job.body import (
+    Frame,
+    Lens,
+    Place,
+    Wear,
+    read_frame,
+    read_lens,
+    read_places,
+    read_wear,
+)
 from pycore.job.fields import Fields
 from pycore.job.order import EyeOrder, read_eye
 from pycore.optics.prism import EYES, Eye
 
 FORMAT = "wedgewright.job/1"
+MAXIMUM_POINTS = 200
 PAIR_PD_MM = ("30", "100")
 STATES = ("uncut", "edged", "mounted")
 RULES = ("none", "two-thirds", "six-tenths", "amount", "unknown")
@@ -30,7 +40,12 @@ class Thinning:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Job:
-    """One job of the bench, as frozen values. `notes` are what reading it had to say."""
+    """One job of the bench, as frozen values. `notes` are what reading it had to say.
+
+    `centration_shift_mm`: how far the reference point moves for each prism dioptre, opposite to
+    the base, where the distances were taken without the prism; None for no shift. `field_limit`:
+    the vertical imbalance (prism dioptres) whose zone is drawn.
+    """
 
     id: str | None
     state: str
@@ -44,6 +59,9 @@ class Job:
     right: EyeOrder | None
     left: EyeOrder | None
     pd_mm: Decimal | None
+    points: Mapping[Eye, tuple[Place, ...]]
+    centration_shift_mm: Decimal | None
+    field_limit: Decimal | None
     instrument: Instrument
     readings: Readings
     demonstration: bool
@@ -109,6 +127,9 @@ def read_fields(fields: Fields) -> Job:
         right=eyes["right"],
         left=eyes["left"],
         pd_mm=fields.number("pd_mm", *PAIR_PD_MM),
+        points=_read_points(fields),
+        centration_shift_mm=fields.number("centration_shift_mm", "0", "1"),
+        field_limit=fields.number("field_limit", "0.1", "10"),
         instrument=instrument,
         readings=read_readings(readings, instrument, notes) if readings else Readings(),
         demonstration=fields.flag("demonstration"),
@@ -123,6 +144,16 @@ def read_fields(fields: Fields) -> Job:
 def _read_order(fields: Fields, eye: Eye, lens: Lens, notes: list[Note]) -> EyeOrder | None:
     inner = fields.child(eye)
     return read_eye(inner, eye, lens, notes) if inner else None
+
+
+def _read_points(fields: Fields) -> dict[Eye, tuple[Place, ...]]:
+    """The points of each lens at which the prism is asked for."""
+    inner = fields.child("points")
+    if inner is None:
+        return {}
+    points = {eye: read_places(inner, eye, MAXIMUM_POINTS) for eye in EYES}
+    inner.finish()
+    return points
 
 
 def _require_an_eye(fields: Fields, job: Job) -> None:

@@ -133,6 +133,22 @@ class Fields:
         for index, item in enumerate(value[:most]):
             yield Fields(item, f"{self.at(name)}[{index}]", self.faults)
 
+    def numbers(self, name: str, most: int, low: str, high: str) -> tuple[Decimal, ...]:
+        """The numbers of a list, at most `most`, each within [low, high]; empty where absent."""
+        value = self.raw(name)
+        if value is None:
+            return ()
+        if not isinstance(value, list) or len(value) > most:
+            self.refuse("list-expected", name, "", "send-again")
+            return ()
+        items = Fields({str(index): item for index, item in enumerate(value)}, "", [])
+        read = [items.number(str(index), low, high) for index in range(len(value))]
+        for fault in items.faults:
+            self.refuse(
+                fault.code, f"{name}[{fault.field}]", fault.given, fault.fix, **fault.params
+            )
+        return tuple(number for number in read if number is not None)
+
     def finish(self) -> None:
         """Refuse every key that nobody read."""
         for key in self._source:

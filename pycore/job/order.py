@@ -6,7 +6,7 @@ from typing import Any
 
 from pycore.decimals import NumberError, read_decimal
 from pycore.errors import Note
-from pycore.job.body import Lens, Segment, read_lens, read_segment
+from pycore.job.body import Lens, Segment, Surfacing, read_lens, read_segment, read_surfacing
 from pycore.job.fields import Fields
 from pycore.optics.power import Power
 from pycore.optics.prism import Eye, Prism, Word, base_of_word, from_base, total
@@ -61,6 +61,7 @@ class EyeOrder:
     fitting_height_mm: Decimal | None = None
     cross_above_prp_mm: Decimal | None = None
     segment: Segment | None = None
+    surfacing: Surfacing | None = None
     lens: Lens = field(default_factory=Lens)
 
     @property
@@ -211,7 +212,7 @@ def read_eye(fields: Fields, eye: Eye, lens: Lens, notes: list[Note]) -> EyeOrde
     """
     prescribed = _read_target(fields, eye, notes)
     stated = fields.child("stated")
-    segment = fields.child("segment")
+    segment, surfacing = fields.child("segment"), fields.child("surfacing")
     order = EyeOrder(
         eye=eye,
         prescribed=prescribed,
@@ -224,6 +225,7 @@ def read_eye(fields: Fields, eye: Eye, lens: Lens, notes: list[Note]) -> EyeOrde
         fitting_height_mm=fields.number("fitting_height_mm", "0", "80"),
         cross_above_prp_mm=fields.number("cross_above_prp_mm", "-10", "20"),
         segment=read_segment(segment) if segment else None,
+        surfacing=read_surfacing(surfacing) if surfacing else None,
         lens=read_lens(fields, lens),
     )
     fields.finish()

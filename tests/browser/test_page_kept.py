@@ -2,30 +2,40 @@
 
 from __future__ import annotations
 
+import contextlib
 import os
 import re
 import signal
-import subprocess
 import time
-from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
-from playwright.sync_api import Browser, BrowserType, Page, expect
+from playwright.sync_api import BrowserType, Page, expect
 
-Start = Callable[[], tuple[Browser, Page]]
+
+def processes_of(profile: Path) -> list[int]:
+    """The processes of the browser that this test started, known by the profile on their command line."""
+    mark = f"--user-data-dir={profile}".encode()
+    found = []
+    for entry in Path("/proc").iterdir():
+        try:
+            if entry.name.isdigit() and mark in (entry / "cmdline").read_bytes():
+                found.append(int(entry.name))
+        except OSError:
+            continue  # it ended meanwhile
+    return found
 
 
 def kill_browser(profile: Path) -> None:
-    """End, with the harshest signal, the browser process of one profile, found by its own command line."""
-    found = subprocess.run(["pgrep", "-f", f"--user-data-dir={profile}"], capture_output=True, text=True, check=False)
-    for identifier in found.stdout.split():
-        os.kill(int(identifier), signal.SIGKILL)
+    """End them with the harshest signal, in no order, and wait until they are gone."""
+    started = processes_of(profile)
+    assert started, "there is no browser to kill"
+    for identifier in started:
+        with contextlib.suppress(ProcessLookupError):
+            os.kill(identifier, signal.SIGKILL)
     deadline = time.monotonic() + 20
-    while time.monotonic() < deadline:
-        if subprocess.run(["pgrep", "-f", f"--user-data-dir={profile}"], capture_output=True, check=False).returncode:
-            break
-        time.sleep(0.1)
+    while processes_of(profile) and time.monotonic() < deadline:
+        time.sleep(0.05)
     for lock in profile.glob("Singleton*"):
         lock.unlink(missing_ok=True)
 

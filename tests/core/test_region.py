@@ -37,9 +37,9 @@ def without_extras(job: Job) -> Job:
     job = copy.deepcopy(job)
     job["edition_options"].pop("prism-alternatives", None)
     for eye in EYES:
-        job["readings"].setdefault(eye, {"prism": [{"amount": "0"}]})
-        job["readings"][eye] = {"prism": [part for part in job["readings"][eye]["prism"] if job["readings"][eye].get("compensator") is None]} or {}
-        job["readings"][eye]["prism"] = job["readings"][eye]["prism"] or [{"amount": "0"}]
+        reading = job["readings"].get(eye, {})
+        seen = [] if "compensator" in reading else reading.get("prism", [])
+        job["readings"][eye] = {"prism": seen or [{"amount": "0"}]}
     return job
 
 

@@ -1,0 +1,37 @@
+"""The sections of the report beside order and verdict: one question, one module each.
+
+The list is `SECTIONS`; a section's name is its module here and in `bench`, its picture in
+`scenes`, its key in the report, its words.
+"""
+
+from collections.abc import Callable, Mapping, Sequence
+
+from pycore.case import Case
+from pycore.names import Entry, spoken
+from pycore.sections.answer import SectionAnswer
+
+SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {}
+
+
+def add_sections(report: Entry, case: Case, wanted: Sequence[str], *, scenes: bool) -> None:
+    """Work the wanted sections out and put each where the report has it.
+
+    Arguments: `report` to add to; `case`; `wanted` names; `scenes` whether to add pictures.
+    """
+    for name in wanted:
+        answer = SECTIONS[name](case)
+        if answer.own is not None:
+            report[name] = answer.own
+        for eye, entry in answer.eyes.items():
+            report[eye][name] = entry
+        report.setdefault("sections", {})[name] = {
+            "title": {"code": f"{name}.{answer.title}", "params": spoken(answer.title_params)},
+            "rows": [row.entry(name) for row in answer.rows],
+            "asks": [ask.entry() for ask in answer.asks],
+            "notes": [
+                {"code": f"{name}.{code}", "params": spoken(params)}
+                for code, params in answer.notes
+            ],
+        }
+        if scenes and answer.scenes:
+            report["scenes"][name] = dict(answer.scenes)
