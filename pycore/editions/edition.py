@@ -56,6 +56,18 @@ class Range:
             and (self.to is None or size <= self.to)
         )
 
+    def meets(self, other: "Range") -> bool:
+        """Tell whether a size could lie within both."""
+        return self._starts_before_end_of(other) and other._starts_before_end_of(self)
+
+    def _starts_before_end_of(self, other: "Range") -> bool:
+        start = self.over if self.over is not None else self.start
+        end = other.below if other.below is not None else other.to
+        if start is None or end is None:
+            return True
+        both_keep_it = self.over is None and other.below is None
+        return start < end or (start == end and both_keep_it)
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Row:
@@ -78,6 +90,20 @@ class Row:
     option: tuple[str, str] | None = None
     measure: str | None = None
     meridians: str = "strongest"
+
+    def overlaps(self, other: "Row") -> bool:
+        """Tell whether both rows could hold for one lens, so that the first would win silently."""
+        return (
+            self.check == other.check
+            and bool(set(self.designs) & set(other.designs))
+            and bool(set(self.states) & set(other.states))
+            and (self.component == other.component or None in (self.component, other.component))
+            and (self.option == other.option or None in (self.option, other.option))
+            and all(
+                self.ranges[quantity].meets(other.ranges[quantity])
+                for quantity in set(self.ranges) & set(other.ranges)
+            )
+        )
 
     def limit(self, sizes: Mapping[str, Decimal]) -> Decimal:
         """The limit for these sizes, exact. Arguments: sizes by quantity, in dioptres."""

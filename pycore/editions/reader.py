@@ -1,7 +1,7 @@
 """Reads an edition's JSON (ours and the shop's alike) into values, strictly."""
 
 import hashlib
-from collections.abc import Mapping
+from collections.abc import Iterator, Mapping
 from decimal import Decimal
 from functools import cache
 from typing import Any
@@ -65,10 +65,23 @@ def read_edition(source: Mapping[str, Any], local: bool) -> Edition:
     )
     if not fields.has("rows"):
         fields.refuse("rows-missing", "rows", "", "send-again")
+    for first, second in _overlapping(edition.rows):
+        params = {"first": str(first + 1), "second": str(second + 1)}
+        fields.refuse("edition-rows-overlap", "rows", "", "part-rows", **params)
     fields.finish()
     if faults:
         raise RefusedError(tuple(faults))
     return edition
+
+
+def _overlapping(rows: tuple[Row, ...]) -> Iterator[tuple[int, int]]:
+    """Pairs of rows, by their places, that could both hold for one lens."""
+    by_check: dict[str, list[tuple[int, Row]]] = {}
+    for place, row in enumerate(rows):
+        for earlier, other in by_check.get(row.check, []):
+            if row.overlaps(other):
+                yield earlier, place
+        by_check.setdefault(row.check, []).append((place, row))
 
 
 def _words(fields: Fields, name: str, allowed: tuple[str, ...]) -> tuple[str, ...]:

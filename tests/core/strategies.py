@@ -6,12 +6,15 @@
 import copy
 import json
 import os
+import re
 from decimal import ROUND_HALF_EVEN, Decimal
+from pathlib import Path
 from typing import Any
 
 from hypothesis import HealthCheck, settings
 from hypothesis import strategies as st
 
+import pycore
 from pycore.api import handle
 
 settings.register_profile("quick", max_examples=120, deadline=None, derandomize=True, suppress_health_check=[HealthCheck.too_slow])
@@ -19,6 +22,8 @@ settings.register_profile("long", max_examples=10_000, deadline=None, suppress_h
 settings.load_profile(os.environ.get("HYPOTHESIS_PROFILE", "quick"))
 
 Job = dict[str, Any]
+WORDS: dict[str, dict[str, str]] = json.loads((Path(pycore.__file__).parent / "words" / "en.json").read_text("utf-8"))
+HOLE = re.compile(r"\{(\w+)\}")
 EYES = ("right", "left")
 OPPOSITE = {"up": "down", "down": "up", "in": "out", "out": "in", "right": "left", "left": "right"}
 SEGMENTED = ("bifocal", "trifocal")
@@ -51,9 +56,37 @@ OPTIONS = {
 
 
 def answer_to(request: Any) -> dict[str, Any]:
-    """The door's answer to one request, given as an object."""
-    answer: dict[str, Any] = json.loads(handle(json.dumps(request, ensure_ascii=False)))
+    """The door's answer to one request, given as an object or as its text."""
+    text = request if isinstance(request, str) else json.dumps(request, ensure_ascii=False)
+    answered = handle(text)
+    answered.encode()  # any answer can be written to a file
+    answer: dict[str, Any] = json.loads(answered)
+    assert_said_in_full(answer)
     return answer
+
+
+def assert_said_in_full(answer: dict[str, Any]) -> None:
+    """Every code of an answer has its sentence, and every hole of it is filled."""
+    spoken = [("errors", error["code"], error["params"]) for error in answer.get("errors", [])]
+    spoken += [("fixes", error["fix"], error["params"]) for error in answer.get("errors", [])]
+    spoken += [("notes", note["code"], note["params"]) for note in answer.get("notes", [])]
+    if answer["format"] == "wedgewright.report/1":
+        spoken += [("points", answer[eye]["point"]["code"], answer[eye]["point"]["params"]) for eye in EYES if answer[eye]]
+        verdict = answer.get("verdict")
+        if verdict:
+            spoken += [("not_checked", item["code"], item["params"]) for item in verdict["not_checked"]]
+            spoken.append(("verdict", verdict["sentence"]["code"], verdict["sentence"]["params"]))
+            spoken += [("cautions", code, {}) for code in verdict["cautions"]]
+            spoken += [("options", option["why"], {}) for option in verdict["edition"]["options"]]
+    for group, code, params in spoken:
+        sentence = WORDS[group].get(code)
+        assert sentence, f"no words for {group}.{code}"
+        assert all(isinstance(value, str) for value in params.values()), (code, params)
+        missing = set(HOLE.findall(sentence)) - {name for name, value in params.items() if value or name == "given"}
+        assert not missing, f"{group}.{code} is not told {missing}"
+    for note in answer.get("notes", []):
+        assert note["severity"] in ("note", "warning", "ask")
+        assert note["about"] in ("order", "reading", "verdict", "instrument", "layout")
 
 
 def ask(do: str, **keys: Any) -> dict[str, Any]:

@@ -53,7 +53,7 @@ CASES: list[tuple[str, str, Job, dict[str, Any]]] = [
     ("prism-opposed-in-lens", "right.prism", CLEAN, {"right__prism": [*base("4", "in"), *base("1", "out")]}),
     ("prism-opposed-in-lens", "left.prism", CLEAN, {"left__prism": [*base("4", "in"), *base("2", "up"), *base("3.5", "down")]}),
     ("prism-zero-with-base", "right.prism", CLEAN, {"right__prism": base("0", "in")}),
-    ("single-vision-with-add", "right.add", CLEAN, {"right__add": "2.00", "left__add": "2.00"}),
+    ("single-vision-with-add", "left.add", CLEAN, {"right__add": "2.00", "left__add": "2.00"}),
     ("progressive-without-add", "right.add", PROGRESSIVE, {"right__add": None}),
     ("progressive-without-add", "left.add", PROGRESSIVE, {"left__add": "0"}),
     ("multifocal-without-add", "right.add", BIFOCAL, {"right__add": None}),

@@ -9,7 +9,7 @@ import { noteList } from "./notes.js";
 import { outcomeSymbol } from "./symbols.js";
 import { EYES } from "./types.js";
 import { outcomeOf, sentenceOf } from "./verdict.js";
-import { cautionLines, editionLines } from "./views/decide.js";
+import { cautionLines } from "./views/decide.js";
 import { say, shown } from "./words.js";
 
 /**
@@ -27,7 +27,8 @@ function lensPart(report, eye) {
     if (scene) drawScene(picture, scene, `print-${name}-${eye}`);
     return picture;
   });
-  return el("section", { class: "sheet-lens" }, el("h2", {}, say(`page.lenses.${eye}`)), el("div", { class: "sheet-dials" }, ...pictures), factList([...mainFacts(lens), ...moreFacts(lens)]));
+  const lines = (report.order_lines?.[eye] ?? []).map((line) => el("p", { class: "sheet-order" }, shown(line)));
+  return el("section", { class: "sheet-lens" }, el("h2", {}, say(`page.lenses.${eye}`)), ...lines, el("div", { class: "sheet-dials" }, ...pictures), factList([...mainFacts(lens), ...moreFacts(lens)]));
 }
 
 /** @param {import("./types.js").Verdict} verdict every check in one line */
@@ -36,14 +37,26 @@ function checkTable(verdict) {
   return el(
     "table",
     { class: "sheet-checks" },
-    el("thead", {}, el("tr", {}, el("th", { scope: "col" }, say("page.check.name")), ...columns.map((name) => el("th", { scope: "col" }, say(`page.check.${name}`))), el("th", { scope: "col" }, say("page.check.outcome")), el("th", { scope: "col" }, say("page.check.clause")))),
+    el("thead", {}, el("tr", {}, el("th", { scope: "col" }, say("page.check.name")), ...columns.map((name) => el("th", { scope: "col" }, say(`page.print.${name}`))), el("th", { scope: "col" }, say("page.check.outcome")), el("th", { scope: "col" }, say("page.check.clause")))),
     el(
       "tbody",
       {},
       ...verdict.checks.map((check) =>
-        el("tr", {}, el("th", { scope: "row" }, checkName(check)), ...columns.map((name) => el("td", {}, shown(check.shown[name] ?? ""))), el("td", {}, say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`)), el("td", {}, `${check.clause} (${say(`page.provenance.${check.provenance}`)})`)),
+        el("tr", {}, el("th", { scope: "row" }, checkName(check)), ...columns.map((name) => el("td", {}, shown(check.shown[name] ?? ""))), el("td", {}, say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`)), el("td", { class: "sheet-clause" }, `${say(`page.print.${check.provenance}`)}: ${check.clause}`)),
       ),
     ),
+  );
+}
+
+/** @param {import("./types.js").Verdict} verdict the edition by name and hash, each disputed reading by what was used */
+function editionPart({ edition }) {
+  const provenance = edition.provenance.map((one) => say(`page.provenance.${one}`)).join(", ");
+  const options = edition.options.map((option) => `${option.id} = ${option.value}${option.default ? "" : ` (${say("page.print.chosen")})`}`);
+  return el(
+    "div",
+    { class: "sheet-small" },
+    el("p", {}, el("strong", {}, edition.name), ` · ${provenance} · ${say(`page.values.decision_rule.${edition.rule}`)} · sha256 ${edition.sha256}`),
+    el("p", { class: "sheet-inputs" }, ...options.map((option) => el("span", {}, option))),
   );
 }
 
@@ -89,15 +102,14 @@ export function drawSheet(host, { standing, entries, hash, at }) {
     host,
     entries["demonstration"] === "true" ? el("p", { class: "sheet-demonstration" }, say("page.demonstration.banner")) : null,
     sheetHead(entries, at),
-    el("div", { class: "sheet-order" }, ...EYES.flatMap((eye) => (report.order_lines?.[eye] ?? []).map((line) => el("p", {}, shown(line))))),
     el("div", { class: "sheet-pair" }, ...EYES.map((eye) => lensPart(report, eye))),
     el("div", { class: "sheet-verdict", "data-outcome": outcome }, outcomeSymbol(outcome), el("div", {}, el("p", { class: "word" }, say(`page.outcomes.${outcome}`)), el("p", {}, sentenceOf(standing)))),
     ...(verdict ? verdictPart(verdict) : []),
     report.notes.length ? noteList(report.notes) : null,
-    verdict ? el("div", { class: "sheet-small" }, ...editionLines(verdict)) : null,
+    verdict ? editionPart(verdict) : null,
     inputs(entries),
     el("p", { class: "sheet-small" }, say("page.print.made_by", { program: report.made_by.program, contract: report.made_by.contract, hash })),
     el("div", { class: "sheet-sign" }, el("p", {}, say("page.print.initials")), el("p", { class: "sheet-box" }, by ? `${by} · ${entries["signed.at"] ?? ""}` : "")),
-    ...cautionLines(verdict?.cautions ?? []),
+    el("div", { class: "cautions" }, ...cautionLines(verdict?.cautions ?? [])),
   );
 }

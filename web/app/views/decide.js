@@ -30,7 +30,7 @@ function pairTable(report) {
 }
 
 /** @param {import("../types.js").Verdict} verdict the edition by name and hash, and each disputed reading as it was used */
-export function editionLines(verdict) {
+function editionLines(verdict) {
   const { edition } = verdict;
   return [
     el("p", {}, el("strong", {}, edition.name), ` · ${edition.provenance.map((one) => say(`page.provenance.${one}`)).join(", ")} · ${say(`page.values.decision_rule.${edition.rule}`)}`),
@@ -132,6 +132,7 @@ export function decideView({ state, sign, print, copy }) {
       const outcome = outcomeOf(next);
       node.classList.toggle("earlier", earlier);
       head.dataset["outcome"] = outcome;
+      head.classList.toggle("earlier", earlier);
       redraw(head, outcomeSymbol(outcome), el("div", {}, el("p", { class: "word" }, say(`page.outcomes.${outcome}`), earlier ? el("span", { class: "badge" }, say("page.verdict.earlier")) : null), el("p", { class: "sentence" }, sentenceOf(next))));
       redraw(reasons, ...reasonsOf(report));
       const said = (report?.notes ?? []).filter(({ about }) => about === "verdict");
