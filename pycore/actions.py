@@ -83,7 +83,11 @@ def _wanted_sections(sections: Any) -> tuple[str, ...]:
     for name in sections:
         if name not in SECTIONS:
             _refuse(
-                "choice-unknown", "sections", str(name), "choose-one", allowed=", ".join(SECTIONS)
+                "choice-unknown",
+                "sections",
+                str(name),
+                "choose-one",
+                allowed=", ".join(SECTIONS) or "\u2013",
             )
     return tuple(dict.fromkeys(sections))
 

@@ -110,19 +110,23 @@ def through_front_d(front_d: float, thickness_mm: float, index: float) -> float:
     """What the front surface's power is worth at the back: F1 / (1 - t F1 / n).
 
     Arguments: `front_d` dioptres; `thickness_mm`; `index`. Returns dioptres.
+    Raises OutsideSurfaceError where the light would come to a focus within the lens.
     Source: step-along vergence, any textbook of ophthalmic lenses.
 
     >>> round(through_front_d(8.0, 6.0, 1.5), 3)
     8.264
     """
-    return front_d / (1.0 - thickness_mm / 1000.0 / index * front_d)
+    left = 1.0 - thickness_mm / 1000.0 / index * front_d
+    if left < FLATTEST_LEFT:
+        raise OutsideSurfaceError
+    return front_d / left
 
 
 def back_surface(power: Power, front_d: float, thickness_mm: float, index: float) -> Surface:
     """The back surface that gives a back vertex power behind a spherical front.
 
-    Arguments: `power` back vertex power; `front_d` dioptres, true for `index`; `thickness_mm`.
-    Returns the Surface, in the frame seen from the front. Source: F2 = Fv - F1 / (1 - t F1 / n).
+    Arguments: `power` back vertex power; `front_d` dioptres, true for `index`; `thickness_mm`;
+    `index`. Returns the Surface, in the frame seen from the front. Source: F2 = Fv - F1 / (1 - t F1 / n).
 
     >>> back = back_surface(Power(sphere=-5), 0.0, 2.0, 1.5)
     >>> round(1 / back.steep_per_mm, 9)

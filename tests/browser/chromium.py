@@ -67,6 +67,7 @@ def unpack_here() -> bool:
     for package in sorted(archives.parent.glob("*.deb")):
         if not succeeds("dpkg-deb", "--extract", str(package), str(UNPACKED)):
             return False
+    shutil.rmtree(HERE / "cache")
     libraries = sorted({str(file.parent) for file in UNPACKED.rglob("*.so*")})
     program = UNPACKED / "usr" / "lib" / "chromium" / "chromium"
     LAUNCHER.write_text(f'#!/bin/sh\nLD_LIBRARY_PATH="{":".join(libraries)}" exec "{program}" "$@"\n')

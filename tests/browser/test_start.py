@@ -47,9 +47,10 @@ def test_paints_before_the_engine_is_read(page_from_disk: Page, engine_ready: Re
     assert times["paint"] <= times["read"]
 
 
-def test_starts_where_workers_are_refused(dist: Path, page: Page, engine_ready: Ready) -> None:
+@pytest.mark.parametrize("form", ["folder", "single file"])
+def test_starts_where_workers_are_refused(dist: Path, single_file: Path, page: Page, engine_ready: Ready, form: str) -> None:
     page.add_init_script("globalThis.Worker = class { constructor() { throw new DOMException('no', 'SecurityError'); } };")
-    page.goto((dist / "index.html").as_uri())
+    page.goto((single_file if form == "single file" else dist / "index.html").as_uri())
     engine_ready(page)
     assert page.workers == []
 

@@ -38,6 +38,7 @@ from pycore.api import handle
 from pycore.schema import job_schema
 
 PACKAGE = Path(pycore.__file__).parent
+SCHEMA = jsonschema.Draft202012Validator(job_schema())
 
 # The example of the job document, version 1, its elided parts filled in: JSON numbers and typed
 # text side by side, as they come.
@@ -141,14 +142,14 @@ def test_the_example_of_the_contract() -> None:
     assert set(check) >= set(keys.split())
     assert set(check["shown"]) >= {"deviation", "limit", "margin"}
     assert report["verdict"]["cautions"] == ["prescriber", "local-law", "sign-off"]
-    jsonschema.validate(EXAMPLE, job_schema())
+    SCHEMA.validate(EXAMPLE)
 
 
 def test_the_demonstration_job() -> None:
     job = demonstration()
     assert job["demonstration"] is True
     assert job["id"].startswith("DEMO")
-    jsonschema.validate(job, job_schema())
+    SCHEMA.validate(job)
     assert outcome(job) == "within"
     assert "DEMONSTRATION" in report_on(job, text=True)["text"]
 
@@ -156,7 +157,7 @@ def test_the_demonstration_job() -> None:
 @given(job=jobs())
 def test_any_job_is_answered_in_full(job: Job) -> None:
     """Against its schema; no text with a hole left open; pictures of finite numbers; nothing kept."""
-    jsonschema.validate(job, job_schema())
+    SCHEMA.validate(job)
     report = report_on(job, scenes=True, text=True)
     text = json.dumps(report, ensure_ascii=False)
     assert "{" not in report["text"]
@@ -221,7 +222,7 @@ def test_what_is_shown_agrees_with_the_outcome(right: Decimal, limit: str, more:
 
 def test_a_sign_must_be_written_unless_there_is_nothing_to_sign() -> None:
     for field in ("sphere", "cylinder"):
-        job = patched(PAIR, right__cylinder="-1.00", right__axis="90", **{f"right__{field}": "1.25"})
+        job = patched(patched(PAIR, right__cylinder="-1.00", right__axis="90"), **{f"right__{field}": "1.25"})
         assert errors_of(answer_to(job)) == [("sign-missing", f"right.{field}")]
     for zero in ("0", "0.00", "+0", "-0.00", "0,0"):
         assert report_on(patched(PAIR, right__sphere=zero))["right"]["power"]["plus_form"]["sphere"] == 0
@@ -301,7 +302,7 @@ def test_an_edition_is_refused_for_a_state_it_does_not_cover_naming_those_that_d
             assert errors_of(answer) == [("edition-does-not-cover-state", "edition")]
             error = answer["errors"][0]
             assert error["fix"] == "choose-edition"
-            assert error["params"]["allowed"].split(", ") == [other["name"] for other in listed if state in other["states"]]
+            assert error["params"]["allowed"] == ", ".join(other["name"] for other in listed if state in other["states"])
     covering = {edition["id"]: set(edition["states"]) for edition in listed}
     assert covering["iso-21987"] == {"mounted"}
     assert covering["iso-8980-1"] == covering["iso-8980-2"] == {"uncut"}
@@ -1073,10 +1074,9 @@ def test_the_schema_is_as_strict_as_the_reader_about_keys() -> None:
         job = patched(EXAMPLE, **{path: "red"})
         assert errors_of(answer_to(job)) == [("key-unknown", path.replace("__", "."))]
         with pytest.raises(jsonschema.ValidationError):
-            jsonschema.validate(job, job_schema())
+            SCHEMA.validate(job)
     for missing in ("format", "state"):
-        with pytest.raises(jsonschema.ValidationError):
-            jsonschema.validate(patched(EXAMPLE, **{missing: None}), job_schema())
+        assert not SCHEMA.is_valid(patched(EXAMPLE, **{missing: None}))
 
 
 def test_nothing_of_the_request_is_changed() -> None:

@@ -1,7 +1,7 @@
 """Jobs that stand on a limit, one last digit above it and one below it, with the outcome the reference says.
 
 Made from `limits_reference` alone. Each case is a job as it would be typed and, for some of its checks, the
-outcome due; `ABSENT` where the edition sets no such limit. `numbers` are the figures the case stands close to.
+outcome due; `ABSENT` where the edition sets no such limit. `at` says which figures the limit is looked up by.
 """
 
 from __future__ import annotations
@@ -57,7 +57,7 @@ class Case:
     name: str
     job: Job
     due: tuple[Due, ...]
-    numbers: frozenset[D]
+    at: dict[str, D]
 
 
 # --- small things -------------------------------------------------------------------------------------------------------
@@ -121,9 +121,9 @@ def state_for(edition: str) -> str:
     return "uncut" if edition.startswith("iso-8980") else "mounted"
 
 
-def case(name: str, job: Job, due: Iterable[Due], numbers: Iterable[D]) -> Case:
+def case(name: str, job: Job, due: Iterable[Due], **at: D) -> Case:
     """Put a case together."""
-    return Case(f"{job['edition']} {job['state']} {job['lens']['design']} {name}", job, tuple(due), frozenset(numbers))
+    return Case(f"{job['edition']} {job['state']} {job['lens']['design']} {name}", job, tuple(due), at)
 
 
 def designs_of(edition: str) -> tuple[str, ...]:
@@ -168,7 +168,7 @@ def power_cases(edition: str, design: str) -> Iterator[Case]:
                 job[eye]["sphere"] = signed(sphere)
                 job["readings"][eye]["sphere"] = signed(sphere + deviation)
             due = [Due("power", eye, outcome) for eye in EYES]
-            yield case(f"power {power} off {deviation}", job, due, [power, *([limit] if limit is not None else [])])
+            yield case(f"power {power} off {deviation}", job, due, power=power)
 
 
 def weaker_meridian_cases(edition: str, design: str) -> Iterator[Case]:
@@ -182,7 +182,7 @@ def weaker_meridian_cases(edition: str, design: str) -> Iterator[Case]:
             job[eye] |= {"sphere": "+4.00", "cylinder": "-1.00", "axis": "30"}
             job["readings"][eye] |= {"sphere": "+4.00", "cylinder": signed(D(-1) + deviation), "axis": "30"}
         each = outcome if edition.startswith("iso-8980") else "within"
-        yield case(f"weaker meridian off {deviation}", job, [Due("power", eye, each) for eye in EYES], [limit, D(4)])
+        yield case(f"weaker meridian off {deviation}", job, [Due("power", eye, each) for eye in EYES], power=D(4))
 
 
 def cylinder_cases(edition: str, design: str) -> Iterator[Case]:
@@ -200,10 +200,8 @@ def cylinder_cases(edition: str, design: str) -> Iterator[Case]:
                 job["readings"]["right"] |= {"sphere": signed(strongest), "cylinder": signed(-read), "axis": "30"}
                 job["left"] |= {"sphere": signed(-strongest), "cylinder": signed(size), "axis": "120"}
                 job["readings"]["left"] |= {"sphere": signed(read - strongest), "cylinder": signed(-read), "axis": "30"}
-                numbers = [strongest, size, *([limit] if limit is not None else [])]
-                yield case(
-                    f"cylinder {size}, strongest {strongest}, off {deviation}", job, [Due("cylinder", e, outcome) for e in EYES], numbers
-                )
+                name = f"cylinder {size}, strongest {strongest}, off {deviation}"
+                yield case(name, job, [Due("cylinder", eye, outcome) for eye in EYES], power=strongest, cylinder=size)
 
 
 def axis_cases(edition: str, design: str) -> Iterator[Case]:
@@ -216,12 +214,8 @@ def axis_cases(edition: str, design: str) -> Iterator[Case]:
                 job[eye] |= {"sphere": "+5.00", "cylinder": signed(-size), "axis": f"{axis}"}
                 read = (axis + deviation) % 180 or D(180)
                 job["readings"][eye] |= {"sphere": "+5.00", "cylinder": signed(-size), "axis": f"{read:f}"}
-            yield case(
-                f"axis, cylinder {size}, off {deviation}",
-                job,
-                [Due("axis", eye, outcome) for eye in EYES],
-                [size, *([limit] if limit is not None else [])],
-            )
+            due = [Due("axis", eye, outcome) for eye in EYES]
+            yield case(f"axis, cylinder {size}, off {deviation}", job, due, power=D(5), cylinder=size)
 
 
 def add_cases(edition: str, design: str) -> Iterator[Case]:
@@ -236,7 +230,7 @@ def add_cases(edition: str, design: str) -> Iterator[Case]:
                 job[eye]["add"] = f"{add}"
                 job["readings"][eye]["add"] = f"{add + deviation}"
             due = [Due("add", eye, outcome) for eye in EYES]
-            yield case(f"add {add} off {deviation}", job, due, [add, *([limit] if limit is not None else [])])
+            yield case(f"add {add} off {deviation}", job, due, add=add)
 
 
 # --- prism of the mounted pair ------------------------------------------------------------------------------------------------
@@ -273,7 +267,7 @@ def pair_cases(edition: str, design: str) -> Iterator[Case]:
                 job["right"]["sphere"], job["left"]["sphere"] = signed(-power), signed(D("0.50") - power)
                 read_pair(job, size, across, upward)
                 due = [Due("prism.horizontal", "pair", first), Due("prism.vertical", "pair", second)]
-                yield case(f"pair {size}, power {power}, off {across} {upward}", job, due, [power, size, *(v for v in limits.values() if v)])
+                yield case(f"pair {size}, power {power}, off {across} {upward}", job, due, power=power, prism=size)
 
 
 def pair_mm_cases(edition: str, design: str) -> Iterator[Case]:
@@ -291,13 +285,13 @@ def pair_mm_cases(edition: str, design: str) -> Iterator[Case]:
             job["readings"]["left"]["prp_height_mm"] = "17"
             present = power > ref.ANSI_SWITCH_VERTICAL
             due = [Due("prp.height", "pair", outcome if present else ABSENT), Due("prism.vertical", "pair", "outside")]
-            yield case(f"height off {moved}, power {power}", job, due, [heights, ref.ANSI_SWITCH_VERTICAL])
+            yield case(f"height off {moved}, power {power}", job, due, power=power)
     job = base_job(edition, "mounted", design)  # both too high by 3 mm: no difference, yet each is off
     job["right"]["sphere"] = job["left"]["sphere"] = "-6.00"
     read_pair(job, D("1.00"), D(0), D("0.60"))
     for eye in EYES:
         job["readings"][eye]["prp_height_mm"] = "20"
-    yield case("both 3 mm high", job, [Due("prp.height", "pair", "outside" if each else "within")], [heights])
+    yield case("both 3 mm high", job, [Due("prp.height", "pair", "outside" if each else "within")], power=D(6))
 
 
 def pair_distance_cases(edition: str, design: str) -> Iterator[Case]:
@@ -321,7 +315,7 @@ def pair_distance_cases(edition: str, design: str) -> Iterator[Case]:
                 else:
                     job["readings"]["prp_distance_mm"] = f"{64 + moved}"
                 due = [Due("prp.distance", "pair", outcome if power > switch else ABSENT), Due("prism.horizontal", "pair", "outside")]
-                yield case(f"distance off {moved}, power {power}, switch {switch}", job, due, [limit, switch])
+                yield case(f"distance off {moved}, power {power}, switch {switch}", job, due, power=power)
 
 
 def each_lens_cases(edition: str, design: str) -> Iterator[Case]:
@@ -338,7 +332,7 @@ def each_lens_cases(edition: str, design: str) -> Iterator[Case]:
         for eye in EYES:
             job[eye]["prism"] = prism(D(1), D("0.50"))
             job["readings"][eye]["prism"] = prism(D(1) + off["horizontal"], D("0.50") + off["vertical"])
-        yield case(f"each lens off {deviation}", job, [Due("prism.lens", eye, outcome, way) for eye in EYES for way in ways], [limit])
+        yield case(f"each lens off {deviation}", job, [Due("prism.lens", eye, outcome, way) for eye in EYES for way in ways], power=D(0))
 
 
 # --- prism of the single lens ---------------------------------------------------------------------------------------------------
@@ -359,7 +353,7 @@ def lens_vector_cases(edition: str, design: str) -> Iterator[Case]:
                     job[eye]["prism"] = prism(D(2), D(1))
                     job["readings"][eye]["prism"] = prism(D(2) + across, D(1) + upward)
                 due_here = outcome if not options or D(0) in (across, upward) else "within"
-                yield case(f"lens off {across} {upward} {options}", job, [Due("prism.lens", eye, due_here) for eye in EYES], [limit])
+                yield case(f"lens off {across} {upward} {options}", job, [Due("prism.lens", eye, due_here) for eye in EYES], power=D(0))
 
 
 def lens_mm_cases(edition: str, design: str) -> Iterator[Case]:
@@ -375,7 +369,7 @@ def lens_mm_cases(edition: str, design: str) -> Iterator[Case]:
                     job["readings"][eye] |= {"prism": prism(D("1.40"), D(1)), "slid_mm": f"{slid}"}
                 present = power > ref.ANSI_SWITCH_LENS
                 due = [Due("prp.position", eye, outcome if present else ABSENT) for eye in EYES]
-                yield case(f"point off {slid}, power {power}", job, due, [ref.ANSI_LENS_MM, ref.ANSI_SWITCH_LENS])
+                yield case(f"point off {slid}, power {power}", job, due, power=power)
 
 
 def lens_component_cases(edition: str, design: str) -> Iterator[Case]:
@@ -396,7 +390,7 @@ def lens_component_cases(edition: str, design: str) -> Iterator[Case]:
                 due = [
                     Due("prism.lens", eye, outcome, way) for eye in EYES for way, outcome in (("horizontal", first), ("vertical", second))
                 ]
-                yield case(f"lens {size}, power {strongest}, off {across} {upward}", job, due, [strongest, size, *limits.values()])
+                yield case(f"lens {size}, power {strongest}, off {across} {upward}", job, due, power=strongest, prism=size)
 
 
 MAKERS = (

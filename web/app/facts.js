@@ -32,32 +32,46 @@ function settingTexts(setting) {
   ];
 }
 
+/** @param {import("./types.js").Prism|null|undefined} prism @returns {string} its text, "none" where there is no prism */
+function textOrNone(prism) {
+  if (!prism) return say("page.facts.not_known");
+  return prism.quadrant === "none" ? say("page.facts.none") : text(prism);
+}
+
 /** @param {LensReport} lens @returns {Fact} what the lens meter must show, or the part of it that is known */
 function mustShow(lens) {
-  const known = lens.expected ? text(lens.expected) : "";
-  if (!known) return fact("expected", [say("page.facts.not_known")], "expected");
-  if (lens.expected_known !== "horizontal") return fact("expected", [known], "expected");
-  const across = lens.expected?.shown["horizontal"] ?? "";
-  return fact("expected", [say("page.facts.horizontal_only", { horizontal: across }), say("page.facts.vertical_unknown")], "expected");
+  const { expected } = lens;
+  if (!expected) return fact("expected", [say("page.facts.not_known")], "expected");
+  if (lens.expected_known !== "horizontal") return fact("expected", [text(expected)], "expected");
+  const { base } = expected.horizontal;
+  const across = say("page.facts.horizontal_only", { horizontal: expected.shown["horizontal"], base: base ? say(`page.bases.${base}`) : "" });
+  return fact("expected", [across, say("page.facts.vertical_unknown")], "expected");
 }
 
 /** @param {LensReport} lens */
 function reads(lens) {
-  const spread = lens.spread ? say("page.facts.spread", { count: lens.spread.count, spread: lens.spread.shown }) : "";
-  return fact("read", [lens.read ? text(lens.read) : say("page.facts.not_read"), spread], "read");
+  const { spread } = lens;
+  const repeated = spread ? say("page.facts.spread", { count: spread.count, horizontal: spread.shown["horizontal"], vertical: spread.shown["vertical"] }) : "";
+  return fact("read", [lens.read ? text(lens.read) : say("page.facts.not_read"), repeated], "read");
+}
+
+/** @param {LensReport} lens @returns {Fact[]} what an automatic lens meter shows, as it shows it */
+function meterFacts({ meter }) {
+  if (!meter) return [];
+  return [fact("meter", [[say(`page.meter.key_${meter.key}`), meter.horizontal.shown, meter.vertical.shown].join("  ")])];
 }
 
 /** @param {LensReport} lens @returns {Fact[]} the rows that always stand under the dial */
 export function mainFacts(lens) {
-  const rows = [];
-  if (!lens.partner) rows.push(fact(lens.stated_used ? "stated" : "ordered", [text(lens.prescribed) || say("page.facts.no_prism")], "ordered"));
-  rows.push(fact("thinning", [lens.thinning ? text(lens.thinning) || say("page.facts.none") : say("page.facts.not_known")], "thinning"));
-  rows.push(mustShow(lens), reads(lens));
-  if (lens.meter) {
-    rows.push(fact("meter", [say(`page.meter.key_${lens.meter.key}`), lens.meter.horizontal.shown, lens.meter.vertical.shown]));
-  }
-  if (lens.compensator?.needed) rows.push(...compensatorFacts(lens));
-  return rows;
+  const ordered = fact(lens.stated_used ? "stated" : "ordered", [textOrNone(lens.prescribed)], "ordered");
+  return [
+    ...(lens.partner ? [] : [ordered]),
+    fact("thinning", [textOrNone(lens.thinning)], "thinning"),
+    mustShow(lens),
+    ...meterFacts(lens),
+    reads(lens),
+    ...(lens.compensator?.needed ? compensatorFacts(lens) : []),
+  ];
 }
 
 /** @param {LensReport} lens @returns {Fact[]} */

@@ -26,7 +26,7 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
   const starting = el("p", { class: "engine" });
   const undo = button("", () => state.undo(), { class: "tool", "aria-label": say("page.actions.undo"), id: "undo", "data-repeats": true }, icon("M9 7 L4 12 L9 17 M4 12 H14 a5 5 0 0 1 0 10 H11"));
   const redo = button("", () => state.redo(), { class: "tool", "aria-label": say("page.actions.redo"), id: "redo", "data-repeats": true }, icon("M15 7 L20 12 L15 17 M20 12 H10 a5 5 0 0 0 0 10 H13"));
-  const pad = button("", toggleKeypad, { class: "tool", "aria-label": say("page.actions.keypad"), id: "keypad-toggle", "aria-pressed": "false" }, icon("M5 5h3v3h-3z M10.5 5h3v3h-3z M16 5h3v3h-3z M5 10.5h3v3h-3z M10.5 10.5h3v3h-3z M16 10.5h3v3h-3z M5 16h3v3h-3z M10.5 16h3v3h-3z M16 16h3v3h-3z"));
+  const pad = button("", toggleKeypad, { class: "tool", "aria-label": say("page.actions.keypad"), id: "keypad-toggle", "aria-pressed": "false", "data-repeats": true }, icon("M5 5h3v3h-3z M10.5 5h3v3h-3z M16 5h3v3h-3z M5 10.5h3v3h-3z M10.5 10.5h3v3h-3z M16 10.5h3v3h-3z M5 16h3v3h-3z M10.5 16h3v3h-3z M16 16h3v3h-3z"));
   const tabs = MOVES.map((name) => button(say(`page.nav.${name}`), () => show(name), { class: "move", id: `move-${name}`, "data-repeats": true }));
   const banner = el("p", { class: "demonstration", hidden: true }, say("page.demonstration.banner"));
 
@@ -71,8 +71,9 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
     keypad: () => pad.setAttribute("aria-pressed", String(wantsKeypad(settings))),
     /** @param {string} code @param {string} [mode] */
     engine(code, mode) {
-      const ready = mode === "main-thread" ? say("page.engine.main_thread") : "";
-      starting.textContent = code === "ready" ? ready : say(`page.engine.${code}`);
+      // While it starts, the strip says so; here stands only what lasts.
+      const slow = code === "ready" && mode === "main-thread" ? say("page.engine.main_thread") : "";
+      starting.textContent = code === "failed" ? say("page.engine.failed") : slow;
     },
     /** @param {import("./keeping.js").SaveStatus} status */
     saved(status) {

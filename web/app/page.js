@@ -39,8 +39,10 @@ export function startPage(startEngine) {
   const state = createState();
   const form = createForm(state);
   /** @type {import("./verdict.js").Standing} */
-  const standing = { report: null, faults: [], earlier: false, begun: false };
+  const standing = { report: null, faults: [], earlier: false, begun: false, engine: "reading" };
   let place = toJob({}).place;
+  /** @type {ReturnType<typeof verdictStrip>|null} */
+  let foot = null;
   let hash = "";
   /** @type {Record<string, string>} */
   let understood = {};
@@ -52,7 +54,9 @@ export function startPage(startEngine) {
   const engine = startEngine({
     onState(code) {
       root.dataset["engine"] = code;
+      standing.engine = code;
       head?.engine(code, engine.mode);
+      foot?.draw(standing);
     },
   });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
@@ -68,6 +72,7 @@ export function startPage(startEngine) {
   const top = frame({ state, views, settings, toggleKeypad, drawView });
   head = top;
   const strip = verdictStrip({ show: top.show, goTo });
+  foot = strip;
   top.engine(engine.state, engine.mode);
 
   function toggleKeypad() {
@@ -110,6 +115,8 @@ export function startPage(startEngine) {
       draw();
       return;
     }
+    if (!standing.report) strip.draw(standing);
+    top.draw();
     const built = toJob(state.entries);
     const given = await engine.ask({ do: "report", job: built.job, sections: [], scenes: true }, { lane: "verdict" });
     if (!given) return;

@@ -96,6 +96,7 @@ export function drawSheet(host, { standing, entries, hash, at }) {
     return;
   }
   const { verdict } = report;
+  host.classList.toggle("tight", (verdict?.checks.length ?? 0) + report.notes.length > 13);
   const outcome = outcomeOf(standing);
   const by = entries["signed.initials"];
   redraw(

@@ -24,6 +24,7 @@
  *
  * @typedef {object} Prism
  * @property {string} quadrant
+ * @property {{base: string|null}} horizontal
  * @property {Shown} shown
  *
  * @typedef {object} CompensatorSetting
@@ -45,7 +46,7 @@
  * @property {{key: string, horizontal: {shown: string}, vertical: {shown: string}}|null} [meter]
  * @property {Prism|null} [read]
  * @property {Prism|null} [error]
- * @property {{count: number, shown: string}|null} [spread]
+ * @property {{count: number, shown: Shown}|null} [spread]
  *
  * @typedef {object} Check
  * @property {string} id

@@ -8,7 +8,7 @@ import { say } from "./words.js";
 /**
  * @typedef {import("./types.js").Report} Report
  * @typedef {import("./types.js").Fault} Fault
- * @typedef {{report: Report|null, faults: Fault[], earlier: boolean, begun: boolean}} Standing
+ * @typedef {{report: Report|null, faults: Fault[], earlier: boolean, begun: boolean, engine: string}} Standing
  */
 
 /** @param {Standing} standing "within" and the like; "none" where nothing was judged */
@@ -17,7 +17,8 @@ export function outcomeOf({ report }) {
 }
 
 /** @param {Standing} standing the one sentence under the word */
-export function sentenceOf({ report, begun }) {
+export function sentenceOf({ report, begun, engine }) {
+  if (!report && engine !== "ready") return say(`page.engine.${engine}`);
   if (!begun) return say("page.verdict.nothing_yet");
   if (!report) return say("page.verdict.no_answer");
   const verdict = report.verdict;

@@ -1,0 +1,230 @@
+"""How thick is each lens round its rim, what decides its thickness, and what does it weigh?
+
+Exact surfaces and wedge (`optics.thickness`) at the places of `bench.rim`. Where the centre
+thickness is not given it is the least that keeps every minimum: at the reference point, at the
+thinnest place inside, all round the rim and at drilled holes.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from decimal import Decimal
+from operator import mul
+
+from pycore.bench.body import BodyValues, body_values, usual_minimum_centre_mm
+from pycore.bench.expected import Due
+from pycore.bench.rim import Place, Placed, Rim, placed, rim_of
+from pycore.job.document import Job
+from pycore.job.order import EyeOrder
+from pycore.optics.material import usual_material
+from pycore.optics.power import point_with_prism
+from pycore.optics.prism import NO_PRISM, Prism
+from pycore.optics.surface import OutsideSurfaceError, true_front_d
+from pycore.optics.thickness import Solid, thicknesses
+
+COARSE = 2  # every second point of the rim, where only comparisons are made
+THICKEST_MM = 60.0  # no blank is thicker
+KEPT_MM = 1e-4  # how well a minimum is met
+OTHER_INDICES = tuple(map(Decimal, ("1.60", "1.67", "1.74")))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FramedLens:
+    """One lens in its rim, but for its prism. Thicknesses in mm, density in g/cm³.
+
+    `centre_mm` is the thickness ordered at the reference point, or None; `minimum_hole_mm` holds
+    at drilled places only.
+    """
+
+    rim: Rim
+    solid: Solid
+    centre_mm: float | None
+    minimum_centre_mm: float
+    minimum_edge_mm: float
+    minimum_hole_mm: float
+    density_g_cm3: float | None
+
+    def with_prism(self, prism: Prism) -> Solid:
+        """The lens's surfaces with a prism in prism dioptres."""
+        return replace(self.solid, prism_x=float(prism.x), prism_y=float(prism.y))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Edge:
+    """A lens's thickness round its rim.
+
+    `centre_mm` at the prism reference point; `governs`: what that thickness is due to (given,
+    centre, inside, edge or hole); `profile` (angle in degrees at the boxing centre, mm);
+    `least_mm` the thinnest place of all that were looked at; `weight_g` None without a density
+    (and both volume and weight left out where they were not wanted).
+    """
+
+    centre_mm: float
+    governs: str
+    profile: tuple[tuple[float, float], ...]
+    least_mm: float
+    volume_mm3: float
+    weight_g: float | None
+
+    @property
+    def thinnest(self) -> tuple[float, float]:
+        """The thinnest place of the rim: angle in degrees, mm."""
+        return min(self.profile, key=lambda place: place[1])
+
+    @property
+    def thickest(self) -> tuple[float, float]:
+        """The thickest place of the rim: angle in degrees, mm."""
+        return max(self.profile, key=lambda place: place[1])
+
+    def at(self, angle_deg: float) -> float:
+        """Thickness in mm at the point of the rim nearest to an angle in degrees."""
+        count = len(self.profile)
+        return self.profile[round(angle_deg * count / 360.0) % count][1]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Framing:
+    """A framed lens with where its values come from."""
+
+    lens: FramedLens
+    values: BodyValues
+    placed: Placed
+
+
+def framing_of(job: Job, order: EyeOrder, due_: Due) -> Framing | None:
+    """One lens in its rim, or None without a power or without A and B (or radii).
+
+    Arguments: `job`; `order` and `due_` of the eye. Returns the Framing.
+    """
+    values = body_values(order, job.frame)
+    if values is None or due_.power is None:
+        return None
+    spot = placed(job, order)
+    rim = rim_of(job.frame, order.eye, spot.in_mm, spot.up_mm) if spot else None
+    if spot is None or rim is None:
+        return None
+    progressive = order.lens.design == "progressive"
+    lens = FramedLens(
+        rim=rim,
+        solid=Solid(
+            index=float(values.index),
+            front_d=values.front_d,
+            power=due_.power,
+            add=float(due_.add or 0) if progressive else 0.0,
+        ),
+        centre_mm=float(values.thickness_mm) if values.thickness_given else None,
+        minimum_centre_mm=float(values.minimum_centre_mm),
+        minimum_edge_mm=float(values.minimum_edge_mm),
+        minimum_hole_mm=float(values.minimum_hole_mm),
+        density_g_cm3=None if values.density_g_cm3 is None else float(values.density_g_cm3),
+    )
+    return Framing(lens=lens, values=values, placed=spot)
+
+
+def edge_of(lens: FramedLens, prism: Prism, every: int = 1, *, weigh: bool = True) -> Edge:
+    """A lens's thickness with a prism at its reference point.
+
+    Arguments: `lens`; `prism` prism dioptres; `every` which points of the rim are looked at;
+    `weigh` whether the volume is wanted too. Returns the Edge, in mm and g. Raises OutsideSurfaceError where the lens's surfaces do not
+    reach its rim. Source: exact sagitta and wedge, facts 4.8; weight is density times the sum of
+    thickness over the area.
+    """
+    solid = lens.with_prism(prism)
+    around = lens.rim.points[::every]
+    inside = _thinnest_inside(lens, prism)
+    demands = [lens.minimum_edge_mm] * len(around)
+    demands += [lens.minimum_hole_mm] * len(lens.rim.holes)
+    demands += [lens.minimum_centre_mm] * len(inside)
+    places = (*around, *lens.rim.holes, *inside)
+    centre_mm, governing, found = _thickness(lens, solid, places, demands)
+    count = len(around)
+    volume = 0.0
+    if weigh:
+        inner = thicknesses(solid, centre_mm, lens.rim.nodes)
+        volume = sum(map(mul, lens.rim.node_areas_mm2, inner))
+    density = lens.density_g_cm3
+    return Edge(
+        centre_mm=centre_mm,
+        governs=_name(governing, count, len(lens.rim.holes)),
+        profile=tuple((360.0 * number / count, mm) for number, mm in enumerate(found[:count])),
+        least_mm=min(centre_mm, *found),
+        volume_mm3=volume,
+        weight_g=None if density is None or not weigh else volume * density / 1000.0,
+    )
+
+
+def _thinnest_inside(lens: FramedLens, prism: Prism) -> tuple[Place, ...]:
+    """Where a minus lens with prism is thinnest, if that lies inside its rim: at the optical
+    centre. A plus lens is thickest there; between both the thinnest place is on the rim."""
+    power = lens.solid.power
+    if prism == NO_PRISM or max(power.principal) >= 0:
+        return ()
+    place = point_with_prism(prism, NO_PRISM, power)
+    return (place,) if place and lens.rim.holds(place) else ()
+
+
+def _thickness(
+    lens: FramedLens, solid: Solid, places: Sequence[Place], demands: Sequence[float]
+) -> tuple[float, int | None, list[float]]:
+    """Centre thickness, which demand governs it (None: that of the centre; -1: given), and the
+    thickness at every place."""
+    if lens.centre_mm is not None:
+        return lens.centre_mm, -1, thicknesses(solid, lens.centre_mm, places)
+    centre_mm, governing = lens.minimum_centre_mm, None
+    found = thicknesses(solid, centre_mm, places)
+    while True:
+        lacking = [demand - mm for demand, mm in zip(demands, found, strict=True)]
+        worst = max(range(len(places)), key=lacking.__getitem__)
+        if abs(lacking[worst]) <= KEPT_MM or (governing is None and lacking[worst] < 0):
+            return centre_mm, governing, found
+        governing = worst
+        centre_mm = _settled(solid, centre_mm, places[worst], demands[worst], lacking[worst])
+        found = thicknesses(solid, centre_mm, places)
+
+
+def _settled(
+    solid: Solid, centre_mm: float, place: Place, demand_mm: float, short_mm: float
+) -> float:
+    """The centre thickness at which one place, `short_mm` short as it is, has just its minimum.
+
+    The back's curve follows the thickness a little, so one step does not do: secant method.
+    """
+    step = short_mm
+    while abs(short_mm) > KEPT_MM / 2:
+        centre_mm += step
+        if not 0 < centre_mm < THICKEST_MM:
+            raise OutsideSurfaceError
+        before, short_mm = short_mm, demand_mm - thicknesses(solid, centre_mm, (place,))[0]
+        step *= short_mm / (before - short_mm)
+    return centre_mm
+
+
+def _name(governing: int | None, rim: int, holes: int) -> str:
+    if governing is None:
+        return "centre"
+    if governing < 0:
+        return "given"
+    return "edge" if governing < rim else "hole" if governing < rim + holes else "inside"
+
+
+def in_other_index(framing: Framing) -> tuple[Decimal, FramedLens] | None:
+    """The same lens in the next higher of the usual indices, or None where there is none.
+
+    Arguments: `framing`. Returns the index and the lens; its front curve as marked, its density
+    and minimum centre the usual ones. Source: materials from memory (facts section 6).
+    """
+    values, lens = framing.values, framing.lens
+    index = next((n for n in OTHER_INDICES if n >= values.index + Decimal("0.03")), None)
+    material = None if index is None else usual_material(index)
+    if index is None or material is None:
+        return None
+    front_d = true_front_d(float(values.front_curve), float(values.curve_index), float(index))
+    minimum = lens.minimum_centre_mm
+    if "lens.minimum_centre_mm" in values.usual:
+        minimum = float(usual_minimum_centre_mm(index))
+    return index, replace(
+        lens,
+        solid=replace(lens.solid, index=float(index), front_d=front_d),
+        minimum_centre_mm=minimum,
+        centre_mm=None,
+        density_g_cm3=float(material.density_g_cm3),
+    )

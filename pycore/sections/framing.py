@@ -1,0 +1,133 @@
+"""What the sections on thickness share: lenses in their rims, what is asked, texts of places."""
+
+from collections.abc import Iterable, Mapping
+from decimal import Decimal
+
+from pycore.bench.edge import Edge, Framing, framing_of
+from pycore.bench.outline import outline_of
+from pycore.case import Case
+from pycore.decimals import fixed, from_float
+from pycore.job.document import Job
+from pycore.names import Entry, plain
+from pycore.optics.prism import EYES, Eye
+from pycore.sections.answer import Ask, Row
+from pycore.words import say
+
+PLACES = ("nasal", "top-nasal", "top", "top-temporal", "temporal", "bottom-temporal", "bottom")
+MATERIAL = ("index", "front_curve", "minimum_centre_mm", "minimum_edge_mm", "density_g_cm3")
+BOX = ("frame.a_mm", "frame.b_mm")
+
+
+def framings_of(case: Case) -> dict[Eye, Framing]:
+    """Each ordered lens in its rim, as far as power and frame are known. Arguments: `case`."""
+    found: dict[Eye, Framing] = {}
+    for eye in EYES:
+        order, due_ = case.job.order(eye), case.dues.get(eye)
+        framing = framing_of(case.job, order, due_) if order and due_ else None
+        if framing:
+            found[eye] = framing
+    return found
+
+
+def asks_for(framings: Iterable[Framing], job: Job) -> tuple[Ask, ...]:
+    """What is asked for: every usual value that was used, or the box where it is missing.
+
+    Arguments: `framings`; `job`. Returns the asks.
+    """
+    usual: dict[str, list[str]] = {}
+    outline = outline_of(job.frame)
+    if outline is None:
+        return tuple(Ask(field=field) for field in BOX if _lacks(job, field))
+    for field, text in outline.assumed:
+        usual[field] = [text]
+    unknown: set[str] = set()
+    for framing in framings:
+        values = framing.values
+        taken = {f"lens.{name}": values.usual.get(f"lens.{name}") for name in MATERIAL}
+        for field, text in {**taken, **framing.placed.usual}.items():
+            if text is not None and text not in usual.setdefault(field, []):
+                usual[field].append(text)
+        if values.density_g_cm3 is None:
+            unknown.add("lens.density_g_cm3")
+    asks = [Ask(field=f, usual=", ".join(texts), used=True) for f, texts in usual.items()]
+    return tuple(asks + [Ask(field=field) for field in sorted(unknown)])
+
+
+def _lacks(job: Job, field: str) -> bool:
+    return getattr(job.frame, field.removeprefix("frame.")) is None
+
+
+def material_rows(framings: Mapping[Eye, Framing]) -> list[Row]:
+    """What the thickness rests on, one row each, marked where it is a usual value.
+
+    Arguments: `framings`. Returns the rows.
+    """
+    rows = []
+    for name in MATERIAL:
+        texts = {}
+        for eye, framing in framings.items():
+            value = getattr(framing.values, name)
+            texts[eye] = "" if value is None else plain(value)
+        assumed = any(f"lens.{name}" in framing.values.usual for framing in framings.values())
+        code = name.removesuffix("_mm").removesuffix("_g_cm3").replace("_", "-")
+        rows.append(Row(code=code, assumed=assumed, **texts))
+    return rows
+
+
+def millimetres(value: float) -> str:
+    """A thickness in words, to 0.1 mm. Arguments: `value` mm."""
+    return say("text.millimetres", number=tenths(value))
+
+
+def grams(value: float | None) -> str:
+    """A weight in words, to 0.1 g; empty where it is not known. Arguments: `value` g."""
+    return "" if value is None else say("text.grams", number=tenths(value))
+
+
+def tenths(value: float) -> str:
+    """A computed value to one decimal. Arguments: `value`.
+
+    >>> tenths(6.24)
+    '6.2'
+    """
+    return fixed(from_float(value), 1)
+
+
+def place_code(eye: Eye, angle_deg: float) -> str:
+    """Name the part of the rim at an angle. Arguments: `eye`; `angle_deg` at the boxing centre.
+
+    >>> place_code("right", 10.0), place_code("left", 10.0), place_code("left", 268.0)
+    ('nasal', 'temporal', 'bottom')
+    """
+    seen = angle_deg if eye == "right" else 180.0 - angle_deg
+    return (*PLACES, "bottom-nasal")[round(seen / 45.0) % 8]
+
+
+def place_text(eye: Eye, angle_deg: float) -> str:
+    """The same in words. Arguments as for `place_code`."""
+    return say(f"rim_places.{place_code(eye, angle_deg)}")
+
+
+def rounded(value: float | None) -> float | None:
+    """A computed mm or g as the report's number: kept to 1e-6. Arguments: `value`."""
+    return None if value is None else float(round(value, 6) + 0.0)
+
+
+def edge_summary(edge: Edge) -> Entry:
+    """The few numbers by which edges are compared, in mm and g. Arguments: `edge`."""
+    return {
+        "centre_mm": rounded(edge.centre_mm),
+        "thickest_mm": rounded(edge.thickest[1]),
+        "thinnest_mm": rounded(edge.thinnest[1]),
+        "weight_g": rounded(edge.weight_g),
+    }
+
+
+def signed_amount(up: Decimal) -> Entry:
+    """A vertical prism as amount and base. Arguments: `up` prism dioptres, minus for down.
+
+    >>> signed_amount(Decimal("-1.33"))
+    {'amount': 1.33, 'base': 'down', 'y': -1.33}
+    """
+    base = None if not up else "up" if up > 0 else "down"
+    return {"amount": float(abs(up)), "base": base, "y": float(up)}
