@@ -53,7 +53,8 @@ class Edge:
     """A lens's thickness round its rim.
 
     `centre_mm` at the prism reference point; `governs`: what that thickness is due to (given,
-    centre, inside, edge or hole); `profile` (angle in degrees at the boxing centre, mm);
+    centre, inside, edge or hole); `profile` (angle in degrees at the boxing centre, mm)
+    with its `thinnest` and `thickest` place;
     `least_mm` the thinnest place of all that were looked at; `weight_g` None without a density
     (and both volume and weight left out where they were not wanted).
     """
@@ -61,19 +62,11 @@ class Edge:
     centre_mm: float
     governs: str
     profile: tuple[tuple[float, float], ...]
+    thinnest: tuple[float, float]
+    thickest: tuple[float, float]
     least_mm: float
     volume_mm3: float
     weight_g: float | None
-
-    @property
-    def thinnest(self) -> tuple[float, float]:
-        """The thinnest place of the rim: angle in degrees, mm."""
-        return min(self.profile, key=lambda place: place[1])
-
-    @property
-    def thickest(self) -> tuple[float, float]:
-        """The thickest place of the rim: angle in degrees, mm."""
-        return max(self.profile, key=lambda place: place[1])
 
     def at(self, angle_deg: float) -> float:
         """Thickness in mm at the point of the rim nearest to an angle in degrees."""
@@ -124,9 +117,9 @@ def edge_of(lens: FramedLens, prism: Prism, every: int = 1, *, weigh: bool = Tru
     """A lens's thickness with a prism at its reference point.
 
     Arguments: `lens`; `prism` prism dioptres; `every` which points of the rim are looked at;
-    `weigh` whether the volume is wanted too. Returns the Edge, in mm and g. Raises OutsideSurfaceError where the lens's surfaces do not
-    reach its rim. Source: exact sagitta and wedge, facts 4.8; weight is density times the sum of
-    thickness over the area.
+    `weigh` whether the volume is wanted too. Returns the Edge, in mm and g. Raises
+    OutsideSurfaceError where the lens's surfaces do not reach its rim. Source: exact sagitta and
+    wedge, facts 4.8; weight is density times the sum of thickness over the area.
     """
     solid = lens.with_prism(prism)
     around = lens.rim.points[::every]
@@ -141,14 +134,18 @@ def edge_of(lens: FramedLens, prism: Prism, every: int = 1, *, weigh: bool = Tru
     if weigh:
         inner = thicknesses(solid, centre_mm, lens.rim.nodes)
         volume = sum(map(mul, lens.rim.node_areas_mm2, inner))
-    density = lens.density_g_cm3
+    around_mm = found[:count]
+    profile = tuple((360.0 * number / count, mm) for number, mm in enumerate(around_mm))
+    density = lens.density_g_cm3 if weigh else None
     return Edge(
         centre_mm=centre_mm,
         governs=_name(governing, count, len(lens.rim.holes)),
-        profile=tuple((360.0 * number / count, mm) for number, mm in enumerate(found[:count])),
+        profile=profile,
+        thinnest=profile[around_mm.index(min(around_mm))],
+        thickest=profile[around_mm.index(max(around_mm))],
         least_mm=min(centre_mm, *found),
         volume_mm3=volume,
-        weight_g=None if density is None or not weigh else volume * density / 1000.0,
+        weight_g=None if density is None else volume * density / 1000.0,
     )
 
 

@@ -9,7 +9,6 @@ from pycore.bench.expected import Due
 from pycore.bench.split import HALF, shared, together
 from pycore.bench.thinning import amount_for_pair, equalising
 from pycore.decimals import snap
-from pycore.names import plain, thinning_text
 from pycore.optics.prism import EYES, NO_PRISM, Eye, Prism
 from pycore.optics.surface import OutsideSurfaceError
 
@@ -19,10 +18,11 @@ Prisms = Mapping[Eye, Prism]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Option:
-    """One change: `kind` (split, thinning, index), `what` in figures, the edges after it."""
+    """One change: `kind` (split, thinning, index), its figure (the thinning in prism dioptres, up
+    positive, or the indices of the lenses), and the edges after it."""
 
     kind: str
-    what: str
+    figures: tuple[Decimal, ...]
     edges: Mapping[Eye, Edge]
 
 
@@ -33,18 +33,18 @@ def options_of(framings: Mapping[Eye, Framing], dues: Mapping[Eye, Due]) -> list
     reach, or that is there already, is left out. A split needs the prescriber's agreement.
     """
     found = []
-    for kind, what, lenses, prisms in _changes(framings, dues):
+    for kind, figures, lenses, prisms in _changes(framings, dues):
         try:
             edges = {eye: edge_of(lens, prisms[eye], COARSE) for eye, lens in lenses.items()}
         except OutsideSurfaceError:
             continue
-        found.append(Option(kind=kind, what=what, edges=edges))
+        found.append(Option(kind=kind, figures=figures, edges=edges))
     return found
 
 
 def _changes(
     framings: Mapping[Eye, Framing], dues: Mapping[Eye, Due]
-) -> Iterator[tuple[str, str, Lenses, Prisms]]:
+) -> Iterator[tuple[str, tuple[Decimal, ...], Lenses, Prisms]]:
     lenses = {eye: framing.lens for eye, framing in framings.items()}
     expected = {eye: dues[eye].expected for eye in lenses}
     if len(lenses) == len(EYES):
@@ -52,21 +52,21 @@ def _changes(
         halves = shared(together(ordered), HALF)
         if any(snap((halves[eye] - ordered[eye]).amount) for eye in EYES):
             split = {eye: expected[eye] - ordered[eye] + halves[eye] for eye in EYES}
-            yield "split", "", lenses, split
+            yield "split", (), lenses, split
     up = _fitting(lenses, dues)
     if up:
         thinned = {eye: dues[eye].prescribed + Prism(Decimal(0), up) for eye in lenses}
-        yield "thinning", thinning_text(up), lenses, thinned
+        yield "thinning", (up,), lenses, thinned
     others = {eye: in_other_index(framing) for eye, framing in framings.items()}
     known = {eye: other for eye, other in others.items() if other}
     if known and len(known) == len(lenses):
-        indices = sorted({plain(index) for index, _ in known.values()})
-        yield "index", " / ".join(indices), {eye: lens for eye, (_, lens) in known.items()}, expected
+        indices = tuple(sorted({index for index, _ in known.values()}))
+        yield "index", indices, {eye: lens for eye, (_, lens) in known.items()}, expected
 
 
 def _fitting(lenses: Lenses, dues: Mapping[Eye, Due]) -> Decimal:
     """The thinning that fits (none for lenses without an add), prism dioptres, up positive."""
-    if not any(dues[eye].add for eye in lenses) or any(dues[eye].thinning is None for eye in lenses):
+    if not any(dues[eye].add for eye in lenses):
         return Decimal(0)
     wanted = {}
     for eye, lens in lenses.items():

@@ -72,8 +72,8 @@ class Near:
 
     @property
     def advised(self) -> bool:
-        """Tell whether the change reaches the usual threshold for a slab."""
-        return snap(abs(self.change.vertical)) >= SLAB_LEAST
+        """Tell whether the change is known and reaches the usual threshold for a slab."""
+        return self.vertical_known and snap(abs(self.change.vertical)) >= SLAB_LEAST
 
     @property
     def beyond_usual(self) -> bool:
@@ -212,7 +212,14 @@ def slab_line(lens: LensAtReading) -> SlabLine:
     Common practice: at the top of the segment; without one half way down to the reading point,
     to be agreed with the maker.
     """
-    segment, prp_mm = lens.order.segment, lens.order.prp_height_mm
+    order = lens.order
+    segment, prp_mm = order.segment, order.prp_height_mm
+    if (
+        prp_mm is None
+        and order.fitting_height_mm is not None
+        and order.cross_above_prp_mm is not None
+    ):
+        prp_mm = order.fitting_height_mm - order.cross_above_prp_mm
     if lens.segment:
         height_mm = segment.height_mm if segment else None
         return SlabLine(up_mm=lens.segment.top_up_mm, height_mm=height_mm, at_segment=True)
@@ -229,7 +236,7 @@ def round_segments_difference_mm(change: Decimal, add: Decimal) -> Decimal:
     20 times prism over add (domain facts 4.12).
 
     >>> round_segments_difference_mm(Decimal("1.5"), Decimal("2.50"))
-    Decimal('12.0')
+    Decimal('12')
     """
     return abs(change) * 20 / add
 

@@ -87,8 +87,9 @@ def placed(job: Job, order: EyeOrder) -> Placed | None:
         if field == "frame.dbl_mm":
             filled = replace(filled, frame=replace(frame, dbl_mm=value))
         else:
-            order = replace(order, pd_mm=value, pd_for=None, near_pd_mm=value)
-            filled = replace(filled, **{order.eye: order})
+            known = replace(order, pd_mm=value, pd_for=None, near_pd_mm=value)
+            right = order.eye == "right"
+            filled = replace(filled, right=known) if right else replace(filled, left=known)
     if usual:
         place = place_of(filled, order.eye)
     if place is None or place.prp is None:
@@ -96,7 +97,7 @@ def placed(job: Job, order: EyeOrder) -> Placed | None:
     return Placed(
         in_mm=float(inwards(order.eye, place.prp.right_mm)),
         up_mm=float(place.prp.up_mm),
-        usual=usual | dict(place.assumed),
+        usual=usual | {field: text for field, text in place.assumed if ".segment" not in field},
     )
 
 

@@ -12,7 +12,7 @@ from functools import cache
 
 from pycore.bench.edge import COARSE, Edge, FramedLens, edge_of
 from pycore.decimals import snap
-from pycore.optics.prism import EYES, NO_PRISM, Eye, Prism
+from pycore.optics.prism import EYES, Eye, Prism
 
 HUNDREDTH = Decimal("0.01")
 NONE, HALF, ALL = Decimal(0), Decimal("0.5"), Decimal(1)
@@ -79,7 +79,8 @@ def pulls_together(prisms: Pair) -> bool:
     """Tell whether both lenses carry prism the same way (a shared part, perhaps meant), which
     any other way to share would take out: both up, both down, or in on one and out on the other.
 
-    >>> pulls_together({"right": Prism(Decimal(0), Decimal(2)), "left": Prism(Decimal(0), Decimal(2))})
+    >>> up = Prism(Decimal(0), Decimal(2))
+    >>> pulls_together({"right": up, "left": up})
     True
     """
     right, left = prisms["right"], prisms["left"]
@@ -175,7 +176,7 @@ def _equal(
 def _root_of_three(parts: list[float], misses: list[float]) -> float:
     """Where the curve through three points crosses zero (inverse quadratic); -1 if it does not."""
     (a, b, c), (at_a, at_b, at_c) = parts, misses
-    if at_a == at_b or at_b == at_c or at_a == at_c:
+    if at_a in (at_b, at_c) or at_b == at_c:
         return -1.0
     return (
         a * at_b * at_c / ((at_a - at_b) * (at_a - at_c))

@@ -19,7 +19,7 @@ from pycore.job.body import Surfacing
 from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 from pycore.optics.power import Power, prism_at
-from pycore.optics.prism import Eye, Prism
+from pycore.optics.prism import Prism
 from pycore.optics.surface import OutsideSurfaceError
 from pycore.optics.thickness import Solid, thicknesses
 from pycore.optics.wedge import wedge_tangent

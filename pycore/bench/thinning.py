@@ -10,7 +10,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
 
-from pycore.bench.edge import Edge, FramedLens, edge_of
+from pycore.bench.edge import COARSE, Edge, FramedLens, edge_of
 from pycore.bench.expected import SHARE_OF_ADD, THINNING_PLACES
 from pycore.optics.prism import EYES, Eye, Prism
 from pycore.optics.thickness import thicknesses
@@ -81,7 +81,7 @@ def amount_for_pair(wanted: Mapping[Eye, float | None]) -> Decimal:
     """The one amount that both lenses bear: the smaller where they agree in direction, else none.
 
     Arguments: each lens's own amount, prism dioptres, up positive (None: no amount helps it).
-    Returns the same, rounded towards none to 0.01 as paperwork states it.
+    Returns the same, rounded to 0.01 as paperwork states it.
 
     >>> amount_for_pair({"right": -1.238, "left": -0.9})
     Decimal('-0.90')
@@ -120,7 +120,7 @@ def thinnings(
     for up in amounts.values():
         if up not in done:
             done[up] = {
-                eye: edge_of(lenses[eye], prescribed[eye] + Prism(Decimal(0), up))
+                eye: edge_of(lenses[eye], prescribed[eye] + Prism(Decimal(0), up), COARSE)
                 for eye in EYES
                 if eye in lenses
             }

@@ -8,9 +8,11 @@ measured along the front surface's normal at the reference point, as the edger c
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
+from pycore.angles import cosine, sine
 from pycore.optics.power import Power
-from pycore.optics.surface import OutsideSurfaceError, back_surface, sphere
+from pycore.optics.surface import OutsideSurfaceError, sphere, through_front_d
 from pycore.optics.wedge import wedge_tangent
 
 CORRIDOR_MM = 12.0  # over which an addition comes in below the reference point; from memory
@@ -48,10 +50,11 @@ def addition_depth(add: float, index: float, below_mm: float) -> float:
     """
     if below_mm <= 0.0:
         return 0.0
-    inside = min(below_mm, CORRIDOR_MM)
-    beyond = below_mm - inside
-    sum_mm2 = inside**3 / (6.0 * CORRIDOR_MM) + beyond * (CORRIDOR_MM + beyond) / 2.0
-    return add / (1000.0 * (index - 1.0)) * sum_mm2
+    curvature = add / (1000.0 * (index - 1.0))
+    if below_mm <= CORRIDOR_MM:
+        return curvature * below_mm**3 / (6.0 * CORRIDOR_MM)
+    beyond = below_mm - CORRIDOR_MM
+    return curvature * (CORRIDOR_MM * CORRIDOR_MM / 6.0 + beyond * below_mm / 2.0)
 
 
 def thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
@@ -81,16 +84,22 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     """
     root = math.sqrt
     front = sphere(solid.front_d, solid.index).steep_per_mm
-    back = back_surface(solid.power, solid.front_d, centre_mm, solid.index)
-    steep, flat = back.steep_per_mm, back.flat_per_mm
+    # As `optics.surface.back_surface`, with the axis looked up.
+    to_curvature = 1.0 / (1000.0 * (solid.index - 1.0))
+    at_back_d = through_front_d(solid.front_d, centre_mm, solid.index)
+    along_d, across_d, axis_x, axis_y = _meridians(solid.power)
+    steep, along_x, along_y = (at_back_d - across_d) * to_curvature, -axis_y, axis_x
+    flat = (at_back_d - along_d) * to_curvature
+    if abs(flat) > abs(steep):
+        steep, flat, along_x, along_y = flat, steep, axis_x, axis_y
     amount = math.hypot(solid.prism_x, solid.prism_y)
     base_x, base_y = (solid.prism_x / amount, solid.prism_y / amount) if amount else (1.0, 0.0)
     tangent = wedge_tangent(amount, solid.index)
     cos_tilt = 1.0 / math.hypot(1.0, tangent)
     sin_tilt = tangent * cos_tilt
     # The back's steep meridian from the base's direction.
-    cos_turn = back.along * base_x + back.across * base_y
-    sin_turn = back.across * base_x - back.along * base_y
+    cos_turn = along_x * base_x + along_y * base_y
+    sin_turn = along_y * base_x - along_x * base_y
     u_x = cos_tilt * cos_turn * base_x - sin_turn * base_y
     u_y = cos_tilt * cos_turn * base_y + sin_turn * base_x
     v_x = -cos_tilt * sin_turn * base_x - cos_turn * base_y
@@ -99,7 +108,7 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     w_x, w_y, w_z = -sin_tilt * base_x, -sin_tilt * base_y, cos_tilt
     # The error of a Newton step is about this times the step's square.
     bend = max(abs(steep), abs(flat)) * sin_tilt * sin_tilt
-    found = []
+    add, found = solid.add, []
     for x, y in points:
         u0, v0, w0 = u_x * x + u_y * y, v_x * x + v_y * y, w_x * x + w_y * y
         z = (0.5 * (steep * u0 * u0 + flat * v0 * v0) - w0) / w_z
@@ -117,8 +126,16 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
             if bend * step * step < SETTLED_MM:
                 break
         bent = front * (x * x + y * y)
-        found.append(centre_mm + z - bent / (1.0 + root(1.0 - front * bent)))
-    if solid.add:
-        below = (addition_depth(solid.add, solid.index, -y) for _, y in points)
-        return [thick - thinner for thick, thinner in zip(found, below, strict=True)]
+        thick = centre_mm + z - bent / (1.0 + root(1.0 - front * bent))
+        if y < 0.0 and add:
+            thick -= addition_depth(add, solid.index, -y)
+        found.append(thick)
     return found
+
+
+@lru_cache(maxsize=16)
+def _meridians(power: Power) -> tuple[float, float, float, float]:
+    """Both principal powers (along the axis, across it) and the axis as cosine and sine."""
+    along, across = power.principal
+    axis_deg = float(power.axis)
+    return float(along), float(across), cosine(axis_deg), sine(axis_deg)

@@ -18,7 +18,7 @@ from pycore.optics.wedge import wedge_tangent
 
 MOST_STEPS = 40
 SETTLED_MM = 1e-13
-SETTLED_PRISM = 1e-11  # prism dioptres
+SETTLED_PRISM = 1e-10  # prism dioptres
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -137,20 +137,25 @@ class Placed:
     def normal_through(self, point: Vector) -> Vector:
         """The normal, towards the observer, of which a point (lens's frame) lies on the line.
 
-        Raises OutsideSurfaceError. The foot (x, y) has x + k · slope = the point's x, k being how
-        far above the foot the point lies; it is found by going round, gaining a factor of the
-        thickness over the radius each time.
+        Raises OutsideSurfaceError. From the first foot, that on a sphere of the steep curvature
+        (which never lies outside), the foot is moved until the point lies on its normal; on a
+        sphere of the mean curvature one move would do.
         """
-        x_own, y_own, z_own = self.seen(point)
-        x, y = x_own, y_own
+        own = self.seen(point)
+        bent = self.surface.steep_per_mm
+        mean_per_mm = (bent + self.surface.flat_per_mm) / 2.0
+        first = math.hypot(bent * own[0], bent * own[1], 1.0 + bent * own[2])
+        x, y = own[0] / first, own[1] / first
         for _ in range(MOST_STEPS):
-            along_x, along_y = self.surface.slope(x, y)
-            above = z_own + self.surface.depth(x, y)
-            next_x, next_y = x_own - above * along_x, y_own - above * along_y
-            moved = abs(next_x - x) + abs(next_y - y)
-            x, y = next_x, next_y
-            if moved < SETTLED_MM:
-                return self.normal(x, y)
+            normal = unit((*self.surface.slope(x, y), 1.0))
+            foot = (x, y, -self.surface.depth(x, y))
+            away = dot((own[0] - foot[0], own[1] - foot[1], own[2] - foot[2]), normal)
+            left = 1.0 + away * mean_per_mm
+            move_x = (own[0] - away * normal[0] - x) / left
+            move_y = (own[1] - away * normal[1] - y) / left
+            if abs(move_x) + abs(move_y) < SETTLED_MM:
+                return self.turned(normal)
+            x, y = x + move_x, y + move_y
         raise OutsideSurfaceError
 
 

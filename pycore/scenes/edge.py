@@ -25,9 +25,7 @@ def edge_scene(lens: FramedLens, prism: Prism, edge: Edge, texts: Sequence[str])
     centre_x, centre_y = lens.rim.centre
     every = len(lens.rim.points) // len(edge.profile)
     around = [(x - centre_x, y - centre_y) for x, y in lens.rim.points[::every]]
-    outer = [
-        _outwards(place, mm) for place, (_, mm) in zip(around, edge.profile, strict=True)
-    ]
+    outer = [_outwards(place, mm) for place, (_, mm) in zip(around, edge.profile, strict=True)]
     bottom = min(y for _, y in outer) - ROOM_MM
     front, back = _cut(lens, prism, edge.centre_mm, bottom)
     shapes = [
@@ -74,15 +72,19 @@ def _cut(lens: FramedLens, prism: Prism, centre_mm: float, top: float) -> tuple[
     return _line([(x, y) for x, y, _ in places]), _line([(x, y) for x, _, y in places])
 
 
-def _marks(edge: Edge, outer: Sequence[tuple[float, float]], texts: Sequence[str]) -> Iterator[Shape]:
-    for role, found, text in zip(("thickest", "thinnest"), (edge.thickest, edge.thinnest), texts, strict=True):
+def _marks(
+    edge: Edge, outer: Sequence[tuple[float, float]], texts: Sequence[str]
+) -> Iterator[Shape]:
+    for role, found, text in zip(
+        ("thickest", "thinnest"), (edge.thickest, edge.thinnest), texts, strict=True
+    ):
         x, y = outer[edge.profile.index(found)]
         yield {"role": role, "kind": "point", "x": _tidy(x), "y": _tidy(y)}
         yield {"role": role, "kind": "label", "x": _tidy(x), "y": _tidy(y), "text": text}
 
 
 def _line(places: Sequence[tuple[float, float]]) -> Line:
-    return [[_tidy(x), _tidy(y)] for x, y in places]
+    return [[round(x, 3), round(y, 3)] for x, y in places]
 
 
 def _tidy(value: float) -> float:

@@ -13,6 +13,7 @@ from pycore.bench.lens_layout import LensLayout
 from pycore.bench.outline import Outline
 from pycore.bench.segment import segment_of
 from pycore.scenes.dial import Scene, Shape
+from pycore.scenes.rim import rim_around
 from pycore.scenes.segment import segment_points
 
 MARGIN_MM = 4.0
@@ -64,7 +65,7 @@ def _lens(
         "y2": 0.0,
         "dashed": True,
     }
-    points = [[round(middle + x, 3), round(y, 3)] for x, y in rim.points(lens.eye)]
+    points = rim_around(rim, lens.eye, Spot(Decimal(-middle), Decimal(0)))
     yield {"role": "outline", "kind": "polygon", "points": points}
     yield from _blank(lens, middle)
     yield from _segment(lens, middle)

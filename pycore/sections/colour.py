@@ -4,15 +4,18 @@ from collections.abc import Iterator, Mapping
 
 from pycore.bench.body import BodyValues, body_values
 from pycore.bench.colour import FRINGE_LIMIT, Colour, Fringe, colour_of
-from pycore.bench.reading import LensAtReading, lens_at_reading
+from pycore.bench.reading import THIN_LIMIT, LensAtReading, lens_at_reading
 from pycore.case import Case
 from pycore.decimals import fixed
 from pycore.names import Entry, number, plain
 from pycore.optics.prism import Eye
 from pycore.sections.answer import Ask, Row, SectionAnswer
-from pycore.sections.near_slab import eye_row
+from pycore.sections.body_asks import body_asks
+from pycore.sections.near_slab import amount_text, eye_row
 from pycore.words import say
 
+LIMIT_TEXT = fixed(FRINGE_LIMIT, 2)
+ABBE_FIELDS = ("lens.index", "lens.abbe")
 Colours = Mapping[Eye, Colour]
 
 
@@ -49,7 +52,7 @@ def _title(worst: tuple[Eye, Fringe] | None) -> str:
 
 
 def _where(eye: Eye, fringe: Fringe) -> dict[str, str]:
-    return {"eye": eye, "amount": fixed(fringe.amount, 2), "limit": fixed(FRINGE_LIMIT, 2)}
+    return {"eye": eye, "amount": amount_text(fringe.amount, FRINGE_LIMIT), "limit": LIMIT_TEXT}
 
 
 def _own(worst: tuple[Eye, Fringe] | None) -> Entry | None:
@@ -80,7 +83,7 @@ def _eye_entry(colour: Colour, body: BodyValues | None) -> Entry:
             "fringe": number(fringe.amount),
             "above_usual": fringe.above_usual,
             "beyond_thin": fringe.beyond_thin,
-            "shown": say("text.prism-dioptres", number=fixed(fringe.amount, 2)),
+            "shown": say("text.prism-dioptres", number=amount_text(fringe.amount, FRINGE_LIMIT)),
         }
     return entry
 
@@ -97,7 +100,9 @@ def _rows(
     point_assumed = any(lenses[eye].point.assumed for eye in colours)
     for place, code in enumerate(("reference", "reading")):
         texts = {
-            eye: say("text.prism-dioptres", number=fixed(it.fringes[place].amount, 2))
+            eye: say(
+                "text.prism-dioptres", number=amount_text(it.fringes[place].amount, FRINGE_LIMIT)
+            )
             for eye, it in colours.items()
         }
         yield eye_row(code, texts, assumed=usual or (code == "reading" and point_assumed))
@@ -108,19 +113,17 @@ def _rows(
 def _asks(
     lenses: Mapping[Eye, LensAtReading], bodies: Mapping[Eye, BodyValues | None]
 ) -> Iterator[Ask]:
-    asked = dict[str, Ask]()
-    for eye, lens in lenses.items():
-        body = bodies[eye]
-        if body and lens.order.lens.abbe is None:
-            usual = {field: body.usual.get(field, "") for field in ("lens.index", "lens.abbe")}
-            if usual["lens.index"]:
-                field = "lens.index"
-                asked[field] = Ask(field=field, usual=usual[field], used=True)
-            field = "lens.abbe"
-            asked[field] = Ask(field=field, usual=usual[field], used=bool(usual[field]))
-        for item in lens.point.assumed:
-            asked[item.field] = Ask(field=item.field, usual=plain(item.usual), used=True)
-    yield from asked.values()
+    known = {eye: body for eye, body in bodies.items() if body and not lenses[eye].order.lens.abbe}
+    taken = {
+        eye: {field: body.usual[field] for field in ABBE_FIELDS if field in body.usual}
+        for eye, body in known.items()
+    }
+    yield from body_asks(taken)
+    if any(body.abbe is None for body in known.values()):
+        yield Ask(field="lens.abbe")
+    points = {item.field: item for lens in lenses.values() for item in lens.point.assumed}
+    for item in points.values():
+        yield Ask(field=item.field, usual=plain(item.usual), used=True)
 
 
 def _notes(colours: Colours) -> Iterator[tuple[str, Mapping[str, str]]]:
@@ -128,10 +131,10 @@ def _notes(colours: Colours) -> Iterator[tuple[str, Mapping[str, str]]]:
         if fringe.above_usual:
             yield f"above-{fringe.where}", _where(eye, fringe)
         if fringe.beyond_thin:
-            amount = fixed(fringe.prism.amount, 2)
+            amount = amount_text(fringe.prism.amount, THIN_LIMIT)
             yield f"beyond-thin-{fringe.where}", {"eye": eye, "amount": amount}
     for eye, colour in colours.items():
         if colour.far:
             yield "far-out", {"eye": eye}
     if colours:
-        yield "threshold-memory", {"limit": fixed(FRINGE_LIMIT, 2)}
+        yield "threshold-memory", {"limit": LIMIT_TEXT}

@@ -14,14 +14,13 @@ from pycore.bench.edge import Edge, Framing, edge_of
 from pycore.bench.edge_options import Option, options_of
 from pycore.case import Case
 from pycore.decimals import fixed, from_float
-from pycore.names import Entry
-from pycore.optics.prism import EYES, Eye
+from pycore.names import Entry, plain, thinning_text
+from pycore.optics.prism import Eye
 from pycore.optics.surface import OutsideSurfaceError
 from pycore.optics.wedge import thin_wedge_tangent, wedge_tangent
 from pycore.scenes.edge import edge_scene
 from pycore.sections.answer import Row, SectionAnswer
 from pycore.sections.framing import (
-    MATERIAL,
     asks_for,
     edge_summary,
     framings_of,
@@ -31,6 +30,8 @@ from pycore.sections.framing import (
     place_code,
     place_text,
     rounded,
+    row_of,
+    takes_usual_values,
     tenths,
 )
 from pycore.words import say
@@ -67,13 +68,13 @@ def edge_section(case: Case) -> SectionAnswer:
         asks=asks,
         notes=(*notes, *_notes(case, framings, edges)),
         scenes={
-            eye: edge_scene(framings[eye].lens, case.dues[eye].expected, edge, _marks(eye, edge))
+            eye: edge_scene(framings[eye].lens, case.dues[eye].expected, edge, _marks(edge))
             for eye, edge in edges.items()
         },
     )
 
 
-def _marks(eye: Eye, edge: Edge) -> tuple[str, str]:
+def _marks(edge: Edge) -> tuple[str, str]:
     return millimetres(edge.thickest[1]), millimetres(edge.thinnest[1])
 
 
@@ -88,7 +89,7 @@ def _own(
     own["options"] = [
         {
             "kind": option.kind,
-            "what": option.what,
+            "figures": [float(figure) for figure in option.figures],
             "needs_agreement": option.kind == "split",
             "thickest_mm": rounded(_thickest(option.edges)),
             "weight_g": rounded(_together(option.edges)),
@@ -151,12 +152,13 @@ def _rows(
     options: list[Option],
 ) -> Iterator[Row]:
     def row(code: str, text: Callable[[Eye, Edge], str], pair: str = "") -> Row:
-        return Row(code=code, pair=pair, **{eye: text(eye, edge) for eye, edge in edges.items()})
+        return row_of(code, {eye: text(eye, edge) for eye, edge in edges.items()}, pair)
 
     yield row("thickest", lambda eye, edge: _found_text(eye, edge.thickest))
     yield row("thinnest", lambda eye, edge: _found_text(eye, edge.thinnest))
-    for name, _ in SIDES:
-        yield row(name, lambda eye, edge, name=name: millimetres(edge.at(dict(_sides(eye))[name])))
+    for number, (name, _) in enumerate(SIDES):
+        sides = {eye: edge.at(_sides(eye)[number][1]) for eye, edge in edges.items()}
+        yield row_of(name, {eye: millimetres(mm) for eye, mm in sides.items()})
     yield row("centre", lambda _, edge: millimetres(edge.centre_mm))
     yield row("governs", lambda _, edge: say(f"governs.{edge.governs}"))
     yield row("weight", lambda _, edge: grams(edge.weight_g), grams(_together(edges)))
@@ -180,8 +182,9 @@ def _wedge_text(case: Case, eye: Eye, framing: Framing) -> str:
 def _option_row(option: Option) -> Row:
     """Each lens's thickest edge after the change; what it is, and the pair's weight."""
     texts = {eye: millimetres(edge.thickest[1]) for eye, edge in option.edges.items()}
-    pair = [part for part in (option.what, grams(_together(option.edges))) if part]
-    return Row(code=f"option-{option.kind}", pair=", ".join(pair), **texts)
+    text = thinning_text if option.kind == "thinning" else plain
+    parts = [*map(text, option.figures), grams(_together(option.edges))]
+    return row_of(f"option-{option.kind}", texts, ", ".join(filter(None, parts)))
 
 
 def _notes(case: Case, framings: Mapping[Eye, Framing], edges: Mapping[Eye, Edge]) -> Notes:
@@ -199,6 +202,6 @@ def _notes(case: Case, framings: Mapping[Eye, Framing], edges: Mapping[Eye, Edge
         notes.append(("addition-estimated", {}))
     if any(framing.lens.rim.holes for framing in framings.values()):
         notes.append(("holes-usual", {}))
-    if any(f"lens.{name}" in framing.values.usual for framing in framings.values() for name in MATERIAL):
+    if takes_usual_values(framings.values()):
         notes.append(("usual-from-memory", {}))
     return notes

@@ -43,10 +43,12 @@ def asks_for(framings: Iterable[Framing], job: Job) -> tuple[Ask, ...]:
     unknown: set[str] = set()
     for framing in framings:
         values = framing.values
-        taken = {f"lens.{name}": values.usual.get(f"lens.{name}") for name in MATERIAL}
+        names = [f"lens.{name}" for name in MATERIAL]
+        taken = {name: values.usual[name] for name in names if name in values.usual}
         for field, text in {**taken, **framing.placed.usual}.items():
-            if text is not None and text not in usual.setdefault(field, []):
-                usual[field].append(text)
+            texts = usual.setdefault(field, [])
+            if text not in texts:
+                texts.append(text)
         if values.density_g_cm3 is None:
             unknown.add("lens.density_g_cm3")
     asks = [Ask(field=f, usual=", ".join(texts), used=True) for f, texts in usual.items()]
@@ -55,6 +57,12 @@ def asks_for(framings: Iterable[Framing], job: Job) -> tuple[Ask, ...]:
 
 def _lacks(job: Job, field: str) -> bool:
     return getattr(job.frame, field.removeprefix("frame.")) is None
+
+
+def row_of(code: str, texts: Mapping[Eye, str], pair: str = "", *, assumed: bool = False) -> Row:
+    """A row from each lens's text. Arguments: `code`; `texts` by eye; `pair`; `assumed`."""
+    right, left = texts.get("right", ""), texts.get("left", "")
+    return Row(code=code, right=right, left=left, pair=pair, assumed=assumed)
 
 
 def material_rows(framings: Mapping[Eye, Framing]) -> list[Row]:
@@ -70,8 +78,13 @@ def material_rows(framings: Mapping[Eye, Framing]) -> list[Row]:
             texts[eye] = "" if value is None else plain(value)
         assumed = any(f"lens.{name}" in framing.values.usual for framing in framings.values())
         code = name.removesuffix("_mm").removesuffix("_g_cm3").replace("_", "-")
-        rows.append(Row(code=code, assumed=assumed, **texts))
+        rows.append(row_of(code, texts, assumed=assumed))
     return rows
+
+
+def takes_usual_values(framings: Iterable[Framing]) -> bool:
+    """Tell whether a figure of the material was not given. Arguments: `framings`."""
+    return any(f"lens.{name}" in framing.values.usual for framing in framings for name in MATERIAL)
 
 
 def millimetres(value: float) -> str:

@@ -3,8 +3,9 @@
 from collections.abc import Iterator, Mapping
 from decimal import Decimal
 
-from pycore.bench.body import body_values
+from pycore.bench.body import BodyValues, body_values
 from pycore.bench.near import (
+    SLAB_LEAST,
     USUAL_CENTRE_MM,
     USUAL_DISTANCE_MM,
     Near,
@@ -21,12 +22,15 @@ from pycore.optics.prism import Eye, Prism
 from pycore.scenes.dial import Scene
 from pycore.scenes.near import near_scene
 from pycore.sections.answer import Ask, Row, SectionAnswer
+from pycore.sections.body_asks import body_asks
 from pycore.sections.near_notes import near_notes
 from pycore.sections.near_slab import (
+    amount_text,
     eye_row,
     millimetres,
     pair_text,
     pair_texts,
+    shown_texts,
     slab_entry,
     slab_rows,
 )
@@ -40,13 +44,15 @@ def near_section(case: Case) -> SectionAnswer:
     lenses: Lenses = {eye: lens for eye, lens in found.items() if lens}
     near = near_of(lenses["right"], lenses["left"]) if len(lenses) == 2 else None
     effects = {eye: _effective(case, lens) for eye, lens in lenses.items()}
+    eyes = {eye: _eye_entry(lens, effects[eye]) for eye, lens in lenses.items()}
+    own = _own(case, near, lenses, effects)
     title, params = _title(near)
     return SectionAnswer(
         title=title,
         title_params=params,
-        own=_own(case, near, lenses, effects),
-        eyes={eye: _eye_entry(lens, effects[eye]) for eye, lens in lenses.items()},
-        rows=tuple(_rows(case, near, lenses, effects)),
+        own=own,
+        eyes=eyes,
+        rows=tuple(_rows(case, near, lenses, effects, eyes, own)),
         asks=tuple(_asks(case, near, lenses)),
         notes=tuple(near_notes(case, near, lenses, effects)),
         scenes=_scenes(case, near, lenses),
@@ -73,7 +79,11 @@ def _title(near: Near | None) -> tuple[str, Mapping[str, str]]:
         return "none", {}
     slab = near.slabs[0]
     code = "slab" if near.advised else "small"
-    return code, {"amount": fixed(slab.amount, 2), "eye": slab.eye, "word": slab.base}
+    return code, {
+        "amount": amount_text(slab.amount, SLAB_LEAST),
+        "eye": slab.eye,
+        "word": slab.base,
+    }
 
 
 def _own(
@@ -121,21 +131,18 @@ def _eye_entry(lens: LensAtReading, effective: Prism | None) -> Entry:
 
 
 def _rows(
-    case: Case, near: Near | None, lenses: Lenses, effects: Mapping[Eye, Prism | None]
+    case: Case,
+    near: Near | None,
+    lenses: Lenses,
+    effects: Mapping[Eye, Prism | None],
+    eyes: Mapping[Eye, Entry],
+    own: Entry | None,
 ) -> Iterator[Row]:
     yield from _point_rows(lenses)
-    texts = {eye: prism_entry(eye, lens.prism)["shown"]["text"] for eye, lens in lenses.items()}
+    texts = shown_texts({eye: entry["at_reading"] for eye, entry in eyes.items()})
     yield eye_row("at-reading", texts, assumed=any(_open_segment(lens) for lens in lenses.values()))
-    if near:
-        yield Row(code="distance", pair=pair_texts(near.distance))
-        assumed = _assumed(lenses) or near.alike
-        if near.vertical_known:
-            yield Row(code="total", pair=pair_texts(near.reading), assumed=assumed)
-            yield Row(code="change", pair=pair_texts(near.change), assumed=assumed)
-            yield from slab_rows(case, near, lenses, assumed=assumed)
-        else:
-            across = pair_text("horizontal", near.reading.horizontal)
-            yield Row(code="total-horizontal", pair=across, assumed=assumed)
+    if near and own:
+        yield from _pair_rows(case, near, lenses, own)
     jumps = {
         eye: fixed(jump, 2)
         for eye, lens in lenses.items()
@@ -144,7 +151,20 @@ def _rows(
     if jumps:
         usual = any(lens.segment and lens.segment.centre_assumed for lens in lenses.values())
         yield eye_row("jump", jumps, assumed=usual)
-    yield from _effective_rows(case, effects)
+    if _has_prism(case):
+        texts = shown_texts({eye: entry["effective"] for eye, entry in eyes.items()})
+        yield from _effective_rows(case, effects, texts)
+
+
+def _pair_rows(case: Case, near: Near, lenses: Lenses, own: Entry) -> Iterator[Row]:
+    assumed = _assumed(lenses) or near.alike
+    yield Row(code="distance", pair=pair_texts(near.distance))
+    if near.vertical_known:
+        yield Row(code="total", pair=pair_texts(near.reading), assumed=assumed)
+        yield Row(code="change", pair=pair_texts(near.change), assumed=assumed)
+        yield from slab_rows(case, near, lenses, own["slab"], assumed=assumed)
+    else:
+        yield Row(code="total-horizontal", pair=own["shown"]["horizontal"], assumed=assumed)
 
 
 def _point_rows(lenses: Lenses) -> Iterator[Row]:
@@ -187,28 +207,21 @@ def _has_prism(case: Case) -> bool:
     return any(snap(due_.prescribed.amount) for due_ in case.dues.values())
 
 
-def _effective_rows(case: Case, effects: Mapping[Eye, Prism | None]) -> Iterator[Row]:
-    if not _has_prism(case):
-        return
+def _effective_rows(
+    case: Case, effects: Mapping[Eye, Prism | None], texts: Mapping[Eye, str]
+) -> Iterator[Row]:
     wear = case.job.wear
     away, centre = wear.reading_distance_mm, wear.rotation_centre_mm
-    yield Row(
-        code="reading-distance",
-        pair=millimetres(away or USUAL_DISTANCE_MM),
-        assumed=away is None,
-    )
-    yield Row(
-        code="rotation-centre",
-        pair=millimetres(centre or USUAL_CENTRE_MM),
-        assumed=centre is None,
-    )
-    known = {eye: prism for eye, prism in effects.items() if prism is not None}
+    for code, given, usual in (
+        ("reading-distance", away, USUAL_DISTANCE_MM),
+        ("rotation-centre", centre, USUAL_CENTRE_MM),
+    ):
+        yield Row(code=code, pair=millimetres(given or usual), assumed=given is None)
     assumed = away is None or centre is None
-    texts = {eye: prism_entry(eye, prism)["shown"]["text"] for eye, prism in known.items()}
     yield eye_row("effective", texts, assumed=assumed)
-    if len(known) == 2:
-        pair = pair_texts(pair_prism(known["right"], known["left"]))
-        yield Row(code="effective-pair", pair=pair, assumed=assumed)
+    right, left = effects.get("right"), effects.get("left")
+    if right is not None and left is not None:
+        yield Row(code="effective-pair", pair=pair_texts(pair_prism(right, left)), assumed=assumed)
 
 
 def _asks(case: Case, near: Near | None, lenses: Lenses) -> Iterator[Ask]:
@@ -228,10 +241,17 @@ def _asks(case: Case, near: Near | None, lenses: Lenses) -> Iterator[Ask]:
             yield Ask(field=f"{lens.eye}.design")
     for field, value in usual.items():
         yield Ask(field=field, usual=plain(value), used=True)
-    if near and near.advised and near.vertical_known:
-        body = body_values(lenses[near.slabs[0].eye].order, case.job.frame)
-        if body and "lens.index" in body.usual:
-            yield Ask(field="lens.index", usual=body.usual["lens.index"], used=True)
+    if near and near.advised:
+        bodies = {
+            slab.eye: body_values(lenses[slab.eye].order, case.job.frame) for slab in near.slabs
+        }
+        taken = {eye: _index_taken(body) for eye, body in bodies.items() if body}
+        yield from body_asks(taken)
+
+
+def _index_taken(body: BodyValues) -> dict[str, str]:
+    """The usual index where nobody gave one, by field. Arguments: `body` of the lens."""
+    return {field: text for field, text in body.usual.items() if field == "lens.index"}
 
 
 def _segment_asks(lens: LensAtReading, usual: dict[str, Decimal]) -> Iterator[Ask]:
@@ -249,6 +269,6 @@ def _segment_asks(lens: LensAtReading, usual: dict[str, Decimal]) -> Iterator[As
 def _scenes(case: Case, near: Near | None, lenses: Lenses) -> dict[str, Scene]:
     eye_with_slab = near.slabs[0].eye if near and near.advised and near.slabs else None
     return {
-        eye: near_scene(lens, case.job.frame, slab_line(lens) if eye == eye_with_slab else None)
+        eye: near_scene(case.job, lens, slab_line(lens) if eye == eye_with_slab else None)
         for eye, lens in lenses.items()
     }

@@ -3,11 +3,11 @@
 from collections.abc import Iterator, Mapping
 
 from pycore.bench.near import SLAB_LEAST, SLAB_MOST, Near
-from pycore.bench.reading import LensAtReading
+from pycore.bench.reading import THIN_LIMIT, LensAtReading
 from pycore.case import Case
 from pycore.decimals import fixed, snap
 from pycore.optics.prism import Eye, Prism
-from pycore.sections.near_slab import pair_text
+from pycore.sections.near_slab import amount_text, pair_text
 
 Note = tuple[str, Mapping[str, str]]
 
@@ -24,7 +24,7 @@ def near_notes(
             yield "outside-segment", {"eye": eye}
         if lens.beyond_thin:
             amount = max(lens.prism.amount, lens.distance.amount)
-            yield "beyond-thin", {"eye": eye, "amount": fixed(amount, 2)}
+            yield "beyond-thin", {"eye": eye, "amount": amount_text(amount, THIN_LIMIT)}
         if effects[eye] is None:
             yield "effective-unknown", {"eye": eye}
     if not all(due_.vertical_known for due_ in case.dues.values()):

@@ -18,13 +18,23 @@ from pycore.bench.near import (
 )
 from pycore.bench.reading import LensAtReading
 from pycore.case import Case
-from pycore.decimals import fixed, snap
+from pycore.decimals import fixed, places_to_tell_apart, snap
 from pycore.names import Entry, number, prism_entry
 from pycore.optics.prism import EYES, Eye
 from pycore.sections.answer import Row
 from pycore.words import say
 
 Lenses = Mapping[Eye, LensAtReading]
+
+
+def amount_text(amount: Decimal, limit: Decimal) -> str:
+    """An amount with as many decimals as tell it from its limit. Arguments and limit in one unit.
+
+    >>> amount_text(Decimal("1.4996"), Decimal("1.5"))
+    '1.4996'
+    """
+    amount = snap(amount)
+    return fixed(amount, places_to_tell_apart(amount, limit))
 
 
 def pair_text(component: str, value: Decimal) -> str:
@@ -47,6 +57,11 @@ def millimetres(value: Decimal) -> str:
 def eye_row(code: str, texts: Mapping[Eye, str], *, assumed: bool = False) -> Row:
     """A row with a text for each lens. Arguments: `code`; `texts` by eye; `assumed`."""
     return Row(code=code, right=texts.get("right", ""), left=texts.get("left", ""), assumed=assumed)
+
+
+def shown_texts(prisms: Mapping[str, Entry | None]) -> dict[Eye, str]:
+    """The texts of prisms already written for the report. Arguments: `prisms` by eye."""
+    return {eye: entry["shown"]["text"] for eye in EYES if (entry := prisms.get(eye))}
 
 
 def slab_entry(case: Case, near: Near, lenses: Lenses) -> Entry:
@@ -86,9 +101,10 @@ def _one_slab(case: Case, near: Near, lenses: Lenses, slab: Slab) -> Entry:
             "vertical": number(after.vertical),
             "left_over": number(after.vertical - near.distance.vertical),
             "clock_difference_d": number(_clock(case, lenses[slab.eye], slab)[0]),
+            "shown": {"vertical": pair_text("vertical", after.vertical)},
         },
         "shown": {
-            "amount": say("text.prism-dioptres", number=fixed(slab.amount, 2)),
+            "amount": say("text.prism-dioptres", number=amount_text(slab.amount, SLAB_LEAST)),
             "in_steps": say("text.prism-dioptres", number=fixed(slab.in_steps, 2)),
         },
     }
@@ -101,25 +117,30 @@ def _clock(case: Case, lens: LensAtReading, slab: Slab) -> tuple[Decimal, bool]:
     return clock_difference(slab.in_steps, body.index), "lens.index" in body.usual
 
 
-def slab_rows(case: Case, near: Near, lenses: Lenses, *, assumed: bool) -> Iterator[Row]:
+def slab_rows(
+    case: Case, near: Near, lenses: Lenses, entry: Entry, *, assumed: bool
+) -> Iterator[Row]:
     """The rows of the slab; how to order and verify it only where one is due.
 
-    Arguments: `case`; `near`; `lenses`; `assumed` whether a usual value stands behind it.
+    Arguments: `case`; `near`; `lenses`; `entry` as `slab_entry` gives it; `assumed` whether a
+    usual value stands behind it.
     """
     for slab in near.slabs:
         yield eye_row(slab.kind, {slab.eye: _component(slab.amount, slab)}, assumed=assumed)
     if near.advised:
-        for slab in near.slabs:
-            yield from _order_rows(case, lenses, slab, assumed=assumed)
+        for slab, made in zip(near.slabs, (entry, entry["other"]), strict=True):
+            yield from _order_rows(case, lenses, slab, made["verify"], assumed=assumed)
         yield from _round_rows(near, lenses, assumed=assumed)
 
 
 def _component(amount: Decimal, slab: Slab) -> str:
     word = say(f"directions.{slab.base}")
-    return say("text.component", amount=fixed(amount, 2), word=word)
+    return say("text.component", amount=amount_text(amount, SLAB_LEAST), word=word)
 
 
-def _order_rows(case: Case, lenses: Lenses, slab: Slab, *, assumed: bool) -> Iterator[Row]:
+def _order_rows(
+    case: Case, lenses: Lenses, slab: Slab, verify: Entry, *, assumed: bool
+) -> Iterator[Row]:
     """One kind of slab: in its steps, its line, and what both instruments then show."""
     steps = {slab.eye: _component(slab.in_steps, slab)}
     yield eye_row(f"{slab.kind}-steps", steps, assumed=assumed)
@@ -129,11 +150,8 @@ def _order_rows(case: Case, lenses: Lenses, slab: Slab, *, assumed: bool) -> Ite
             yield eye_row(
                 f"{slab.kind}-{code}", {slab.eye: millimetres(value)}, assumed=not line.at_segment
             )
-    shown = with_slab(lenses, slab)
-    texts = {eye: prism_entry(eye, shown[eye])["shown"]["text"] for eye in EYES}
-    yield eye_row(f"{slab.kind}-verify", texts, assumed=assumed)
-    after = pair_text("vertical", pair_prism(shown["right"], shown["left"]).vertical)
-    yield Row(code=f"{slab.kind}-verify-pair", pair=after, assumed=assumed)
+    yield eye_row(f"{slab.kind}-verify", shown_texts(verify), assumed=assumed)
+    yield Row(code=f"{slab.kind}-verify-pair", pair=verify["shown"]["vertical"], assumed=assumed)
     clock, usual_index = _clock(case, lenses[slab.eye], slab)
     text = say("text.dioptres", number=fixed(clock, 2))
     yield eye_row(f"{slab.kind}-clock", {slab.eye: text}, assumed=assumed or usual_index)

@@ -92,7 +92,7 @@ def _title(lenses: Lenses, own: Mapping[Eye, Entry]) -> tuple[str, Mapping[str, 
                 return code, {"eye": eye}
     texts = {eye: _prism_text(entry) for eye, entry in own.items()}
     if len(texts) == 2:
-        return "pair", texts
+        return "pair", {str(eye): text for eye, text in texts.items()}
     for eye, text in texts.items():
         return "one", {"eye": eye, "prism": text}
     return "unknown", {}

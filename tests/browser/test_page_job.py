@@ -325,6 +325,8 @@ def test_the_keypad_types_signs_endings_and_bases(page_from_disk: Page, engine_r
     pad.get_by_role("button", name="3", exact=True).click()
     pad.get_by_role("button", name="in", exact=True).click()
     expect(page.locator("#f-right-prism-0-base-in")).to_be_checked()
+    # The job is not whole yet (its state is not said), and still each number is echoed as it was understood.
+    expect(page.locator("#f-right-sphere-line")).to_have_text("−2.25 D")
     box, dock = page.locator("#f-right-prism-0-amount").bounding_box(), page.locator("#dock").bounding_box()
     assert box is not None
     assert dock is not None
@@ -341,3 +343,57 @@ def test_turning_the_tablet_keeps_focus_and_input(page_from_disk: Page) -> None:
     expect(page.locator("#f-left-axis")).to_be_focused()
     page.keyboard.type("5")
     expect(page.locator("#f-left-axis")).to_have_value("165")
+
+
+def test_the_order_check_queries_and_never_alters(page_from_disk: Page) -> None:
+    page = page_from_disk
+    # Base in on one lens and out on the other, both up: what a careful person would query (common practice).
+    give_line(page, "R -2.25 3 BI 1.5 BU L -1.75 3 BO 1.5 BU")
+    choose(page, "f-state-mounted")
+    expect(page.locator(".card.check .note.warning")).not_to_have_count(0)
+    expect(page.locator("#move-order")).to_have_text(re.compile(r"Order \(\d\?\)"))
+    expect(page.locator("#f-left-prism-0-base-out")).to_be_checked()
+    expect(page.locator("#f-left-prism-1-base-up")).to_be_checked()
+
+
+def test_a_number_that_was_signed_before_is_noticed(page_from_disk: Page) -> None:
+    page = page_from_disk
+    demonstrate(page)
+    page.locator("#move-decide").click()
+    page.locator("#f-initials").fill("QX")
+    page.locator("#sign").click()
+    page.locator("#move-keep").click()
+    page.locator("#new-job").click()
+    expect(page.locator("#reopen-known")).to_be_hidden()
+    page.locator("#f-id").fill("DEMO-1042")
+    expect(page.locator("#reopen-known")).to_be_visible()
+    page.locator("#reopen-known").click()
+    expect(outcome(page)).to_have_text("Within")
+
+
+def test_an_edition_of_the_shop_judges_as_the_shops_own(page_from_disk: Page, tmp_path: Path, engine_ready: Ready) -> None:
+    page = page_from_disk
+    engine_ready(page)
+    row = {"check": "prism.vertical", "limit": {"fixed": "0.10"}, "clause": "house rule 1", "provenance": "published"}
+    edition = {"format": "wedgewright.edition/1", "id": "our-shop", "name": "House rules", "states": ["mounted"], "rows": [row]}
+    file = tmp_path / "edition.json"
+    file.write_text(json.dumps(edition | {"rows": [{"check": "nonsense", "limit": {"fixed": "1"}, "clause": "1"}]}))
+    page.locator("#move-bench").click()
+    page.locator("#f-edition-file").set_input_files(file)
+    expect(page.locator(".said-edition")).to_contain_text("nonsense")
+    file.write_text(json.dumps(edition))
+    page.locator("#f-edition-file").set_input_files(file)
+    expect(page.locator("#view-bench .jobs li")).to_contain_text("House rules")
+    page.locator("#move-order").click()
+    demonstrate(page)
+    page.locator("#move-order").click()
+    page.locator("#f-edition").select_option("our-shop")
+    page.locator("#move-read").click()
+    page.locator("#f-readings-right-prism-1-amount").fill("0.00")
+    expect(outcome(page)).to_have_text("Outside")  # 0.25 off against the shop's 0.10, well within the standard's 0.33
+    page.locator("[data-key=why]").click()
+    page.locator("details.check").first.locator("summary").click()
+    expect(page.locator("details.check").first).to_contain_text("the shop's own")
+    expect(page.locator("details.check").first).not_to_contain_text("published")
+    page.reload()
+    expect(page.locator(".decide-head .word")).to_have_text("Outside", timeout=60_000)

@@ -11,7 +11,6 @@ from typing import Any
 import numpy as np
 import pytest
 from hypothesis import given
-from tests.core.strategies import WORDS, Job, jobs, patched
 
 from pycore.bench.colour import dioptric_spread, transverse
 from pycore.case import case_of
@@ -22,6 +21,7 @@ from pycore.optics.power import Power
 from pycore.optics.prism import Prism
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.colour import colour_section
+from tests.core.strategies import WORDS, Job, jobs, patched
 
 EXACT = pytest.approx
 
@@ -52,7 +52,16 @@ JOB: Job = {
 }
 
 # Index, Abbe number, fringe of 3 Δ: table "Data realism" of the domain facts, all from memory.
-TABLE = [("1.498", "58", 0.05), ("1.523", "58.6", 0.05), ("1.53", None, 0.07), ("1.56", None, 0.08), ("1.586", "30", 0.10), ("1.60", "41", 0.07), ("1.67", "32", 0.09), ("1.74", "33", 0.09)]
+TABLE = [
+    ("1.498", "58", 0.05),
+    ("1.523", "58.6", 0.05),
+    ("1.53", None, 0.07),
+    ("1.56", None, 0.08),
+    ("1.586", "30", 0.10),
+    ("1.60", "41", 0.07),
+    ("1.67", "32", 0.09),
+    ("1.74", "33", 0.09),
+]
 
 
 @pytest.mark.parametrize(("index", "abbe", "fringe"), TABLE)
@@ -85,13 +94,19 @@ def test_at_the_reading_point_against_numpy() -> None:
         sphere, cylinder, axis = round(rng.uniform(-8, 8), 2), round(rng.uniform(-4, 4), 2), int(rng.integers(1, 181))
         up, inset, abbe = round(rng.uniform(0, 14), 1), round(rng.uniform(-2, 4), 1), round(rng.uniform(28, 60), 1)
         eye = {"sphere": f"{sphere:+.2f}", "cylinder": f"{cylinder:+.2f}", "axis": str(axis), "prism": base_in("2")}
-        answer = colour(patched(JOB, lens__abbe=str(abbe), wear={"reading_depth_mm": str(up), "reading_inset_mm": str(inset)}, left=eye, right=None))
+        answer = colour(
+            patched(
+                JOB, lens__abbe=str(abbe), wear={"reading_depth_mm": str(up), "reading_inset_mm": str(inset)}, left=eye, right=None
+            )
+        )
         angle = math.radians(axis)
         turn = np.array([[math.cos(angle), -math.sin(angle)], [math.sin(angle), math.cos(angle)]])
         power = turn @ np.diag([sphere, sphere + cylinder]) @ turn.T
         prism = np.array([-2.0, 0.0]) - power @ np.array([-inset, -up]) / 10
         found = answer.eyes["left"]
-        largest = max(largest, abs(found["reading"]["fringe"] - np.linalg.norm(prism) / abbe), abs(found["reference"]["fringe"] - 2 / abbe))
+        largest = max(
+            largest, abs(found["reading"]["fringe"] - np.linalg.norm(prism) / abbe), abs(found["reference"]["fringe"] - 2 / abbe)
+        )
     print(f"\ncolour: largest difference to numpy {largest:.1e} Δ over 400 lenses")
     assert largest < 5e-9
 
@@ -105,6 +120,13 @@ def test_threshold(amount: str, title: str) -> None:
     codes = {code for code, _ in answer.notes}
     assert "threshold-memory" in codes
     assert ("above-reference" in codes, "above-reading" in codes) == (title == "above", title == "above")
+
+
+def test_the_texts_tell_a_fringe_from_the_threshold() -> None:
+    """Never "0.10, above 0.10" (the project's rule for every text)."""
+    answer = colour(patched(JOB, right__prism=base_in("3.01")))
+    assert answer.title_params == {"eye": "right", "amount": "0.1003", "limit": "0.10"}
+    assert row(answer, "reference").right == "0.1003 Δ"
 
 
 def test_the_largest_is_named() -> None:

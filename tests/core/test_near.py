@@ -14,7 +14,6 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from scipy.optimize import brentq
-from tests.core.strategies import WORDS, Job, jobs, patched
 
 from pycore.bench.near import clock_difference, effective_at_near, round_segments_difference_mm, slabs_for
 from pycore.case import Case, case_of
@@ -24,6 +23,7 @@ from pycore.optics.power import Power
 from pycore.optics.prism import Prism
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.near import near_section
+from tests.core.strategies import WORDS, Job, jobs, patched
 
 EXACT = pytest.approx
 
@@ -101,12 +101,17 @@ def test_published_vertical_at_near(name: str) -> None:
         assert (slab["eye"], slab["base"], slab["kind"]) == (SLAB_EYE[name[:4]], "up", "slab-off")
         assert slab["amount"] == EXACT(abs(vertical))
         other = slab["other"]
-        assert (other["eye"], other["base"], other["kind"]) == ("left" if slab["eye"] == "right" else "right", "down", "reverse-slab")
+        assert (other["eye"], other["base"], other["kind"]) == (
+            "left" if slab["eye"] == "right" else "right",
+            "down",
+            "reverse-slab",
+        )
         assert other["amount"] == slab["amount"]
 
 
 @pytest.mark.parametrize(
-    ("name", "published"), [("WE49 trade series, axis 130: 2.09", 2.0), ("WE50 corrected: 2.75 BU left", 2.25), ("WE51 corrected: 2.25 BU right", 2.0)]
+    ("name", "published"),
+    [("WE49 trade series, axis 130: 2.09", 2.0), ("WE50 corrected: 2.75 BU left", 2.25), ("WE51 corrected: 2.25 BU right", 2.0)],
 )
 def test_published_keys_that_are_wrong(name: str, published: float) -> None:
     """WE49 rounds the left lens, WE50 and WE51 are misprints or rounded: the section must not agree with them."""
@@ -115,7 +120,7 @@ def test_published_keys_that_are_wrong(name: str, published: float) -> None:
 
 
 def test_each_lens_below_its_centre() -> None:
-    """WE47 textbook p. 47: 2.4 and 4.8 base down; WE52: 0.5 down and 0.5 up; WE66: the published 1.2 up used the sphere, it is 0.8."""
+    """WE47 textbook p. 47: 2.4 and 4.8 base down; WE52: 0.5 down, 0.5 up; WE66: the published 1.2 up used the sphere, it is 0.8."""
     answer = near(pair("-3", "-6", "8"))
     assert [answer.eyes[eye]["at_reading"]["vertical"] for eye in ("right", "left")] == [
         {"amount": EXACT(2.4), "base": "down"},
@@ -197,10 +202,10 @@ def as_fields(e: dict[str, Any]) -> Job:
     return {**power, "axis": str(e["axis"]), "add": f"{e['add']:.2f}", "prp_height_mm": "20", "segment": segment, "prism": prism}
 
 
-def test_thousands_of_pairs_with_unlike_segments() -> None:
+def test_hundreds_of_pairs_with_unlike_segments() -> None:
     """Random toric pairs with prism and unlike segments against numpy's matrices; the largest difference is printed."""
     rng, largest = np.random.default_rng(20), 0.0
-    for _ in range(1500):
+    for _ in range(500):
         wear = {
             "reading_depth_mm": f"{rng.uniform(6.5, 15):.1f}",
             "reading_inset_mm": f"{rng.uniform(-1, 4):.1f}",
@@ -228,7 +233,7 @@ def test_thousands_of_pairs_with_unlike_segments() -> None:
                 abs(found["effective"][part] - expected[f"effective {part}"]),
             )
         assert found["slab"]["amount"] == EXACT(abs(found["change"]["vertical"]), abs=1e-9)
-    print(f"\nnear: largest difference to numpy {largest:.1e} Δ over 1500 pairs")
+    print(f"\nnear: largest difference to numpy {largest:.1e} Δ over 500 pairs")
     assert largest < 5e-9
 
 
@@ -333,7 +338,15 @@ def test_usual_values_are_offered_and_marked() -> None:
     ("changes", "inset_mm"),
     [
         ({"right__pd_mm": "32", "right__near_pd_mm": "30.4", "wear__reading_inset_mm": None}, 1.6),
-        ({"right__segment": {"inset_mm": "1.8"}, "lens__design": "bifocal", "right__add": "2.00", "wear__reading_inset_mm": None}, 1.8),
+        (
+            {
+                "right__segment": {"inset_mm": "1.8"},
+                "lens__design": "bifocal",
+                "right__add": "2.00",
+                "wear__reading_inset_mm": None,
+            },
+            1.8,
+        ),
         ({"right__segment": {"width_mm": "28"}, "wear__reading_inset_mm": None}, None),
         ({"right__pd_mm": "32", "right__near_pd_mm": "30.4"}, 2.0),
         ({"wear__reading_inset_mm": None}, 2.5),
@@ -407,7 +420,15 @@ def test_dissimilar_round_segments() -> None:
     assert row(near(bifocals(shape="flat-top", width_mm="28")), "round-segments") is None
 
 
-@pytest.mark.parametrize(("shape", "width_mm", "add", "jump"), [("flat-top", "35", "3.00", 1.5), ("flat-top", "28", "3.25", 1.625), ("round", "22", "2.00", 2.2), ("full-width", "50", "2.00", 0.0)])
+@pytest.mark.parametrize(
+    ("shape", "width_mm", "add", "jump"),
+    [
+        ("flat-top", "35", "3.00", 1.5),
+        ("flat-top", "28", "3.25", 1.625),
+        ("round", "22", "2.00", 2.2),
+        ("full-width", "50", "2.00", 0.0),
+    ],
+)
 def test_image_jump(shape: str, width_mm: str, add: str, jump: float) -> None:
     """WE61, lens cards: 1.5, 1.63, 2.2 with centres 5, 5 and 11 mm below the top; none where the centre is at the line."""
     answer = near(bifocals(add, add, shape=shape, width_mm=width_mm))
@@ -468,7 +489,9 @@ def test_the_add_applies_inside_the_segment(wear: Job, segment: Job, inside: boo
 
 
 def test_progressives_say_what_is_left_out() -> None:
-    job = patched(pair("-3", "-6", "10"), lens__design="progressive", right__add="2.00", left__add="2.00", thinning={"rule": "none"})
+    job = patched(
+        pair("-3", "-6", "10"), lens__design="progressive", right__add="2.00", left__add="2.00", thinning={"rule": "none"}
+    )
     assert {"progressive-not-modelled"} == notes(near(job)) & {"progressive-not-modelled", "progressive-adds-differ"}
     answer = near(patched(job, left__add="2.50"))
     assert ("progressive-adds-differ", {"amount": "0.50"}) in answer.notes
@@ -481,7 +504,13 @@ def test_progressives_say_what_is_left_out() -> None:
 
 @pytest.mark.parametrize(
     ("left", "title", "note", "advised"),
-    [("-3", "none", None, False), ("-4.49", "small", "below-threshold", False), ("-4.50", "slab", "slab-memory", True), ("-9.00", "slab", "slab-memory", True), ("-9.01", "slab", "above-usual", True)],
+    [
+        ("-3", "none", None, False),
+        ("-4.49", "small", "below-threshold", False),
+        ("-4.50", "slab", "slab-memory", True),
+        ("-9.00", "slab", "slab-memory", True),
+        ("-9.01", "slab", "above-usual", True),
+    ],
 )
 def test_thresholds(left: str, title: str, note: str | None, advised: bool) -> None:
     """1.5 Δ threshold, about 6 Δ at most (question banks, domain facts 4.12)."""
@@ -490,6 +519,14 @@ def test_thresholds(left: str, title: str, note: str | None, advised: bool) -> N
     assert answer.own["slab"]["advised"] is advised
     assert note is None or note in notes(answer)
     assert (row(answer, "slab-off-steps") is not None) is advised
+
+
+def test_the_texts_tell_an_amount_from_its_limit() -> None:
+    """Never "1.50, below 1.50" (the project's rule for every text)."""
+    answer = near(pair("-3", "-6", "4.999"))
+    assert (answer.title, answer.title_params["amount"]) == ("small", "1.4997")
+    assert row(answer, "slab-off").left == "1.4997 up"
+    assert ("beyond-thin", {"eye": "right", "amount": "20.001"}) in near(pair("-20.001", "-20", "10")).notes
 
 
 def test_steps() -> None:
@@ -505,6 +542,8 @@ def test_where_the_line_lies() -> None:
     line = own(pair("-3", "-6", "10"))["slab"]["line"]
     assert line == {"up_from_prp_mm": -5.0, "height_mm": None, "at_segment_top": False}
     line = own(patched(pair("-3", "-6", "10"), left__prp_height_mm="18"))["slab"]["line"]
+    assert line["height_mm"] == 13.0
+    line = own(patched(pair("-3", "-6", "10"), left__fitting_height_mm="22", left__cross_above_prp_mm="4"))["slab"]["line"]
     assert line["height_mm"] == 13.0
 
 
@@ -549,7 +588,10 @@ def refracted(slope: float, normal: float, ratio: float) -> float:
 def angle_behind(lens_: dict[str, float], start: tuple[float, float], angle: float) -> tuple[float, float, float]:
     """Trace one ray through a thick lens with a tilted back, in one plane: where it leaves, and its angle."""
     z, h = start
-    for pole, curve, tilt, ratio in ((0.0, lens_["front"], 0.0, 1 / lens_["n"]), (lens_["t"], lens_["back"], lens_["tilt"], lens_["n"])):
+    for pole, curve, tilt, ratio in (
+        (0.0, lens_["front"], 0.0, 1 / lens_["n"]),
+        (lens_["t"], lens_["back"], lens_["tilt"], lens_["n"]),
+    ):
         # A circle through the pole, turned there by `tilt`.
         centre_z, centre_h = pole + math.cos(tilt) / curve, -math.sin(tilt) / curve
         run, rise = math.cos(angle), math.sin(angle)
@@ -649,28 +691,37 @@ def test_the_prescribed_stays_in_the_total() -> None:
     assert answer.title_params == {"amount": "2.40", "eye": "left", "word": "up"}
 
 
+def shapes_of(job: Job, eye: str) -> dict[str, Job]:
+    return {shape["role"]: shape for shape in near(job).scenes[eye]["shapes"]}
+
+
+def ends(points: list[list[float]]) -> tuple[float, ...]:
+    across, along = [x for x, _ in points], [y for _, y in points]
+    return min(across), min(along), max(across), max(along)
+
+
 def test_pictures() -> None:
     """Boxing (ISO 8624): nasal edge DBL/2 from the middle, which is the PD from the point; the slab line on one lens only."""
-    job = patched(bifocals(shape="round", width_mm="22"), frame={"a_mm": "52", "b_mm": "34", "dbl_mm": "18"}, right__pd_mm="31", right__prism=prisms("1", "1"))
-    scenes = near(job).scenes
-    shapes = {shape["role"]: shape for shape in scenes["right"]["shapes"]}
-    assert shapes["box"] == {"role": "box", "kind": "rect", "x": -30.0, "y": -20.0, "x2": 22.0, "y2": 14.0}
-    assert shapes["segment"] == {"role": "segment", "kind": "circle", "x": 2.0, "y": -15.0, "radius": 11.0}
-    assert "slab-line" not in shapes
-    assert "box" not in {shape["role"] for shape in scenes["left"]["shapes"]}
-    line = next(shape for shape in scenes["left"]["shapes"] if shape["role"] == "slab-line")
-    assert line["y"] == line["y2"] == -4.0
-    job = patched(job, left__pd_mm="31", left__segment__shape="flat-top", left__segment__inset_mm=None)
-    shapes = {shape["role"]: shape for shape in near(job).scenes["left"]["shapes"]}
-    assert (shapes["box"]["x"], shapes["box"]["x2"]) == (-22.0, 30.0)
-    assert shapes["segment"] == {"role": "segment", "kind": "line", "x": -13.0, "y": -4.0, "x2": 9.0, "y2": -4.0}
-    unplaced = patched(job, left__prp_height_mm=None, right__prp_height_mm=None)
-    assert {shape["role"] for shape in near(unplaced).scenes["left"]["shapes"]}.isdisjoint({"segment", "slab-line", "box"})
-    narrow = patched(bifocals(shape="full-width"), right__pd_mm=None)
-    assert [shape["kind"] for shape in near(narrow).scenes["right"]["shapes"] if shape["role"] == "segment"] == ["line"]
-    for scene in scenes.values():
+    frame = {"a_mm": "52", "b_mm": "34", "dbl_mm": "18", "ed_mm": "55", "shape": "oval"}
+    job = patched(bifocals(shape="round", width_mm="22"), frame=frame, right__pd_mm="31", right__prism=prisms("1", "1"))
+    right, left = shapes_of(job, "right"), shapes_of(job, "left")
+    assert ends(right["outline"]["points"]) == EXACT((-30.0, -20.0, 22.0, 14.0), abs=0.01)
+    assert right["outline"]["dashed"] is False
+    assert ends(right["segment"]["points"]) == EXACT((-9.0, -26.0, 13.0, -4.0), abs=0.1)
+    assert "slab-line" not in right
+    assert "outline" not in left
+    assert (left["slab-line"]["x"], left["slab-line"]["y"], left["slab-line"]["y2"]) == (-18.0, -4.0, -4.0)
+    left = shapes_of(patched(job, left__pd_mm="31", left__segment__shape="flat-top", left__segment__inset_mm=None), "left")
+    assert ends(left["outline"]["points"]) == EXACT((-22.0, -20.0, 30.0, 14.0), abs=0.01)
+    assert ends(left["segment"]["points"])[3] == -4.0
+    unplaced = patched(job, left__prp_height_mm=None, right__prp_height_mm=None, frame=None)
+    assert {"segment", "slab-line", "outline"}.isdisjoint(shapes_of(unplaced, "left"))
+    assert "segment" not in shapes_of(bifocals(), "right")
+    far = shapes_of(patched(job, right__prism=prisms("0", "60")), "right")["arrow"]
+    for scene in near(job).scenes.values():
         low_x, low_y, high_x, high_y = scene["extent"]
-        assert all(low_x <= shape["x"] <= high_x and low_y <= shape["y"] <= high_y for shape in scene["shapes"])
+        assert all(low_x <= shape["x"] <= high_x and low_y <= shape["y"] <= high_y for shape in scene["shapes"] if "x" in shape)
+    assert math.hypot(far["x2"] - far["x"], far["y2"] - far["y"]) == EXACT(40.0, abs=0.01)
 
 
 @given(st.sampled_from(["single-vision", "bifocal", "trifocal", "progressive", "near"]), jobs(read=False))

@@ -11,6 +11,8 @@ AJOPO 1976;53:27-33; the technical brief "Understanding Prism-Thinning", 1998.
 
 from __future__ import annotations
 
+import cmath
+import math
 from decimal import ROUND_HALF_EVEN, Context, Decimal
 from fractions import Fraction
 from typing import Any
@@ -55,14 +57,14 @@ def vector_of_180(eye: str, amount: float, degrees: float, side: str) -> complex
     return complex(vector(amount, degrees if side == "up" else degrees + 180))
 
 
-def base_of(prism: Any) -> Any:
-    """Base(s) in degrees, 0 (included) to 360; meaningless for a prism of 0."""
-    return np.rad2deg(np.angle(prism)) % 360
+def base_of(prism: complex) -> float:
+    """Base in degrees, 0 (included) to 360; meaningless for a prism of 0."""
+    return math.degrees(cmath.phase(prism)) % 360
 
 
-def turn_between(first_deg: Any, second_deg: Any, whole: float = 360) -> Any:
-    """How far two directions lie apart, in degrees, on a circle of `whole` degrees."""
-    return np.abs((np.asarray(first_deg) - second_deg + whole / 2) % whole - whole / 2)
+def turn_between(first_deg: float, second_deg: float) -> float:
+    """How far two directions lie apart, in degrees."""
+    return abs((first_deg - second_deg + 180) % 360 - 180)
 
 
 def horizontal_word(eye: str, x: float) -> str | None:
@@ -130,12 +132,12 @@ def along(matrix: Floats, meridian_deg: float) -> Any:
     return np.einsum("i,...ij,j->...", unit, matrix, unit)
 
 
-def spherocylinder(matrix: Floats, sign: int) -> tuple[float, float, float]:
-    """Sphere, cylinder and axis (0 to 180) of one matrix in the plus (+1) or minus (-1) form, by its eigenvectors."""
+def spherocylinder(matrix: Floats, sign: int) -> tuple[Any, Any, Any]:
+    """Sphere, cylinder and axis (0 to 180) in the plus (+1) or minus (-1) form, by the eigenvectors."""
     values, vectors = np.linalg.eigh(matrix)
     first = 0 if sign > 0 else 1  # the axis lies along the weaker principal meridian in the plus form
-    axis = np.rad2deg(np.arctan2(vectors[1, first], vectors[0, first])) % 180
-    return float(values[first]), float(values[1 - first] - values[first]), float(axis)
+    axis = np.rad2deg(np.arctan2(vectors[..., 1, first], vectors[..., 0, first])) % 180
+    return values[..., first], values[..., 1 - first] - values[..., first], axis
 
 
 def prism_at(start: Any, matrix: Floats, offset_mm: Any) -> Any:
@@ -145,10 +147,11 @@ def prism_at(start: Any, matrix: Floats, offset_mm: Any) -> Any:
     return start - (pulled[..., 0] + 1j * pulled[..., 1])
 
 
-def optical_centre_mm(prism: complex, matrix: Floats) -> complex:
+def optical_centre_mm(prism: Any, matrix: Floats) -> Any:
     """Where the optical centre lies seen from the point showing `prism`: F⁻¹ p, as complex mm. Singular F raises."""
-    right, up = np.linalg.solve(matrix, np.array([prism.real, prism.imag])) * 10
-    return complex(right, up)
+    prism = np.asarray(prism)
+    solved = np.linalg.solve(matrix, np.stack([prism.real, prism.imag], -1)[..., None])[..., 0] * 10
+    return solved[..., 0] + 1j * solved[..., 1]
 
 
 # --- the prism compensator --------------------------------------------------------------------------------------------
@@ -163,15 +166,20 @@ def read_through_compensator(seen: complex, scale: complex, sense: str) -> compl
     return seen + {"lens-prism": scale, "own-base": -scale}[sense]
 
 
-def setting_to_centre(expected: complex, sense: str) -> complex:
-    """What must stand on the scale for the target to be at the centre."""
-    return {"lens-prism": expected, "own-base": -expected}[sense]
+def setting_to_centre(expected: complex, sense: str, maximum: float) -> tuple[complex, complex]:
+    """What must stand on the scale for the target to come to the centre, and what is then still seen.
+
+    Nothing is left unless the compensator ends at `maximum` prism dioptres; then it goes as far as it can.
+    """
+    amount = abs(expected)
+    taken = expected if amount <= maximum else expected / amount * maximum
+    return {"lens-prism": taken, "own-base": -taken}[sense], expected - taken
 
 
-def setting_onto_rings(expected: complex, rings: float, sense: str) -> tuple[complex, complex] | None:
-    """The smallest setting that brings the target back to the outermost ring, and what then is seen (row WE84)."""
+def setting_onto_rings(expected: complex, rings: float, sense: str, maximum: float) -> tuple[complex, complex] | None:
+    """The smallest setting that brings the target back to the outermost ring, and what is then seen (row WE84)."""
     amount = abs(expected)
     if amount <= rings:
         return None
-    seen = expected / amount * rings
-    return setting_to_centre(expected - seen, sense), seen
+    setting, left = setting_to_centre(expected / amount * (amount - rings), sense, maximum)
+    return setting, expected / amount * rings + left

@@ -1,7 +1,7 @@
 // What was typed <-> the job document. The document's shape is the contract's (wedgewright.job/1); numbers stay text.
 import assert from "node:assert/strict";
 import { test } from "node:test";
-import { fromJob, hasOrder, nextJob, readJobFile, removeBranch, toJob } from "../../web/app/job.js";
+import { fromJob, guestJob, hasOrder, nextJob, readJobFile, removeBranch, toJob } from "../../web/app/job.js";
 
 const TYPED = {
   id: " T-1 ",
@@ -72,4 +72,13 @@ test("a branch is removed whole, its neighbours stay", () => {
   const draft = { "right.prism[0].amount": "1", "right.prism[10].amount": "2", "right.prismatic": "3", "right.sphere": "+1" };
   removeBranch(draft, "right.prism");
   assert.deepEqual(draft, { "right.prismatic": "3", "right.sphere": "+1" });
+});
+
+test("a job from elsewhere brings its own bench, and the next job has this bench again", () => {
+  const here = { "right.sphere": "+1", "instrument.compensator": "own-base", edition: "iso-21987" };
+  const guest = guestJob(here, { "left.sphere": "-1", "instrument.compensator": "lens-prism" });
+  assert.equal(guest["instrument.compensator"], "lens-prism");
+  assert.deepEqual(toJob(guest).job, { format: "wedgewright.job/1", left: { sphere: "-1" }, instrument: { compensator: "lens-prism" } });
+  const second = guestJob(guest, { "left.sphere": "-2", "instrument.rings": "3" });
+  assert.deepEqual(nextJob(second), { "instrument.compensator": "own-base", edition: "iso-21987" });
 });

@@ -20,16 +20,10 @@ function text(prism) {
   return prism?.shown["text"] ?? "";
 }
 
-/** @param {CompensatorSetting|null|undefined} setting the setting, what it leaves, and whether the scale reaches it */
-function settingTexts(setting) {
-  if (!setting) return [];
-  const leaves = text(setting.residual);
-  return [
-    setting.shown["text"] ?? "",
-    setting.shown["text_180"] ?? "",
-    leaves ? say("page.facts.leaves", { prism: leaves }) : "",
-    setting.beyond_maximum ? say("page.facts.beyond_maximum") : "",
-  ];
+/** @param {CompensatorSetting} setting the scale's setting, what the target then does, and whether the scale reaches it */
+function settingTexts({ shown: scale, residual, beyond_maximum: beyond }) {
+  const stands = residual.quadrant === "none" ? say("page.facts.centres") : say("page.facts.leaves", { prism: text(residual) });
+  return [scale["text"] ?? "", scale["text_180"] ?? "", stands, beyond ? say("page.facts.beyond_maximum") : ""];
 }
 
 /** @param {import("./types.js").Prism|null|undefined} prism @returns {string} its text, "none" where there is no prism */
@@ -79,10 +73,7 @@ function compensatorFacts(lens) {
   const setting = lens.compensator;
   if (!setting) return [];
   if (setting.sense === "unknown") return [fact("compensator", [say("page.facts.sense_unknown")], "compensator")];
-  const rows = [];
-  if (setting.full) rows.push(fact("compensator_full", settingTexts(setting.full), "compensator"));
-  if (setting.onto_rings) rows.push(fact("compensator_rings", settingTexts(setting.onto_rings), "compensator"));
-  return rows;
+  return [setting.full, setting.onto_rings].flatMap((one) => (one ? [fact("compensator", settingTexts(one), "compensator")] : []));
 }
 
 /** @param {LensReport} lens @returns {Fact[]} the rows that open on demand */

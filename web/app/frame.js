@@ -69,6 +69,11 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
   return {
     show,
     keypad: () => pad.setAttribute("aria-pressed", String(wantsKeypad(settings))),
+    /** @param {number} count warnings of the order check, shown where one may be in another move */
+    queries(count) {
+      const order = tabs[0];
+      if (order) order.textContent = count ? say("page.nav.order_queries", { count }) : say("page.nav.order");
+    },
     /** @param {string} code @param {string} [mode] */
     engine(code, mode) {
       // While it starts, the strip says so; here stands only what lasts.

@@ -8,6 +8,8 @@ const SIGNED = new Set(["sphere", "cylinder"]);
 const WORDS = new Set(["in", "out", "up", "down"]);
 /** What stays when the next job is begun: the bench and its rules, not the order. */
 const BENCH = /^(instrument|edition|edition_options|decision_rule)\b/;
+const GUEST = "page.guest";
+const ASIDE = "page.bench.";
 /** What the page keeps beside the job: the line being typed, the way a prism is written. */
 const PAGE_ONLY = /^(line|page)\b/;
 
@@ -130,20 +132,26 @@ function flatten(value, path, entries) {
 }
 
 /**
- * A job file's text as a document whose numbers are the text they were written with. A JSON number
- * needs no plus sign, a typed power does: it is written out.
+ * A file's text as data whose numbers are the text they were written with.
+ *
+ * @param {string} text
+ * @param {(key: string, digits: string) => string} [write]
+ * @returns {unknown}
+ */
+export function readFile(text, write = (_key, digits) => digits) {
+  /** @type {(this: any, key: string, value: unknown, context?: {source?: string}) => unknown} */
+  const keepDigits = (key, value, context) => (typeof value === "number" ? write(key, context?.source ?? String(value)) : value);
+  return JSON.parse(text, keepDigits);
+}
+
+/**
+ * A job file's text as a document. A JSON number needs no plus sign, a typed power does: it is written out.
  *
  * @param {string} text
  * @returns {unknown}
  */
 export function readJobFile(text) {
-  /** @type {(this: any, key: string, value: unknown, context?: {source?: string}) => unknown} */
-  const keepDigits = (key, value, context) => {
-    if (typeof value !== "number") return value;
-    const digits = context?.source ?? String(value);
-    return SIGNED.has(key) && !digits.startsWith("-") ? `+${digits}` : digits;
-  };
-  return JSON.parse(text, keepDigits);
+  return readFile(text, (key, digits) => (SIGNED.has(key) && !digits.startsWith("-") ? `+${digits}` : digits));
 }
 
 /** @param {Entries} entries whether there is an order or a reading to answer */
@@ -153,9 +161,29 @@ export function hasOrder(entries) {
   );
 }
 
-/** @param {Entries} entries @returns {Entries} what the next job begins with */
+/**
+ * What the next job begins with: this bench and its rules. A job from elsewhere (a file, the demonstration) brings its
+ * own bench; the one it pushed aside stands under `page.bench` and comes back with the next job.
+ *
+ * @param {Entries} entries
+ * @returns {Entries}
+ */
 export function nextJob(entries) {
+  const aside = Object.entries(entries).filter(([path]) => path.startsWith(ASIDE));
+  if (entries[GUEST]) return Object.fromEntries(aside.map(([path, text]) => [path.slice(ASIDE.length), text]));
   return Object.fromEntries(Object.entries(entries).filter(([path]) => BENCH.test(path)));
+}
+
+/**
+ * A job from elsewhere on this bench.
+ *
+ * @param {Entries} entries what is there now
+ * @param {Entries} job
+ * @returns {Entries}
+ */
+export function guestJob(entries, job) {
+  const own = Object.entries(nextJob(entries)).map(([path, text]) => [ASIDE + path, text]);
+  return { ...job, ...Object.fromEntries(own), [GUEST]: "true" };
 }
 
 /** @param {Entries} entries @param {string} prefix removes a branch, in place */

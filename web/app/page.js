@@ -3,9 +3,10 @@
 import { watchDock } from "./dock.js";
 import { byId, el, redraw } from "./dom.js";
 import { copyText, download, fileName } from "./files.js";
+import { shopEditions } from "./editions.js";
 import { createForm } from "./form.js";
 import { frame } from "./frame.js";
-import { fromJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
+import { fromJob, guestJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
@@ -61,12 +62,13 @@ export function startPage(startEngine) {
   });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
+  const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
-    order: orderView({ form, state, line: line.node, demonstrate }),
+    order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     read: readView({ form, state, steps }),
     decide: decideView({ state, sign, print: () => window.print(), copy }),
     keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
-    bench: benchView({ form, settings, settingsChanged, erase }),
+    bench: benchView({ form, settings, settingsChanged, erase, editions }),
   };
   const keypad = createKeypad({ settings, next: moveOn, setBase });
   const top = frame({ state, views, settings, toggleKeypad, drawView });
@@ -86,6 +88,7 @@ export function startPage(startEngine) {
     drawView(settings.view);
     strip.draw(standing);
     top.draw();
+    top.queries((standing.report?.notes ?? []).filter(({ about, severity }) => about === "order" && severity === "warning").length);
     root.dataset["earlier"] = String(standing.earlier);
     performance.mark("dial-drawn");
   }
@@ -118,7 +121,7 @@ export function startPage(startEngine) {
     if (!standing.report) strip.draw(standing);
     top.draw();
     const built = toJob(state.entries);
-    const given = await engine.ask({ do: "report", job: built.job, sections: [], scenes: true }, { lane: "verdict" });
+    const given = await engine.ask({ do: "report", job: built.job, sections: [], scenes: true, editions: editions.all }, { lane: "verdict" });
     if (!given) return;
     place = built.place;
     understood = given["echo"] ?? {};
@@ -137,13 +140,20 @@ export function startPage(startEngine) {
     answer();
   });
 
+  /** @param {any[]} list every edition there is, the shop's own last */
+  function editionsListed(list) {
+    views.order.useEditions(list);
+    views.bench.showEditions(list.filter(({ provenance }) => provenance.includes("local")));
+    if (state.entries["edition"]) answer();
+  }
+
   async function demonstrate() {
     const given = await engine.ask({ do: "demonstration" }, { lane: "demonstration" });
     if (!given?.["job"]) {
       if (given?.["errors"]) refuse(given["errors"]);
       return;
     }
-    state.replace({ ...nextJob(state.entries), ...fromJob(given["job"]) });
+    state.replace(guestJob(state.entries, fromJob(given["job"])));
     top.show("read");
   }
 
@@ -166,12 +176,12 @@ export function startPage(startEngine) {
       return "not_json";
     }
     if (!job || typeof job !== "object" || /** @type {any} */ (job).format !== "wedgewright.job/1") return "not_a_job";
-    state.replace(fromJob(job));
+    state.replace(guestJob(state.entries, fromJob(job)));
     return "";
   }
 
   async function copy() {
-    const given = await engine.ask({ do: "report", job: toJob(state.entries).job, sections: [], text: true }, { lane: "text" });
+    const given = await engine.ask({ do: "report", job: toJob(state.entries).job, sections: [], text: true, editions: editions.all }, { lane: "text" });
     const text = given?.["text"];
     if (!text) return;
     const taken = await copyText(text);
@@ -196,13 +206,14 @@ export function startPage(startEngine) {
   }
 
   async function showJobs() {
-    const jobs = /** @type {KeptJob[]} */ ((await store?.all("jobs")) ?? []);
-    views.keep.showJobs(jobs.reverse());
+    const jobs = /** @type {KeptJob[]} */ ((await store?.all("jobs")) ?? []).reverse();
+    views.keep.showJobs(jobs);
+    views.order.showJobs(jobs);
   }
 
   /** @param {KeptJob} job */
   function reopen(job) {
-    state.replace(job.entries);
+    state.replace(guestJob(state.entries, job.entries));
     top.show("read");
   }
 
@@ -246,15 +257,13 @@ export function startPage(startEngine) {
   openStore()
     .then(async (opened) => {
       store = opened;
+      await editions.open(opened);
       showJobs();
       await keepDraft(state, opened, top.saved);
     })
     .catch(() => top.saved("off"));
 
-  engine.ask({ do: "list-editions" }, { lane: "editions" }).then((given) => {
-    if (given?.["editions"]) views.order.useEditions(given["editions"]);
-  });
-
+  editions.list();
   top.show(settings.view);
   draw();
   keypad.refresh();

@@ -1,10 +1,10 @@
 /**
- * What this tablet keeps: the draft in two slots by turns, and the signed jobs. Strict durability; a promise is kept only
+ * What this tablet keeps: the draft in two slots by turns, the signed jobs, and the shop's own editions. Strict durability; a promise is kept only
  * when the write is complete. Storage is shared by all pages opened from disk, hence the name.
  */
 
 const NAME = "wedgewright";
-const STORES = ["drafts", "jobs"];
+const STORES = ["drafts", "jobs", "editions"];
 
 /** @typedef {Awaited<ReturnType<typeof openStore>>} Store */
 
@@ -48,6 +48,8 @@ export async function openStore() {
     put: (store, key, value) => transact(store, "readwrite", (place) => place.put(value, key)),
     /** @param {string} store @returns {Promise<any[]>} */
     all: (store) => transact(store, "readonly", (place) => place.getAll()),
+    /** @param {string} store @param {IDBValidKey} key */
+    remove: (store, key) => transact(store, "readwrite", (place) => place.delete(key)),
     /** Removes everything that was ever kept here. */
     erase() {
       database.close();

@@ -1,8 +1,10 @@
 /** This bench: its lens meter, how well it reads, and how this tablet shows things. */
 
-import { button, el } from "../dom.js";
+import { button, el, redraw } from "../dom.js";
+import { faultText } from "../faults.js";
 import { choiceControl } from "../controls.js";
 import * as fields from "../fields.js";
+import { readFile } from "../job.js";
 import { say } from "../words.js";
 
 /**
@@ -11,8 +13,10 @@ import { say } from "../words.js";
  * @param {import("../settings.js").Settings} tools.settings
  * @param {() => void} tools.settingsChanged
  * @param {() => void} tools.erase
+ * @param {ReturnType<typeof import("../editions.js").shopEditions>} tools.editions
  */
-export function benchView({ form, settings, settingsChanged, erase }) {
+export function benchView({ form, settings, settingsChanged, erase, editions }) {
+  const shop = shopCard(editions);
   /** @param {"theme"|"decimal"|"keypad"|"bases"} name @param {string[]} values */
   const setting = (name, values) => {
     const control = choiceControl({ path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values }, (value) => {
@@ -28,13 +32,51 @@ export function benchView({ form, settings, settingsChanged, erase }) {
     eraseKey.setAttribute("aria-expanded", String(!confirm.hidden));
   }, { "aria-expanded": "false", id: "erase" });
   return {
+    showEditions: shop.show,
     node: el(
       "div",
       { class: "view bench" },
       el("section", { class: "card", "aria-labelledby": "bench-meter" }, el("h2", { id: "bench-meter" }, say("page.bench.meter")), el("p", { class: "help" }, say("page.bench.meter_help")), ...form.fields(fields.INSTRUMENT), el("div", { class: "grid four" }, ...form.fields(fields.INSTRUMENT_NUMBERS))),
       el("section", { class: "card", "aria-labelledby": "bench-uncertainty" }, el("h2", { id: "bench-uncertainty" }, say("page.bench.uncertainty")), el("p", { class: "help" }, say("page.bench.uncertainty_help")), el("div", { class: "grid four" }, ...form.fields(fields.UNCERTAINTY))),
+      shop.node,
       el("section", { class: "card", "aria-labelledby": "bench-screen" }, el("h2", { id: "bench-screen" }, say("page.bench.screen")), setting("theme", ["auto", "light", "dark"]), setting("decimal", ["point", "comma"]), setting("keypad", ["auto", "on", "off"]), setting("bases", ["360", "180"])),
       el("section", { class: "card", "aria-labelledby": "bench-data" }, el("h2", { id: "bench-data" }, say("page.bench.data")), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),
+  };
+}
+
+/** @param {ReturnType<typeof import("../editions.js").shopEditions>} editions */
+function shopCard(editions) {
+  const said = el("div", { class: "said-edition" });
+  const list = el("ul", { class: "jobs" });
+  const file = el("input", {
+    id: "f-edition-file",
+    type: "file",
+    accept: ".json,application/json",
+    onchange: async () => {
+      const chosen = file.files?.[0];
+      if (chosen) redraw(said, ...(await take(await chosen.text())).map((text) => el("p", {}, text)));
+      file.value = "";
+    },
+  });
+
+  /** @param {string} text @returns {Promise<string[]>} what is to be said of it */
+  async function take(text) {
+    let edition;
+    try {
+      edition = readFile(text);
+    } catch {
+      return [say("page.keep.not_json")];
+    }
+    const faults = await editions.add(edition);
+    return faults.length ? faults.map(faultText) : [say("page.bench.edition_taken")];
+  }
+
+  return {
+    node: el("section", { class: "card", "aria-labelledby": "bench-editions" }, el("h2", { id: "bench-editions" }, say("page.bench.editions")), el("p", { class: "help" }, say("page.bench.editions_help")), el("div", { class: "field" }, el("label", { for: "f-edition-file" }, say("page.labels.edition_file")), file), said, list),
+    /** @param {{id: string, name: string}[]} own */
+    show(own) {
+      redraw(list, ...own.map(({ id, name }) => el("li", {}, el("span", { class: "job-name" }, el("strong", {}, name)), button(say("page.bench.edition_drop"), () => editions.remove(id), { "aria-label": say("page.bench.edition_drop_named", { name }) }))));
+    },
   };
 }

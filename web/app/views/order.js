@@ -11,6 +11,7 @@ import { say, shown } from "../words.js";
 
 /**
  * @typedef {import("../types.js").Report} Report
+ * @typedef {import("../keeping.js").KeptJob} KeptJob
  * @typedef {import("../form.js").Form} Form
  * @typedef {import("../state.js").State} State
  */
@@ -141,8 +142,23 @@ function optionField(option, form) {
  * @param {State} tools.state
  * @param {HTMLElement} tools.line
  * @param {() => void} tools.demonstrate
+ * @param {(job: KeptJob) => void} tools.reopen
  */
-export function orderView({ form, state, line, demonstrate }) {
+export function orderView({ form, state, line, demonstrate, reopen }) {
+  /** @type {KeptJob[]} */
+  let jobs = [];
+  const known = el("div", { class: "known", hidden: true });
+  const showKnown = changing(
+    known,
+    (entries) => `${entries["id"] ?? ""} ${entries["signed.at"] ?? ""} ${jobs.length}`,
+    (entries) => {
+      const job = jobs.find(({ id }) => id && id === entries["id"]?.trim());
+      known.hidden = !job || Boolean(entries["signed.at"]);
+      if (!job) return [];
+      return [el("p", {}, say("page.order.known", { at: job.at, initials: job.initials })), button(say("page.actions.reopen"), () => reopen(job), { id: "reopen-known" })];
+    },
+  );
+  state.subscribe(showKnown);
   const check = el("section", { class: "card check", "aria-labelledby": "order-check", hidden: true });
   const eyes = EYES.map((eye) => eyeCard(eye, form, state));
   const rules = rulesCard(form, state);
@@ -157,7 +173,7 @@ export function orderView({ form, state, line, demonstrate }) {
     { class: "view order" },
     el("section", { class: "card", "aria-labelledby": "order-line" }, el("h2", { id: "order-line", class: "hidden" }, say("page.order.line")), line, begin),
     check,
-    el("section", { class: "card", "aria-labelledby": "order-job" }, el("h2", { id: "order-job" }, say("page.order.job")), el("div", { class: "job-grid" }, ...form.fields(fields.JOB))),
+    el("section", { class: "card", "aria-labelledby": "order-job" }, el("h2", { id: "order-job" }, say("page.order.job")), el("div", { class: "job-grid" }, ...form.fields(fields.JOB)), known),
     el("div", { class: "pair" }, ...eyes.map((eye) => eye.node)),
     el(
       "div",
@@ -170,6 +186,11 @@ export function orderView({ form, state, line, demonstrate }) {
   return {
     node,
     useEditions: rules.useEditions,
+    /** @param {KeptJob[]} list the signed jobs, so that a number that was used is noticed */
+    showJobs(list) {
+      jobs = list;
+      showKnown(state.entries);
+    },
     /** @param {import("../verdict.js").Standing} standing */
     draw({ report }) {
       begin.hidden = hasOrder(state.entries);
