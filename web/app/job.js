@@ -41,12 +41,8 @@ function isLoneBase(entries, path) {
 
 /** @param {Entries} entries @returns {[string, string][]} what was typed, trimmed, empty fields left out */
 function typed(entries) {
-  const all = /** @type {[string, string][]} */ (
-    Object.entries(entries).map(([path, text]) => [path, text.trim()])
-  );
-  return all.filter(
-    ([path, text]) => text && text !== "false" && !PAGE_ONLY.test(path) && !isLoneBase(entries, path),
-  );
+  const all = /** @type {[string, string][]} */ (Object.entries(entries).map(([path, text]) => [path, text.trim()]));
+  return all.filter(([path, text]) => text && text !== "false" && !PAGE_ONLY.test(path) && !isLoneBase(entries, path));
 }
 
 /**
@@ -65,7 +61,11 @@ export function toJob(entries) {
     for (const step of steps(path)) {
       if (typeof step === "number") {
         const used = rows.get(prefix) ?? [];
-        if (!used.includes(step)) rows.set(prefix, [...used, step].sort((a, b) => a - b));
+        if (!used.includes(step))
+          {rows.set(
+            prefix,
+            [...used, step].sort((a, b) => a - b),
+          );}
       }
       prefix = join(prefix, step);
     }
@@ -140,7 +140,8 @@ function flatten(value, path, entries) {
  */
 export function readFile(text, write = (_key, digits) => digits) {
   /** @type {(this: any, key: string, value: unknown, context?: {source?: string}) => unknown} */
-  const keepDigits = (key, value, context) => (typeof value === "number" ? write(key, context?.source ?? String(value)) : value);
+  const keepDigits = (key, value, context) =>
+    typeof value === "number" ? write(key, context?.source ?? String(value)) : value;
   return JSON.parse(text, keepDigits);
 }
 

@@ -60,7 +60,10 @@ export function createKeypad({ settings, next, setBase }) {
   }
 
   /** @param {string} text */
-  const type = (text) => edit((input) => input.setRangeText(text, input.selectionStart ?? input.value.length, input.selectionEnd ?? input.value.length, "end"));
+  const type = (text) =>
+    edit((input) =>
+      input.setRangeText(text, input.selectionStart ?? input.value.length, input.selectionEnd ?? input.value.length, "end"),
+    );
 
   /** @param {string} text */
   function whole(text) {
@@ -79,7 +82,12 @@ export function createKeypad({ settings, next, setBase }) {
   const separator = () => (settings.decimal === "comma" ? "," : ".");
   /** @param {string} label @param {() => void} act @param {string} [kind] @param {string} [name] */
   const key = (label, act, kind = "", name = "") => {
-    const node = button(label, act, { class: `pad-key ${kind}`, tabindex: -1, "data-repeats": true, ...(name ? { "aria-label": name } : {}) });
+    const node = button(label, act, {
+      class: `pad-key ${kind}`,
+      tabindex: -1,
+      "data-repeats": true,
+      ...(name ? { "aria-label": name } : {}),
+    });
     // The field keeps the focus; the key acts on it.
     node.addEventListener("pointerdown", (event) => event.preventDefault());
     return node;
@@ -89,7 +97,12 @@ export function createKeypad({ settings, next, setBase }) {
 
   /** @param {string} ending */
   const quarter = (ending) =>
-    key(`.${ending}`, () => edit((input) => whole(withEnding(input.value, ending, separator()))(input)), `quarter q${ending}`, say("page.pad.ending", { ending }));
+    key(
+      `.${ending}`,
+      () => edit((input) => whole(withEnding(input.value, ending, separator()))(input)),
+      `quarter q${ending}`,
+      say("page.pad.ending", { ending }),
+    );
   const keys = [
     ...["7", "8", "9", "4", "5", "6", "1", "2", "3", "0"].map(digit),
     point,
@@ -103,7 +116,15 @@ export function createKeypad({ settings, next, setBase }) {
     key(say("page.pad.next"), () => field && next(field), "next"),
   ];
   const rose = ROSE.map((base) => key(say(`page.bases.${base}`), () => field && setBase(field, base), `rose ${base}`));
-  host.append(el("div", { class: "pad" }, place, el("div", { class: "pad-keys" }, ...keys), el("div", { class: "pad-rose", "aria-label": say("page.pad.rose"), role: "group" }, ...rose)));
+  host.append(
+    el(
+      "div",
+      { class: "pad" },
+      place,
+      el("div", { class: "pad-keys" }, ...keys),
+      el("div", { class: "pad-rose", "aria-label": say("page.pad.rose"), role: "group" }, ...rose),
+    ),
+  );
 
   function hide() {
     hidden = true;
@@ -135,7 +156,8 @@ export function createKeypad({ settings, next, setBase }) {
       refresh();
       return;
     }
-    for (const input of document.querySelectorAll("input[data-kind=number], input[data-kind=power]")) mode(/** @type {HTMLInputElement} */ (input));
+    for (const input of document.querySelectorAll("input[data-kind=number], input[data-kind=power]"))
+      {mode(/** @type {HTMLInputElement} */ (input));}
   }
   window.addEventListener("resize", () => {
     cramped = false;

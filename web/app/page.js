@@ -88,7 +88,9 @@ export function startPage(startEngine) {
     drawView(settings.view);
     strip.draw(standing);
     top.draw();
-    top.queries((standing.report?.notes ?? []).filter(({ about, severity }) => about === "order" && severity === "warning").length);
+    top.queries(
+      (standing.report?.notes ?? []).filter(({ about, severity }) => about === "order" && severity === "warning").length,
+    );
     root.dataset["earlier"] = String(standing.earlier);
     performance.mark("dial-drawn");
   }
@@ -121,7 +123,10 @@ export function startPage(startEngine) {
     if (!standing.report) strip.draw(standing);
     top.draw();
     const built = toJob(state.entries);
-    const given = await engine.ask({ do: "report", job: built.job, sections: [], scenes: true, editions: editions.all }, { lane: "verdict" });
+    const given = await engine.ask(
+      { do: "report", job: built.job, sections: [], scenes: true, editions: editions.all },
+      { lane: "verdict" },
+    );
     if (!given) return;
     place = built.place;
     understood = given["echo"] ?? {};
@@ -181,14 +186,21 @@ export function startPage(startEngine) {
   }
 
   async function copy() {
-    const given = await engine.ask({ do: "report", job: toJob(state.entries).job, sections: [], text: true, editions: editions.all }, { lane: "text" });
+    const given = await engine.ask(
+      { do: "report", job: toJob(state.entries).job, sections: [], text: true, editions: editions.all },
+      { lane: "text" },
+    );
     const text = given?.["text"];
     if (!text) return;
     const taken = await copyText(text);
     const area = el("textarea", { id: "f-copied", readonly: true, rows: 12 });
     area.value = text;
     views.keep.copied.hidden = false;
-    redraw(views.keep.copied, el("label", { for: "f-copied" }, say(taken ? "page.keep.copied" : "page.keep.copy_by_hand")), area);
+    redraw(
+      views.keep.copied,
+      el("label", { for: "f-copied" }, say(taken ? "page.keep.copied" : "page.keep.copy_by_hand")),
+      area,
+    );
     if (taken) return;
     top.show("keep");
     area.focus();
@@ -201,7 +213,16 @@ export function startPage(startEngine) {
     state.sign(initials, at);
     const { entries } = state;
     /** @type {KeptJob} */
-    const kept = { key: `${at} ${entries["id"] ?? ""}`, id: entries["id"] ?? "", at, initials, outcome: outcomeOf(standing), sentence: sentenceOf(standing), edition: standing.report?.verdict?.edition.name ?? "", entries };
+    const kept = {
+      key: `${at} ${entries["id"] ?? ""}`,
+      id: entries["id"] ?? "",
+      at,
+      initials,
+      outcome: outcomeOf(standing),
+      sentence: sentenceOf(standing),
+      edition: standing.report?.verdict?.edition.name ?? "",
+      entries,
+    };
     store?.put("jobs", kept.key, kept).then(showJobs);
   }
 
@@ -239,7 +260,8 @@ export function startPage(startEngine) {
     if (!control) return;
     const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
     if (name) top.show(name);
-    for (let node = control.node.parentElement; node; node = node.parentElement) if (node instanceof HTMLDetailsElement) node.open = true;
+    for (let node = control.node.parentElement; node; node = node.parentElement)
+      {if (node instanceof HTMLDetailsElement) node.open = true;}
     control.node.scrollIntoView({ block: "center" });
     control.focus.focus();
   }
@@ -250,7 +272,9 @@ export function startPage(startEngine) {
     state.set(`${row}.base`, base);
   }
 
-  window.addEventListener("beforeprint", () => drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()) }));
+  window.addEventListener("beforeprint", () =>
+    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()) }),
+  );
   listenToKeys({ state });
   watchDock();
 
