@@ -41,7 +41,8 @@ def read_decimal(text: str) -> Decimal:
     plain = text.strip().replace(TRUE_MINUS, "-")
     if not plain:
         raise NumberError("number-empty")
-    if sum(character.isdigit() for character in plain) > MAXIMUM_DIGITS:
+    digits = sum(map(str.isdigit, plain)) if len(plain) > MAXIMUM_DIGITS else 0
+    if digits > MAXIMUM_DIGITS:
         raise NumberError("number-too-long")
     if _NUMBER.fullmatch(plain):
         return Decimal(plain.replace(",", ".").rstrip("."))

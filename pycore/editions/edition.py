@@ -1,7 +1,7 @@
 """An edition's rows of limits as frozen values, and which row holds for a lens."""
 
 from collections.abc import Mapping
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from decimal import Decimal
 
 from pycore.decimals import snap
@@ -122,6 +122,13 @@ class Edition:
     rows: tuple[Row, ...]
     sha256: str
     local: bool = False
+    by_check: Mapping[str, tuple[Row, ...]] = field(init=False)
+
+    def __post_init__(self) -> None:
+        by_check: dict[str, tuple[Row, ...]] = {}
+        for row in self.rows:
+            by_check[row.check] = (*by_check.get(row.check, ()), row)
+        object.__setattr__(self, "by_check", by_check)  # an index, made once, of frozen rows
 
     @property
     def provenances(self) -> tuple[str, ...]:
@@ -131,7 +138,7 @@ class Edition:
 
     def has(self, check: str) -> bool:
         """Tell whether the edition says anything on a check."""
-        return any(row.check == check for row in self.rows)
+        return check in self.by_check
 
     def row(
         self,
@@ -149,10 +156,9 @@ class Edition:
         (dioptres, prism dioptres), never negative; `component` where rows differ by it.
         Returns the first row that fits, or None.
         """
-        for row in self.rows:
+        for row in self.by_check.get(check, ()):
             if (
-                row.check == check
-                and design in row.designs
+                design in row.designs
                 and state in row.states
                 and row.component in (None, component)
                 and (row.option is None or chosen.get(row.option[0]) == row.option[1])

@@ -1,5 +1,6 @@
 """Reads the fields of one object of the job document, collecting every fault at once."""
 
+import re
 from collections.abc import Iterator, Mapping, Sequence
 from decimal import Decimal
 from typing import Any
@@ -8,6 +9,7 @@ from pycore.decimals import NumberError, has_sign, read_decimal
 from pycore.errors import Fault
 
 MAXIMUM_TEXT = 64
+_CONTROL = re.compile("[\x00-\x1f\x7f]")
 
 
 class Fields:
@@ -61,14 +63,15 @@ class Fields:
 
     def text(self, name: str) -> str | None:
         """A short text without control characters, stripped; None where absent or empty."""
-        value = self.raw(name)
+        self._seen.add(name)
+        value = self._source.get(name)
         if value is None:
             return None
         if not isinstance(value, str):
             self.refuse("text-expected", name, value, "type-text")
         elif len(value) > MAXIMUM_TEXT:
             self.refuse("text-too-long", name, value, "shorten", limit=str(MAXIMUM_TEXT))
-        elif any(ord(character) < 32 or ord(character) == 127 for character in value):
+        elif _CONTROL.search(value):
             self.refuse("text-control-character", name, value, "type-text")
         else:
             return value.strip() or None

@@ -109,9 +109,9 @@ def power_as_worn(lens: Matrix, tilt: Tilt, index: float) -> Matrix:
     """The power a tilted thin lens gives along the line of sight: g·T·F·T with its torsion.
 
     Arguments: `lens` power matrix in dioptres, in the lens's own frame; `tilt`; `index`.
-    Returns the matrix in the wearer's frame. Thin lenses: beside a real pencil of rays everyday lenses and
-    tilts differ by 0.003 D in the middle and 0.1 D at most, with several prism dioptres or beyond
-    25 degrees by tenths; then a guide only.
+    Returns the matrix in the wearer's frame. Thin lenses: beside a real pencil of rays everyday
+    lenses and tilts differ by 0.003 D in the middle and 0.1 D at most, with several prism
+    dioptres or beyond 25 degrees by tenths; then a guide only.
     Source: Keating's tilted-lens matrix ("Tilted power of thin lenses", Optom Vis Sci 2002).
 
     T and the torsion are one matrix: with N the inverse of the rotation's part in the plane

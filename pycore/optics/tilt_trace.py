@@ -17,7 +17,7 @@ from pycore.optics.trace import TotalReflectionError, Turned, dot, refract, unit
 from pycore.optics.wedge import wedge_tangent
 
 MOST_STEPS = 40
-SETTLED_MM = 1e-13
+SETTLED_MM = 1e-12
 SETTLED_PRISM = 1e-10  # prism dioptres
 
 
@@ -76,15 +76,13 @@ def _traced(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Vector:
     # front pole, `thickness_mm` straight in front of it.
     start = (glass.thickness_mm * right[2], glass.thickness_mm * up[2], glass.thickness_mm * out[2])
     ray = dot(inside, right), dot(inside, up), dot(inside, out)
-    along_mm = -start[2] / ray[2]
-    for _ in range(MOST_STEPS):
+    along_mm, step = -start[2] / ray[2], 1.0
+    while abs(step) > SETTLED_MM:  # Newton's method, from where the pole's plane is met
         x, y = start[0] + along_mm * ray[0], start[1] + along_mm * ray[1]
         slope_x, slope_y = back.slope(x, y)
         gap = start[2] + along_mm * ray[2] + back.depth(x, y)
         step = gap / (ray[2] + slope_x * ray[0] + slope_y * ray[1])
         along_mm -= step
-        if abs(step) < SETTLED_MM:
-            break
     left = refract(ray, unit((-slope_x, -slope_y, -1.0)), glass.index)
     x, y, z = tilt.worn(
         *(left[0] * right[i] + left[1] * up[i] + left[2] * out[i] for i in range(3))
@@ -141,5 +139,6 @@ def _improved(inverse: Columns, step: Vector, gained: Vector) -> Columns:
     (a, b), (c, d) = inverse
     row = step[0] * a + step[1] * b, step[0] * c + step[1] * d
     divisor = step[0] * foreseen[0] + step[1] * foreseen[1]
-    x, y = (step[0] - foreseen[0]) / divisor, (step[1] - foreseen[1]) / divisor
+    share = 1.0 / divisor if divisor else 0.0
+    x, y = (step[0] - foreseen[0]) * share, (step[1] - foreseen[1]) * share
     return (a + x * row[0], b + y * row[0]), (c + x * row[1], d + y * row[1])

@@ -8,6 +8,7 @@ import math
 from collections.abc import Iterator
 from dataclasses import dataclass
 from decimal import Decimal
+from functools import cache
 from typing import Any
 
 from pycore.angles import cosine, sine
@@ -51,7 +52,7 @@ def dial_scene(view: DialView) -> Scene:
     points = [view.seen(view.due.expected), *map(view.seen, view.sightings)]
     outermost = float(view.instrument.outermost_ring)
     reach = max([outermost, *(float(point.amount) for point in points)]) * LABEL_ROOM
-    shapes = [*_rings(view), *_scale(view, outermost), *_content(view)]
+    shapes = [*_rings(view), *_scale(view.eye, outermost), *_content(view)]
     return {"unit": "\u0394", "extent": [-reach, -reach, reach, reach], "shapes": shapes}
 
 
@@ -102,7 +103,12 @@ def _rings(view: DialView) -> Iterator[Shape]:
         yield {"role": "ring-label", "kind": "label", "x": radius, "y": 0.0, "text": text}
 
 
-def _scale(view: DialView, outermost: float) -> Iterator[Shape]:
+@cache  # the same at every keystroke
+def _scale(eye: Eye, outermost: float) -> tuple[Shape, ...]:
+    return tuple(_scale_shapes(eye, outermost))
+
+
+def _scale_shapes(eye: Eye, outermost: float) -> Iterator[Shape]:
     for degrees in range(0, 360, TICKS_EVERY_DEG):
         x, y = cosine(degrees), sine(degrees)
         length = 1.08 if degrees % 45 == 0 else 1.04
@@ -116,7 +122,7 @@ def _scale(view: DialView, outermost: float) -> Iterator[Shape]:
         }
     for degrees in (0, 90, 180, 270):
         x, y = cosine(degrees) * outermost, sine(degrees) * outermost
-        word = horizontal_word(view.eye, Decimal(int(cosine(degrees))))
+        word = horizontal_word(eye, Decimal(int(cosine(degrees))))
         label = {"role": "base-label", "kind": "label", "x": x, "y": y, "text": str(degrees)}
         yield label | {"word": f"directions.{word}"} if word else label
 

@@ -35,16 +35,32 @@ export function checkRows(check) {
 function checkItem(check, tightest) {
   return el(
     "details",
-    { class: `check ${check.outcome}${check.counts === false ? " information" : ""}`, "data-key": `check-${check.id}-${check.eye}-${check.component ?? ""}-${check.row}` },
+    {
+      class: `check ${check.outcome}${check.counts === false ? " information" : ""}`,
+      "data-key": `check-${check.id}-${check.eye}-${check.component ?? ""}-${check.row}`,
+    },
     el(
       "summary",
       { "data-key": `summary-${check.id}-${check.eye}-${check.component ?? ""}-${check.row}` },
       outcomeSymbol(check.outcome),
-      el("span", { class: "check-name" }, checkName(check), tightest ? el("span", { class: "badge" }, say("page.check.tightest")) : null),
+      el(
+        "span",
+        { class: "check-name" },
+        checkName(check),
+        tightest ? el("span", { class: "badge" }, say("page.check.tightest")) : null,
+      ),
       el("span", { class: "check-figure" }, figure(check)),
-      el("span", { class: "check-word" }, say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`)),
+      el(
+        "span",
+        { class: "check-word" },
+        say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`),
+      ),
     ),
-    el("dl", { class: "rows" }, ...checkRows(check).map(([name, value]) => el("div", {}, el("dt", {}, name), el("dd", {}, value)))),
+    el(
+      "dl",
+      { class: "rows" },
+      ...checkRows(check).map(([name, value]) => el("div", {}, el("dt", {}, name), el("dd", {}, value))),
+    ),
   );
 }
 

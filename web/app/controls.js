@@ -53,13 +53,7 @@ export function textControl(spec, typed) {
     oninput: () => typed(input.value),
   });
   return {
-    node: el(
-      "div",
-      { class: `field ${number ? "number" : "text"}` },
-      el("label", { for: id }, labelOf(spec)),
-      input,
-      line,
-    ),
+    node: el("div", { class: `field ${number ? "number" : "text"}` }, el("label", { for: id }, labelOf(spec)), input, line),
     focus: input,
     line,
     echoes: true,
@@ -92,12 +86,7 @@ export function choiceControl(spec, typed) {
     }),
   );
   const keys = inputs.map((input) =>
-    el(
-      "label",
-      { class: "key" },
-      input,
-      el("span", {}, say(`page.values.${spec.words}.${input.value || "blank"}`)),
-    ),
+    el("label", { class: "key" }, input, el("span", {}, say(`page.values.${spec.words}.${input.value || "blank"}`))),
   );
   return {
     node: el(
@@ -130,12 +119,7 @@ export function flagControl(spec, typed) {
     onchange: () => typed(input.checked ? "true" : ""),
   });
   return {
-    node: el(
-      "div",
-      { class: "field flag" },
-      el("label", { class: "key" }, input, el("span", {}, labelOf(spec))),
-      line,
-    ),
+    node: el("div", { class: "field flag" }, el("label", { class: "key" }, input, el("span", {}, labelOf(spec))), line),
     focus: input,
     line,
     show: (text) => {
@@ -160,13 +144,7 @@ export function selectControl(spec, typed, nameOf = (value) => value) {
   });
   for (const value of spec.values ?? []) input.append(el("option", { value }, nameOf(value)));
   return {
-    node: el(
-      "div",
-      { class: "field select" },
-      el("label", { for: input.id }, labelOf(spec)),
-      input,
-      line,
-    ),
+    node: el("div", { class: "field select" }, el("label", { for: input.id }, labelOf(spec)), input, line),
     focus: input,
     line,
     show: (text) => {

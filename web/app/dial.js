@@ -39,7 +39,9 @@ export function marksOf(shape, unit, hatch) {
     case "crosses":
       return target(shape, attributes, unit);
     case "label":
-      return shape.role === "base-label" ? baseLabel(shape, attributes, unit) : [{ tag: "text", attributes: { ...attributes, x, y: -y + 3 * unit }, text: labelOf(shape) }];
+      return shape.role === "base-label"
+        ? baseLabel(shape, attributes, unit)
+        : [{ tag: "text", attributes: { ...attributes, x, y: -y + 3 * unit }, text: labelOf(shape) }];
     default:
       return [];
   }
@@ -110,19 +112,38 @@ function target(shape, attributes, unit) {
   const { x, y } = shape;
   const turn = `translate(${x} ${-y}) rotate(${-(shape["angle_deg"] ?? 0)})`;
   const [near, far] = [1.3 * unit, 4.8 * unit];
-  const arms = [[1, 0], [-1, 0], [0, 1], [0, -1]];
+  const arms = [
+    [1, 0],
+    [-1, 0],
+    [0, 1],
+    [0, -1],
+  ];
   const ground = { tag: "circle", attributes: { class: "target-ground", cx: x, cy: -y, r: 0.6 * unit } };
   if (shape["style"] === "dots") {
     return Array.from({ length: 12 }, (_, index) => ({
       tag: "circle",
-      attributes: { ...attributes, class: `${attributes["class"]} dots`, transform: `translate(${x} ${-y}) rotate(${index * 30})`, cx: 4 * unit, cy: 0, r: 0.7 * unit },
+      attributes: {
+        ...attributes,
+        class: `${attributes["class"]} dots`,
+        transform: `translate(${x} ${-y}) rotate(${index * 30})`,
+        cx: 4 * unit,
+        cy: 0,
+        r: 0.7 * unit,
+      },
     }));
   }
   return [
     ground,
     ...arms.map(([right, down]) => ({
       tag: "line",
-      attributes: { ...attributes, transform: turn, x1: (right ?? 0) * near, y1: (down ?? 0) * near, x2: (right ?? 0) * far, y2: (down ?? 0) * far },
+      attributes: {
+        ...attributes,
+        transform: turn,
+        x1: (right ?? 0) * near,
+        y1: (down ?? 0) * near,
+        x2: (right ?? 0) * far,
+        y2: (down ?? 0) * far,
+      },
     })),
   ];
 }
@@ -176,10 +197,21 @@ export function placeOf(picture, event) {
  */
 export function legendMark(role) {
   const marks = {
-    ordered: [svg("line", { class: "role-ordered", x1: 2, y1: 12, x2: 18, y2: 12 }), svg("circle", { class: "role-ordered dot-mark", cx: 19, cy: 12, r: 3 })],
+    ordered: [
+      svg("line", { class: "role-ordered", x1: 2, y1: 12, x2: 18, y2: 12 }),
+      svg("circle", { class: "role-ordered dot-mark", cx: 19, cy: 12, r: 3 }),
+    ],
     thinning: [svg("line", { class: "role-thinning", x1: 2, y1: 12, x2: 22, y2: 12 })],
-    expected: [svg("circle", { class: "role-expected ring-mark", cx: 12, cy: 12, r: 7 }), svg("circle", { class: "role-expected dot-mark", cx: 12, cy: 12, r: 2 })],
-    read: [[12, 2, 12, 9], [12, 15, 12, 22], [2, 12, 9, 12], [15, 12, 22, 12]].map(([x1, y1, x2, y2]) => svg("line", { class: "role-target", x1, y1, x2, y2 })),
+    expected: [
+      svg("circle", { class: "role-expected ring-mark", cx: 12, cy: 12, r: 7 }),
+      svg("circle", { class: "role-expected dot-mark", cx: 12, cy: 12, r: 2 }),
+    ],
+    read: [
+      [12, 2, 12, 9],
+      [12, 15, 12, 22],
+      [2, 12, 9, 12],
+      [15, 12, 22, 12],
+    ].map(([x1, y1, x2, y2]) => svg("line", { class: "role-target", x1, y1, x2, y2 })),
     compensator: [svg("line", { class: "role-compensator", x1: 2, y1: 12, x2: 22, y2: 12 })],
   };
   return svg("svg", { class: "legend", viewBox: "0 0 24 24", "aria-hidden": "true", focusable: "false" }, ...marks[role]);

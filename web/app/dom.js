@@ -81,6 +81,17 @@ export function button(label, act, attributes = {}, ...children) {
 }
 
 /**
+ * A card with its heading, which names it.
+ *
+ * @param {string} id of the heading
+ * @param {string} title
+ * @param {...Child} children
+ */
+export function card(id, title, ...children) {
+  return el("section", { class: "card", "aria-labelledby": id }, el("h2", { id }, title), ...children);
+}
+
+/**
  * Puts new children into a host and keeps what the person had: the focus and the opened details,
  * found again by their `data-key`.
  *

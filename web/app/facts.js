@@ -38,14 +38,23 @@ function mustShow(lens) {
   if (!expected) return fact("expected", [say("page.facts.not_known")], "expected");
   if (lens.expected_known !== "horizontal") return fact("expected", [text(expected)], "expected");
   const { base } = expected.horizontal;
-  const across = say("page.facts.horizontal_only", { horizontal: expected.shown["horizontal"], base: base ? say(`page.bases.${base}`) : "" });
+  const across = say("page.facts.horizontal_only", {
+    horizontal: expected.shown["horizontal"],
+    base: base ? say(`page.bases.${base}`) : "",
+  });
   return fact("expected", [across, say("page.facts.vertical_unknown")], "expected");
 }
 
 /** @param {LensReport} lens */
 function reads(lens) {
   const { spread } = lens;
-  const repeated = spread ? say("page.facts.spread", { count: spread.count, horizontal: spread.shown["horizontal"], vertical: spread.shown["vertical"] }) : "";
+  const repeated = spread
+    ? say("page.facts.spread", {
+        count: spread.count,
+        horizontal: spread.shown["horizontal"],
+        vertical: spread.shown["vertical"],
+      })
+    : "";
   return fact("read", [lens.read ? text(lens.read) : say("page.facts.not_read"), repeated], "read");
 }
 
@@ -73,7 +82,9 @@ function compensatorFacts(lens) {
   const setting = lens.compensator;
   if (!setting) return [];
   if (setting.sense === "unknown") return [fact("compensator", [say("page.facts.sense_unknown")], "compensator")];
-  return [setting.full, setting.onto_rings].flatMap((one) => (one ? [fact("compensator", settingTexts(one), "compensator")] : []));
+  return [setting.full, setting.onto_rings].flatMap((one) =>
+    one ? [fact("compensator", settingTexts(one), "compensator")] : [],
+  );
 }
 
 /** @param {LensReport} lens @returns {Fact[]} the rows that open on demand */
@@ -87,7 +98,10 @@ export function moreFacts(lens) {
     );
   }
   if (lens.expected) {
-    rows.push(fact("notation_180", [lens.expected.shown["text_180"] ?? ""]), fact("quadrant", [say(`page.quadrants.${lens.expected.quadrant}`)]));
+    rows.push(
+      fact("notation_180", [lens.expected.shown["text_180"] ?? ""]),
+      fact("quadrant", [say(`page.quadrants.${lens.expected.quadrant}`)]),
+    );
   }
   if (lens.error) rows.push(fact("error", [text(lens.error)]));
   if (lens.compensator && !lens.compensator.needed) rows.push(...compensatorFacts(lens));

@@ -45,7 +45,10 @@ export function createForm(state) {
     /** @param {FieldSpec} spec */
     field(spec) {
       const make = MAKERS[/** @type {keyof typeof MAKERS} */ (spec.kind)];
-      return keep(spec.path, make(spec, (text) => state.set(spec.path, text)));
+      return keep(
+        spec.path,
+        make(spec, (text) => state.set(spec.path, text)),
+      );
     },
     /** @param {FieldSpec[]} specs */
     fields(specs) {
@@ -53,7 +56,10 @@ export function createForm(state) {
     },
     /** @param {FieldSpec} spec @param {(value: string) => string} nameOf */
     select(spec, nameOf) {
-      return keep(spec.path, selectControl(spec, (text) => state.set(spec.path, text), nameOf));
+      return keep(
+        spec.path,
+        selectControl(spec, (text) => state.set(spec.path, text), nameOf),
+      );
     },
     /** @param {string} prefix forgets fields that are drawn anew */
     forget(prefix) {

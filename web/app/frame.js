@@ -9,7 +9,11 @@ const MOVES = ["order", "read", "decide", "keep", "bench"];
 
 /** @param {string} path */
 function icon(path) {
-  return svg("svg", { class: "icon", viewBox: "0 0 24 24", "aria-hidden": "true", focusable: "false" }, svg("path", { d: path }));
+  return svg(
+    "svg",
+    { class: "icon", viewBox: "0 0 24 24", "aria-hidden": "true", focusable: "false" },
+    svg("path", { d: path }),
+  );
 }
 
 /**
@@ -24,10 +28,35 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
   const job = el("p", { class: "job" });
   const save = el("p", { class: "save" });
   const starting = el("p", { class: "engine" });
-  const undo = button("", () => state.undo(), { class: "tool", "aria-label": say("page.actions.undo"), id: "undo", "data-repeats": true }, icon("M9 7 L4 12 L9 17 M4 12 H14 a5 5 0 0 1 0 10 H11"));
-  const redo = button("", () => state.redo(), { class: "tool", "aria-label": say("page.actions.redo"), id: "redo", "data-repeats": true }, icon("M15 7 L20 12 L15 17 M20 12 H10 a5 5 0 0 0 0 10 H13"));
-  const pad = button("", toggleKeypad, { class: "tool", "aria-label": say("page.actions.keypad"), id: "keypad-toggle", "aria-pressed": "false", "data-repeats": true }, icon("M5 5h3v3h-3z M10.5 5h3v3h-3z M16 5h3v3h-3z M5 10.5h3v3h-3z M10.5 10.5h3v3h-3z M16 10.5h3v3h-3z M5 16h3v3h-3z M10.5 16h3v3h-3z M16 16h3v3h-3z"));
-  const tabs = MOVES.map((name) => button(say(`page.nav.${name}`), () => show(name), { class: "move", id: `move-${name}`, "data-repeats": true }));
+  const undo = button(
+    "",
+    () => state.undo(),
+    { class: "tool", "aria-label": say("page.actions.undo"), id: "undo", "data-repeats": true },
+    icon("M9 7 L4 12 L9 17 M4 12 H14 a5 5 0 0 1 0 10 H11"),
+  );
+  const redo = button(
+    "",
+    () => state.redo(),
+    { class: "tool", "aria-label": say("page.actions.redo"), id: "redo", "data-repeats": true },
+    icon("M15 7 L20 12 L15 17 M20 12 H10 a5 5 0 0 0 0 10 H13"),
+  );
+  const pad = button(
+    "",
+    toggleKeypad,
+    {
+      class: "tool",
+      "aria-label": say("page.actions.keypad"),
+      id: "keypad-toggle",
+      "aria-pressed": "false",
+      "data-repeats": true,
+    },
+    icon(
+      "M5 5h3v3h-3z M10.5 5h3v3h-3z M16 5h3v3h-3z M5 10.5h3v3h-3z M10.5 10.5h3v3h-3z M16 10.5h3v3h-3z M5 16h3v3h-3z M10.5 16h3v3h-3z M16 16h3v3h-3z",
+    ),
+  );
+  const tabs = MOVES.map((name) =>
+    button(say(`page.nav.${name}`), () => show(name), { class: "move", id: `move-${name}`, "data-repeats": true }),
+  );
   const banner = el("p", { class: "demonstration", hidden: true }, say("page.demonstration.banner"));
 
   byId("top").append(
@@ -87,7 +116,11 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
     },
     draw() {
       const { entries } = state;
-      const parts = [entries["id"] ?? "", entries["state"] ? say(`page.values.state.${entries["state"]}`) : "", entries["lens.design"] ? say(`page.values.design.${entries["lens.design"]}`) : ""];
+      const parts = [
+        entries["id"] ?? "",
+        entries["state"] ? say(`page.values.state.${entries["state"]}`) : "",
+        entries["lens.design"] ? say(`page.values.design.${entries["lens.design"]}`) : "",
+      ];
       job.textContent = parts.filter(Boolean).join(" · ") || say("page.frame.no_job");
       banner.hidden = entries["demonstration"] !== "true";
       undo.disabled = !state.canUndo;

@@ -74,7 +74,12 @@ export function lensCard(eye, { state, steps }) {
     return button(
       base,
       () => steps.step(eye, right, up, fine),
-      { class: `step ${key}`, "data-repeats": true, id: `step-${eye}-${key}`, "aria-label": say("page.read.step", { eye: eyeName(eye), base }) },
+      {
+        class: `step ${key}`,
+        "data-repeats": true,
+        id: `step-${eye}-${key}`,
+        "aria-label": say("page.read.step", { eye: eyeName(eye), base }),
+      },
       svg("svg", { viewBox: "0 0 24 24", "aria-hidden": "true" }, svg("path", { d: path })),
       el("span", {}, base),
     );

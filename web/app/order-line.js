@@ -10,7 +10,9 @@ function linesOf(answer) {
   if (answer.errors) return answer.errors.map((/** @type {any} */ fault) => el("li", { class: "wrong" }, faultText(fault)));
   return [
     ...(answer.echo ?? []).map((/** @type {string} */ line) => el("li", { class: "understood" }, shown(line))),
-    ...(answer.notes ?? []).map((/** @type {any} */ note) => el("li", { class: "ask" }, say(`notes.${note.code}`, note.params))),
+    ...(answer.notes ?? []).map((/** @type {any} */ note) =>
+      el("li", { class: "ask" }, say(`notes.${note.code}`, note.params)),
+    ),
   ];
 }
 

@@ -28,7 +28,14 @@ function lensPart(report, eye) {
     return picture;
   });
   const lines = (report.order_lines?.[eye] ?? []).map((line) => el("p", { class: "sheet-order" }, shown(line)));
-  return el("section", { class: "sheet-lens" }, el("h2", {}, say(`page.lenses.${eye}`)), ...lines, el("div", { class: "sheet-dials" }, ...pictures), factList([...mainFacts(lens), ...moreFacts(lens)]));
+  return el(
+    "section",
+    { class: "sheet-lens" },
+    el("h2", {}, say(`page.lenses.${eye}`)),
+    ...lines,
+    el("div", { class: "sheet-dials" }, ...pictures),
+    factList([...mainFacts(lens), ...moreFacts(lens)]),
+  );
 }
 
 /** @param {import("./types.js").Verdict} verdict every check in one line */
@@ -37,12 +44,30 @@ function checkTable(verdict) {
   return el(
     "table",
     { class: "sheet-checks" },
-    el("thead", {}, el("tr", {}, el("th", { scope: "col" }, say("page.check.name")), ...columns.map((name) => el("th", { scope: "col" }, say(`page.print.${name}`))), el("th", { scope: "col" }, say("page.check.outcome")), el("th", { scope: "col" }, say("page.check.clause")))),
+    el(
+      "thead",
+      {},
+      el(
+        "tr",
+        {},
+        el("th", { scope: "col" }, say("page.check.name")),
+        ...columns.map((name) => el("th", { scope: "col" }, say(`page.print.${name}`))),
+        el("th", { scope: "col" }, say("page.check.outcome")),
+        el("th", { scope: "col" }, say("page.check.clause")),
+      ),
+    ),
     el(
       "tbody",
       {},
       ...verdict.checks.map((check) =>
-        el("tr", {}, el("th", { scope: "row" }, checkName(check)), ...columns.map((name) => el("td", {}, shown(check.shown[name] ?? ""))), el("td", {}, say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`)), el("td", { class: "sheet-clause" }, `${say(`page.print.${check.provenance}`)}: ${check.clause}`)),
+        el(
+          "tr",
+          {},
+          el("th", { scope: "row" }, checkName(check)),
+          ...columns.map((name) => el("td", {}, shown(check.shown[name] ?? ""))),
+          el("td", {}, say(check.counts === false ? "page.check.information" : `page.outcomes.${check.outcome}`)),
+          el("td", { class: "sheet-clause" }, `${say(`page.print.${check.provenance}`)}: ${check.clause}`),
+        ),
       ),
     ),
   );
@@ -51,11 +76,18 @@ function checkTable(verdict) {
 /** @param {import("./types.js").Verdict} verdict the edition by name and hash, each disputed reading by what was used */
 function editionPart({ edition }) {
   const provenance = edition.provenance.map((one) => say(`page.provenance.${one}`)).join(", ");
-  const options = edition.options.map((option) => `${option.id} = ${option.value}${option.default ? "" : ` (${say("page.print.chosen")})`}`);
+  const options = edition.options.map(
+    (option) => `${option.id} = ${option.value}${option.default ? "" : ` (${say("page.print.chosen")})`}`,
+  );
   return el(
     "div",
     { class: "sheet-small" },
-    el("p", {}, el("strong", {}, edition.name), ` · ${provenance} · ${say(`page.values.decision_rule.${edition.rule}`)} · sha256 ${edition.sha256}`),
+    el(
+      "p",
+      {},
+      el("strong", {}, edition.name),
+      ` · ${provenance} · ${say(`page.values.decision_rule.${edition.rule}`)} · sha256 ${edition.sha256}`,
+    ),
     el("p", { class: "sheet-inputs" }, ...options.map((option) => el("span", {}, option))),
   );
 }
@@ -63,16 +95,28 @@ function editionPart({ edition }) {
 /** @param {Entries} entries what was typed, by its path: the record of what the answer rests on */
 function inputs(entries) {
   const typed = Object.entries(entries).filter(([path]) => !/^(page|line|signed)\b/.test(path));
-  return el("p", { class: "sheet-inputs" }, ...typed.sort(([a], [b]) => (a < b ? -1 : 1)).map(([path, text]) => el("span", {}, `${path} = ${text}`)));
+  return el(
+    "p",
+    { class: "sheet-inputs" },
+    ...typed.sort(([a], [b]) => (a < b ? -1 : 1)).map(([path, text]) => el("span", {}, `${path} = ${text}`)),
+  );
 }
 
 /** @param {Entries} entries @param {string} at */
 function sheetHead(entries, at) {
-  const names = [["state", "state"], ["lens.design", "design"]].flatMap(([path, group]) => {
+  const names = [
+    ["state", "state"],
+    ["lens.design", "design"],
+  ].flatMap(([path, group]) => {
     const value = entries[path ?? ""];
     return value ? [say(`page.values.${group}.${value}`)] : [];
   });
-  return el("header", {}, el("h1", {}, say("page.print.title", { id: entries["id"] ?? "" })), el("p", {}, [...names, at].join(" · ")));
+  return el(
+    "header",
+    {},
+    el("h1", {}, say("page.print.title", { id: entries["id"] ?? "" })),
+    el("p", {}, [...names, at].join(" · ")),
+  );
 }
 
 /** @param {import("./types.js").Verdict} verdict */
@@ -104,13 +148,27 @@ export function drawSheet(host, { standing, entries, hash, at }) {
     entries["demonstration"] === "true" ? el("p", { class: "sheet-demonstration" }, say("page.demonstration.banner")) : null,
     sheetHead(entries, at),
     el("div", { class: "sheet-pair" }, ...EYES.map((eye) => lensPart(report, eye))),
-    el("div", { class: "sheet-verdict", "data-outcome": outcome }, outcomeSymbol(outcome), el("div", {}, el("p", { class: "word" }, say(`page.outcomes.${outcome}`)), el("p", {}, sentenceOf(standing)))),
+    el(
+      "div",
+      { class: "sheet-verdict", "data-outcome": outcome },
+      outcomeSymbol(outcome),
+      el("div", {}, el("p", { class: "word" }, say(`page.outcomes.${outcome}`)), el("p", {}, sentenceOf(standing))),
+    ),
     ...(verdict ? verdictPart(verdict) : []),
     report.notes.length ? noteList(report.notes) : null,
     verdict ? editionPart(verdict) : null,
     inputs(entries),
-    el("p", { class: "sheet-small" }, say("page.print.made_by", { program: report.made_by.program, contract: report.made_by.contract, hash })),
-    el("div", { class: "sheet-sign" }, el("p", {}, say("page.print.initials")), el("p", { class: "sheet-box" }, by ? `${by} · ${entries["signed.at"] ?? ""}` : "")),
+    el(
+      "p",
+      { class: "sheet-small" },
+      say("page.print.made_by", { program: report.made_by.program, contract: report.made_by.contract, hash }),
+    ),
+    el(
+      "div",
+      { class: "sheet-sign" },
+      el("p", {}, say("page.print.initials")),
+      el("p", { class: "sheet-box" }, by ? `${by} · ${entries["signed.at"] ?? ""}` : ""),
+    ),
     el("div", { class: "cautions" }, ...cautionLines(verdict?.cautions ?? [])),
   );
 }

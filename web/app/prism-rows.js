@@ -42,7 +42,8 @@ export function wayOf(entries, path) {
   const side = rows.some((row) => Object.keys(entries).some((at) => at.startsWith(`${path}[${row}].base.`)));
   if (side) return rows.length === 1 ? "notation" : "list";
   const words = bases.every((base) => !base || HORIZONTAL.has(base) || VERTICAL.has(base));
-  const twice = bases.filter((base) => HORIZONTAL.has(base)).length > 1 || bases.filter((base) => VERTICAL.has(base)).length > 1;
+  const twice =
+    bases.filter((base) => HORIZONTAL.has(base)).length > 1 || bases.filter((base) => VERTICAL.has(base)).length > 1;
   if (words && !twice && rows.length <= 2 && rows.every((row) => row < 2)) return "parts";
   return rows.length === 1 && rows[0] === 0 ? "base" : "list";
 }
@@ -103,13 +104,11 @@ function specsOf(row, path) {
  */
 export function prismGroup(form, state, path, name) {
   const rows = el("div", { class: "prism-rows" });
-  const ways = choiceControl(
-    { path: `page.way.${path}`, kind: "choice", label: "way", words: "way", values: WAYS },
-    (way) =>
-      state.change((draft) => {
-        if (usedRows(draft, path).length && wayOf(draft, path) !== way) removeBranch(draft, path);
-        draft[`page.way.${path}`] = way;
-      }),
+  const ways = choiceControl({ path: `page.way.${path}`, kind: "choice", label: "way", words: "way", values: WAYS }, (way) =>
+    state.change((draft) => {
+      if (usedRows(draft, path).length && wayOf(draft, path) !== way) removeBranch(draft, path);
+      draft[`page.way.${path}`] = way;
+    }),
   );
   ways.node.classList.add("ways");
   const refresh = changing(

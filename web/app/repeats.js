@@ -12,7 +12,8 @@ function asTyped(entries, place) {
   return usedRows(entries, `${place}.prism`)
     .map((row) => {
       const part = `${place}.prism[${row}]`;
-      const base = entries[`${part}.base`] ?? [entries[`${part}.base.degrees`], entries[`${part}.base.side`]].filter(Boolean).join(" ");
+      const base =
+        entries[`${part}.base`] ?? [entries[`${part}.base.degrees`], entries[`${part}.base.side`]].filter(Boolean).join(" ");
       const word = ["in", "out", "up", "down"].includes(base) ? say(`page.bases.${base}`) : base;
       return [entries[`${part}.amount`], word].filter(Boolean).join(" ");
     })
@@ -52,7 +53,11 @@ export function repeats(eye, state) {
         el(
           "li",
           {},
-          el("span", {}, say("page.read.repeat", { number: index + 1, reading: shown(asTyped(entries, `${place}.repeats[${row}]`)) })),
+          el(
+            "span",
+            {},
+            say("page.read.repeat", { number: index + 1, reading: shown(asTyped(entries, `${place}.repeats[${row}]`)) }),
+          ),
           button(say("page.read.drop"), () => state.change((draft) => removeBranch(draft, `${place}.repeats[${row}]`)), {
             "aria-label": say("page.read.drop_repeat", { number: index + 1 }),
           }),

@@ -45,7 +45,11 @@ export function verdictStrip({ show, goTo }) {
     problems.hidden = faults.length === 0;
     redraw(
       problems,
-      el("p", { class: "problems-title" }, say(faults.length === 1 ? "page.problems.one" : "page.problems.many", { count: faults.length })),
+      el(
+        "p",
+        { class: "problems-title" },
+        say(faults.length === 1 ? "page.problems.one" : "page.problems.many", { count: faults.length }),
+      ),
       el(
         "ul",
         {},
@@ -53,7 +57,16 @@ export function verdictStrip({ show, goTo }) {
           el(
             "li",
             {},
-            button("", () => goTo(fault.field), { class: `problem ${isAsk(fault) ? "ask" : "wrong"}`, "data-key": `problem-${fault.field}-${fault.code}`, title: faultText(fault) }, faultPlace(fault)),
+            button(
+              "",
+              () => goTo(fault.field),
+              {
+                class: `problem ${isAsk(fault) ? "ask" : "wrong"}`,
+                "data-key": `problem-${fault.field}-${fault.code}`,
+                title: faultText(fault),
+              },
+              faultPlace(fault),
+            ),
           ),
         ),
       ),
@@ -67,8 +80,14 @@ export function verdictStrip({ show, goTo }) {
     if (!verdict) return [button(say("page.verdict.choose_edition"), () => goTo("edition"), { "data-key": "choose-edition" })];
     return [
       button(say("page.verdict.why"), () => show("decide"), { "data-key": "why" }),
-      button(say("page.verdict.not_checked", { count: verdict.not_checked.length }), () => show("decide", "not-checked"), { "data-key": "not-checked", class: "wide-only" }),
-      button(say("page.verdict.sign"), () => show("decide", "f-initials"), { "data-key": "sign", disabled: earlier || verdict.outcome === "unread" }),
+      button(say("page.verdict.not_checked", { count: verdict.not_checked.length }), () => show("decide", "not-checked"), {
+        "data-key": "not-checked",
+        class: "wide-only",
+      }),
+      button(say("page.verdict.sign"), () => show("decide", "f-initials"), {
+        "data-key": "sign",
+        disabled: earlier || verdict.outcome === "unread",
+      }),
     ];
   }
 

@@ -42,9 +42,7 @@ export function has(code) {
 export function say(code, params = {}) {
   const sentence = look(code);
   if (sentence === undefined) return code;
-  return sentence.replace(/\{(\w+)\}/g, (hole, name) =>
-    name in params ? shown(params[name]) : hole,
-  );
+  return sentence.replace(/\{(\w+)\}/g, (hole, name) => (name in params ? shown(params[name]) : hole));
 }
 
 /**

@@ -1,6 +1,6 @@
 /** This bench: its lens meter, how well it reads, and how this tablet shows things. */
 
-import { button, el, redraw } from "../dom.js";
+import { button, card, el, redraw } from "../dom.js";
 import { faultText } from "../faults.js";
 import { choiceControl } from "../controls.js";
 import * as fields from "../fields.js";
@@ -19,28 +19,58 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
   const shop = shopCard(editions);
   /** @param {"theme"|"decimal"|"keypad"|"bases"} name @param {string[]} values */
   const setting = (name, values) => {
-    const control = choiceControl({ path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values }, (value) => {
-      Object.assign(settings, { [name]: value });
-      settingsChanged();
-    });
+    const control = choiceControl(
+      { path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values },
+      (value) => {
+        Object.assign(settings, { [name]: value });
+        settingsChanged();
+      },
+    );
     control.show(settings[name]);
     return control.node;
   };
-  const confirm = el("div", { class: "confirm", hidden: true }, el("p", {}, say("page.bench.erase_sure")), button(say("page.bench.erase_yes"), erase, { class: "danger", id: "erase-yes" }));
-  const eraseKey = button(say("page.bench.erase"), () => {
-    confirm.hidden = !confirm.hidden;
-    eraseKey.setAttribute("aria-expanded", String(!confirm.hidden));
-  }, { "aria-expanded": "false", id: "erase" });
+  const confirm = el(
+    "div",
+    { class: "confirm", hidden: true },
+    el("p", {}, say("page.bench.erase_sure")),
+    button(say("page.bench.erase_yes"), erase, { class: "danger", id: "erase-yes" }),
+  );
+  const eraseKey = button(
+    say("page.bench.erase"),
+    () => {
+      confirm.hidden = !confirm.hidden;
+      eraseKey.setAttribute("aria-expanded", String(!confirm.hidden));
+    },
+    { "aria-expanded": "false", id: "erase" },
+  );
   return {
     showEditions: shop.show,
     node: el(
       "div",
       { class: "view bench" },
-      el("section", { class: "card", "aria-labelledby": "bench-meter" }, el("h2", { id: "bench-meter" }, say("page.bench.meter")), el("p", { class: "help" }, say("page.bench.meter_help")), ...form.fields(fields.INSTRUMENT), el("div", { class: "grid four" }, ...form.fields(fields.INSTRUMENT_NUMBERS))),
-      el("section", { class: "card", "aria-labelledby": "bench-uncertainty" }, el("h2", { id: "bench-uncertainty" }, say("page.bench.uncertainty")), el("p", { class: "help" }, say("page.bench.uncertainty_help")), el("div", { class: "grid four" }, ...form.fields(fields.UNCERTAINTY))),
+      card(
+        "bench-meter",
+        say("page.bench.meter"),
+        el("p", { class: "help" }, say("page.bench.meter_help")),
+        ...form.fields(fields.INSTRUMENT),
+        el("div", { class: "grid four" }, ...form.fields(fields.INSTRUMENT_NUMBERS)),
+      ),
+      card(
+        "bench-uncertainty",
+        say("page.bench.uncertainty"),
+        el("p", { class: "help" }, say("page.bench.uncertainty_help")),
+        el("div", { class: "grid four" }, ...form.fields(fields.UNCERTAINTY)),
+      ),
       shop.node,
-      el("section", { class: "card", "aria-labelledby": "bench-screen" }, el("h2", { id: "bench-screen" }, say("page.bench.screen")), setting("theme", ["auto", "light", "dark"]), setting("decimal", ["point", "comma"]), setting("keypad", ["auto", "on", "off"]), setting("bases", ["360", "180"])),
-      el("section", { class: "card", "aria-labelledby": "bench-data" }, el("h2", { id: "bench-data" }, say("page.bench.data")), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
+      card(
+        "bench-screen",
+        say("page.bench.screen"),
+        setting("theme", ["auto", "light", "dark"]),
+        setting("decimal", ["point", "comma"]),
+        setting("keypad", ["auto", "on", "off"]),
+        setting("bases", ["360", "180"]),
+      ),
+      card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),
   };
 }
@@ -73,10 +103,29 @@ function shopCard(editions) {
   }
 
   return {
-    node: el("section", { class: "card", "aria-labelledby": "bench-editions" }, el("h2", { id: "bench-editions" }, say("page.bench.editions")), el("p", { class: "help" }, say("page.bench.editions_help")), el("div", { class: "field" }, el("label", { for: "f-edition-file" }, say("page.labels.edition_file")), file), said, list),
+    node: card(
+      "bench-editions",
+      say("page.bench.editions"),
+      el("p", { class: "help" }, say("page.bench.editions_help")),
+      el("div", { class: "field" }, el("label", { for: "f-edition-file" }, say("page.labels.edition_file")), file),
+      said,
+      list,
+    ),
     /** @param {{id: string, name: string}[]} own */
     show(own) {
-      redraw(list, ...own.map(({ id, name }) => el("li", {}, el("span", { class: "job-name" }, el("strong", {}, name)), button(say("page.bench.edition_drop"), () => editions.remove(id), { "aria-label": say("page.bench.edition_drop_named", { name }) }))));
+      redraw(
+        list,
+        ...own.map(({ id, name }) =>
+          el(
+            "li",
+            {},
+            el("span", { class: "job-name" }, el("strong", {}, name)),
+            button(say("page.bench.edition_drop"), () => editions.remove(id), {
+              "aria-label": say("page.bench.edition_drop_named", { name }),
+            }),
+          ),
+        ),
+      );
     },
   };
 }

@@ -1,7 +1,7 @@
 /** The decision: the word, the reasons, what is not checked here, and a person's sign-off. */
 
 import { checkList } from "../checks.js";
-import { button, el, redraw } from "../dom.js";
+import { button, card, el, redraw } from "../dom.js";
 import { noteList } from "../notes.js";
 import { outcomeSymbol } from "../symbols.js";
 import { outcomeOf, sentenceOf } from "../verdict.js";
@@ -25,7 +25,18 @@ function pairTable(report) {
     { class: "pair-table" },
     el("caption", {}, say("page.decide.pair")),
     el("thead", {}, el("tr", {}, el("td"), ...head.map((name) => el("th", { scope: "col" }, say(`page.check.${name}`))))),
-    el("tbody", {}, ...parts.map(({ name, text }) => el("tr", {}, el("th", { scope: "row" }, say(`page.components.${name}`)), ...head.map((column) => el("td", {}, shown(text[column] ?? say("page.facts.not_read"))))))),
+    el(
+      "tbody",
+      {},
+      ...parts.map(({ name, text }) =>
+        el(
+          "tr",
+          {},
+          el("th", { scope: "row" }, say(`page.components.${name}`)),
+          ...head.map((column) => el("td", {}, shown(text[column] ?? say("page.facts.not_read")))),
+        ),
+      ),
+    ),
   );
 }
 
@@ -33,10 +44,22 @@ function pairTable(report) {
 function editionLines(verdict) {
   const { edition } = verdict;
   return [
-    el("p", {}, el("strong", {}, edition.name), ` · ${edition.provenance.map((one) => say(`page.provenance.${one}`)).join(", ")} · ${say(`page.values.decision_rule.${edition.rule}`)}`),
+    el(
+      "p",
+      {},
+      el("strong", {}, edition.name),
+      ` · ${edition.provenance.map((one) => say(`page.provenance.${one}`)).join(", ")} · ${say(`page.values.decision_rule.${edition.rule}`)}`,
+    ),
     el("p", { class: "hash" }, say("page.decide.hash", { hash: edition.sha256 })),
     ...edition.options.map((option) =>
-      el("p", { class: "help" }, say(option.default ? "page.decide.option_default" : "page.decide.option_chosen", { option: say(`options.${option.id}`), why: say(`options.${option.why}`) })),
+      el(
+        "p",
+        { class: "help" },
+        say(option.default ? "page.decide.option_default" : "page.decide.option_chosen", {
+          option: say(`options.${option.id}`),
+          why: say(`options.${option.why}`),
+        }),
+      ),
     ),
   ];
 }
@@ -78,8 +101,21 @@ export function decideView({ state, sign, print, copy }) {
   const edition = el("div", { class: "edition" });
   const cautions = el("div", { class: "cautions" });
   const signed = el("p", { class: "signed" });
-  const initials = el("input", { id: "f-initials", type: "text", "data-path": "initials", "data-kind": "text", maxlength: 12, autocomplete: "off", autocapitalize: "off", spellcheck: "false" });
-  const signKey = button(say("page.verdict.sign"), () => sign(initials.value.trim()), { class: "primary", id: "sign", disabled: true });
+  const initials = el("input", {
+    id: "f-initials",
+    type: "text",
+    "data-path": "initials",
+    "data-kind": "text",
+    maxlength: 12,
+    autocomplete: "off",
+    autocapitalize: "off",
+    spellcheck: "false",
+  });
+  const signKey = button(say("page.verdict.sign"), () => sign(initials.value.trim()), {
+    class: "primary",
+    id: "sign",
+    disabled: true,
+  });
   const printKey = button(say("page.actions.print"), print, { id: "print" });
   const why = el("p", { class: "help" });
   /** @type {Standing|null} */
@@ -91,7 +127,9 @@ export function decideView({ state, sign, print, copy }) {
     const current = Boolean(standing?.report && !standing.earlier);
     signKey.disabled = !judged || !current || !initials.value.trim();
     printKey.disabled = !current;
-    why.textContent = say(!current ? "page.decide.sign_earlier" : !judged ? "page.decide.sign_unread" : "page.decide.sign_help");
+    why.textContent = say(
+      !current ? "page.decide.sign_earlier" : !judged ? "page.decide.sign_unread" : "page.decide.sign_help",
+    );
   }
   initials.addEventListener("input", gate);
 
@@ -104,7 +142,7 @@ export function decideView({ state, sign, print, copy }) {
     el(
       "div",
       { class: "decide-columns" },
-      el("div", { class: "column" }, el("section", { class: "card", "aria-labelledby": "reasons" }, el("h2", { id: "reasons" }, say("page.decide.reasons")), reasons), notes),
+      el("div", { class: "column" }, card("reasons", say("page.decide.reasons"), reasons), notes),
       el(
         "div",
         { class: "column" },
@@ -113,12 +151,17 @@ export function decideView({ state, sign, print, copy }) {
           { class: "card signing", "aria-labelledby": "signing" },
           el("h2", { id: "signing" }, say("page.decide.sign")),
           signed,
-          el("div", { class: "beside" }, el("div", { class: "field" }, el("label", { for: "f-initials" }, say("page.labels.initials")), initials), signKey),
+          el(
+            "div",
+            { class: "beside" },
+            el("div", { class: "field" }, el("label", { for: "f-initials" }, say("page.labels.initials")), initials),
+            signKey,
+          ),
           why,
           el("div", { class: "keys-row" }, printKey, button(say("page.actions.copy"), copy, { id: "copy" })),
         ),
-        el("section", { class: "card", "aria-labelledby": "missing" }, el("h2", { id: "missing" }, say("page.decide.not_checked")), missing),
-        el("section", { class: "card", "aria-labelledby": "rules-used" }, el("h2", { id: "rules-used" }, say("page.decide.edition")), edition),
+        card("missing", say("page.decide.not_checked"), missing),
+        card("rules-used", say("page.decide.edition"), edition),
       ),
     ),
   );
@@ -133,7 +176,21 @@ export function decideView({ state, sign, print, copy }) {
       node.classList.toggle("earlier", earlier);
       head.dataset["outcome"] = outcome;
       head.classList.toggle("earlier", earlier);
-      redraw(head, outcomeSymbol(outcome), el("div", {}, el("p", { class: "word" }, say(`page.outcomes.${outcome}`), earlier ? el("span", { class: "badge" }, say("page.verdict.earlier")) : null), el("p", { class: "sentence" }, sentenceOf(next))));
+      redraw(
+        head,
+        outcomeSymbol(outcome),
+        el(
+          "div",
+          {},
+          el(
+            "p",
+            { class: "word" },
+            say(`page.outcomes.${outcome}`),
+            earlier ? el("span", { class: "badge" }, say("page.verdict.earlier")) : null,
+          ),
+          el("p", { class: "sentence" }, sentenceOf(next)),
+        ),
+      );
       redraw(reasons, ...reasonsOf(report));
       const said = (report?.notes ?? []).filter(({ about }) => about === "verdict");
       redraw(notes, said.length ? noteList(said) : null);

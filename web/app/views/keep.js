@@ -1,6 +1,6 @@
 /** Keeping: the next job, files in and out, and the jobs that were signed here. */
 
-import { button, el, redraw } from "../dom.js";
+import { button, card, el, redraw } from "../dom.js";
 import { outcomeSymbol } from "../symbols.js";
 import { say } from "../words.js";
 
@@ -42,17 +42,29 @@ export function keepView({ newJob, demonstrate, exportFile, importText, copy, pr
   const node = el(
     "div",
     { class: "view keep" },
-    el("section", { class: "card", "aria-labelledby": "keep-job" }, el("h2", { id: "keep-job" }, say("page.keep.job")), el("div", { class: "keys-row" }, button(say("page.actions.new_job"), newJob, { class: "primary", id: "new-job" }), button(say("page.actions.copy"), copy, { id: "copy-result" }), printKey, button(say("page.actions.export"), exportFile, { id: "export" }), button(say("page.actions.demonstration"), demonstrate)), copied),
-    el(
-      "section",
-      { class: "card", "aria-labelledby": "keep-import" },
-      el("h2", { id: "keep-import" }, say("page.keep.import")),
+    card(
+      "keep-job",
+      say("page.keep.job"),
+      el(
+        "div",
+        { class: "keys-row" },
+        button(say("page.actions.new_job"), newJob, { class: "primary", id: "new-job" }),
+        button(say("page.actions.copy"), copy, { id: "copy-result" }),
+        printKey,
+        button(say("page.actions.export"), exportFile, { id: "export" }),
+        button(say("page.actions.demonstration"), demonstrate),
+      ),
+      copied,
+    ),
+    card(
+      "keep-import",
+      say("page.keep.import"),
       el("div", { class: "field" }, el("label", { for: "f-file" }, say("page.labels.file")), file),
       el("div", { class: "field" }, el("label", { for: "f-paste" }, say("page.labels.paste")), paste),
       button(say("page.actions.import"), () => take(paste.value), { id: "import", "data-repeats": true }),
       said,
     ),
-    el("section", { class: "card", "aria-labelledby": "keep-earlier" }, el("h2", { id: "keep-earlier" }, say("page.keep.earlier")), jobs),
+    card("keep-earlier", say("page.keep.earlier"), jobs),
   );
   return {
     node,
@@ -66,7 +78,18 @@ export function keepView({ newJob, demonstrate, exportFile, importText, copy, pr
           "ul",
           { class: "jobs" },
           ...list.map((job) =>
-            el("li", {}, outcomeSymbol(job.outcome), el("span", { class: "job-name" }, el("strong", {}, job.id || say("page.keep.unnamed")), ` ${say(`page.outcomes.${job.outcome}`)} · ${job.edition} · ${job.initials} · ${job.at}`), button(say("page.actions.reopen"), () => reopen(job), { "aria-label": say("page.keep.reopen", { id: job.id }) })),
+            el(
+              "li",
+              {},
+              outcomeSymbol(job.outcome),
+              el(
+                "span",
+                { class: "job-name" },
+                el("strong", {}, job.id || say("page.keep.unnamed")),
+                ` ${say(`page.outcomes.${job.outcome}`)} · ${job.edition} · ${job.initials} · ${job.at}`,
+              ),
+              button(say("page.actions.reopen"), () => reopen(job), { "aria-label": say("page.keep.reopen", { id: job.id }) }),
+            ),
           ),
         ),
       );

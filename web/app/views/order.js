@@ -1,6 +1,6 @@
 /** The order: one line, or field by field; what was understood beside each; what a careful person would query. */
 
-import { button, el, redraw } from "../dom.js";
+import { button, card, el, redraw } from "../dom.js";
 import * as fields from "../fields.js";
 import { changing } from "../form.js";
 import { hasOrder } from "../job.js";
@@ -85,14 +85,18 @@ function rulesCard(form, state) {
     (entries) => {
       form.forget("edition");
       const edition = editions.find(({ id }) => id === entries["edition"]);
-      const name = (/** @type {string} */ id) => (id ? (editions.find((one) => one.id === id)?.name ?? id) : say("page.order.no_edition"));
-      const select = form.select({ path: "edition", kind: "select", label: "edition", values: ["", ...editions.map(({ id }) => id)] }, name);
+      const name = (/** @type {string} */ id) =>
+        id ? (editions.find((one) => one.id === id)?.name ?? id) : say("page.order.no_edition");
+      const select = form.select(
+        { path: "edition", kind: "select", label: "edition", values: ["", ...editions.map(({ id }) => id)] },
+        name,
+      );
       return [select, edition ? aboutEdition(edition, form) : null];
     },
   );
   state.subscribe(refresh);
   refresh(state.entries);
-  const node = el("section", { class: "card", "aria-labelledby": "rules" }, el("h2", { id: "rules" }, say("page.order.rules")), place, form.field(fields.RULE));
+  const node = card("rules", say("page.order.rules"), place, form.field(fields.RULE));
   return {
     node,
     /** @param {any[]} list */
@@ -155,7 +159,10 @@ export function orderView({ form, state, line, demonstrate, reopen }) {
       const job = jobs.find(({ id }) => id && id === entries["id"]?.trim());
       known.hidden = !job || Boolean(entries["signed.at"]);
       if (!job) return [];
-      return [el("p", {}, say("page.order.known", { at: job.at, initials: job.initials })), button(say("page.actions.reopen"), () => reopen(job), { id: "reopen-known" })];
+      return [
+        el("p", {}, say("page.order.known", { at: job.at, initials: job.initials })),
+        button(say("page.actions.reopen"), () => reopen(job), { id: "reopen-known" }),
+      ];
     },
   );
   state.subscribe(showKnown);
@@ -171,14 +178,25 @@ export function orderView({ form, state, line, demonstrate, reopen }) {
   const node = el(
     "div",
     { class: "view order" },
-    el("section", { class: "card", "aria-labelledby": "order-line" }, el("h2", { id: "order-line", class: "hidden" }, say("page.order.line")), line, begin),
+    el(
+      "section",
+      { class: "card", "aria-labelledby": "order-line" },
+      el("h2", { id: "order-line", class: "hidden" }, say("page.order.line")),
+      line,
+      begin,
+    ),
     check,
-    el("section", { class: "card", "aria-labelledby": "order-job" }, el("h2", { id: "order-job" }, say("page.order.job")), el("div", { class: "job-grid" }, ...form.fields(fields.JOB)), known),
+    card("order-job", say("page.order.job"), el("div", { class: "job-grid" }, ...form.fields(fields.JOB)), known),
     el("div", { class: "pair" }, ...eyes.map((eye) => eye.node)),
     el(
       "div",
       { class: "pair" },
-      el("section", { class: "card", "aria-labelledby": "order-frame" }, el("h2", { id: "order-frame" }, say("page.order.frame")), thinningCard(form, state), el("div", { class: "grid three" }, ...form.fields(fields.FRAME))),
+      card(
+        "order-frame",
+        say("page.order.frame"),
+        thinningCard(form, state),
+        el("div", { class: "grid three" }, ...form.fields(fields.FRAME)),
+      ),
       rules.node,
     ),
     el("p", { class: "caution" }, say("page.order.caution")),

@@ -1,6 +1,6 @@
 /** The reading: the pair as it lies there, right lens on the left, and everything that is read of it. */
 
-import { el, redraw } from "../dom.js";
+import { card, el, redraw } from "../dom.js";
 import * as fields from "../fields.js";
 import { lensCard } from "../lens-card.js";
 import { noteList } from "../notes.js";
@@ -18,10 +18,9 @@ import { say, shown } from "../words.js";
 /** @param {string} eye @param {Form} form @param {State} state */
 function readingCard(eye, form, state) {
   const place = `readings.${eye}`;
-  return el(
-    "section",
-    { class: "card", "aria-labelledby": `typed-${eye}` },
-    el("h2", { id: `typed-${eye}` }, say(`page.read.typed_${eye}`)),
+  return card(
+    `typed-${eye}`,
+    say(`page.read.typed_${eye}`),
     prismGroup(form, state, `${place}.prism`, "read_prism"),
     repeats(eye, state),
     el("div", { class: "grid four" }, ...form.fields(fields.powers(place))),
@@ -55,7 +54,12 @@ function pointLines(report) {
   });
   const alike = all.length === 2 && all[0]?.text === all[1]?.text;
   return (alike ? all.slice(0, 1) : all).map(({ eye, task, text }) =>
-    el("p", { class: "point", "data-task": task }, alike || all.length === 1 ? null : el("strong", {}, `${say(`page.lenses.${eye}`)}: `), text),
+    el(
+      "p",
+      { class: "point", "data-task": task },
+      alike || all.length === 1 ? null : el("strong", {}, `${say(`page.lenses.${eye}`)}: `),
+      text,
+    ),
   );
 }
 
@@ -69,7 +73,7 @@ export function readView({ form, state, steps }) {
   const summary = el("div", { class: "order-summary" });
   const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
   const notes = el("div", { class: "reading-notes" });
-  const pair = el("div", { class: "pair dials" }, ...cards.map(({ node: one }) => one));
+  const pair = el("div", { class: "pair dials" }, ...cards.map((card) => card.node));
   const node = el(
     "div",
     { class: "view read" },
@@ -78,16 +82,24 @@ export function readView({ form, state, steps }) {
     pair,
     notes,
     el("div", { class: "pair" }, ...EYES.map((eye) => readingCard(eye, form, state))),
-    el("section", { class: "card", "aria-labelledby": "read-how" }, el("h2", { id: "read-how" }, say("page.read.how")), el("div", { class: "grid two" }, form.field(fields.READ_AT), form.field(fields.SLID_DISTANCE))),
+    card(
+      "read-how",
+      say("page.read.how"),
+      el("div", { class: "grid two" }, form.field(fields.READ_AT), form.field(fields.SLID_DISTANCE)),
+    ),
   );
   return {
     node,
     /** @param {import("../verdict.js").Standing} standing */
     draw({ report, earlier }) {
       pair.classList.toggle("earlier", earlier);
-      for (const lens of cards) lens.draw(report);
+      for (const card of cards) card.draw(report);
       const lines = EYES.flatMap((eye) => report?.order_lines?.[eye]?.slice(0, 1) ?? []);
-      redraw(summary, lines.length ? el("p", { class: "order-lines" }, ...lines.map((line) => el("span", {}, shown(line)))) : null, ...(report ? pointLines(report) : []));
+      redraw(
+        summary,
+        lines.length ? el("p", { class: "order-lines" }, ...lines.map((line) => el("span", {}, shown(line)))) : null,
+        ...(report ? pointLines(report) : []),
+      );
       const said = (report?.notes ?? []).filter(({ about }) => about === "reading" || about === "instrument");
       redraw(notes, said.length ? noteList(said) : null);
     },
