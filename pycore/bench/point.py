@@ -29,19 +29,25 @@ def point_of(job: Job, order: EyeOrder) -> Point:
     Arguments: `job`; `order` of the eye. Returns the Point. Source: domain facts section 5
     (progressive: midway between the engravings, 2 to 4 mm below the fitting cross).
     """
+    task, code, needed = _kind_of_point(job, order)
+    places = _positions(order)
+    if any(not places[name] for name in needed):
+        code += "-unplaced"
+    return Point(task=task, code=code, params={name: places[name] for name in needed})
+
+
+def _kind_of_point(job: Job, order: EyeOrder) -> tuple[str, str, tuple[str, ...]]:
+    """The task, the sentence's code, and the positions that it names."""
     design = order.lens.design or "single-vision"
-    kind = "segmented" if design in SEGMENTED else design
-    params = _positions(order)
     if job.state == "uncut" and design in ("single-vision", "near") and not order.partner:
-        return Point(task="spotting", code="spot-single-vision", params=params)
+        return "spotting", "spot-single-vision", ("pd", "height")
     if design == "progressive":
-        return Point(task="checking", code="check-progressive", params=params)
-    if kind == "segmented":
-        code = "check-segmented" if order.prp_height_mm is not None else "check-segmented-no-height"
-        return Point(task="checking", code=code, params=params)
+        return "checking", "check-progressive", ("cross",)
+    if design in SEGMENTED:
+        return "checking", "check-segmented", ("pd", "height")
     if has_marked_height(order, job.state):
-        return Point(task="checking", code="check-single-vision", params=params)
-    return Point(task="checking", code="check-single-vision-no-height", params=params)
+        return "checking", "check-single-vision", ("pd", "height")
+    return "checking", "check-single-vision-no-height", ()
 
 
 def _positions(order: EyeOrder) -> dict[str, str]:
@@ -50,4 +56,4 @@ def _positions(order: EyeOrder) -> dict[str, str]:
         "height": order.prp_height_mm,
         "cross": order.cross_above_prp_mm,
     }
-    return {name: "\u2013" if value is None else str(value) for name, value in found.items()}
+    return {name: "" if value is None else str(value) for name, value in found.items()}

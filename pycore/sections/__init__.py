@@ -9,8 +9,13 @@ from collections.abc import Callable, Mapping, Sequence
 from pycore.case import Case
 from pycore.names import Entry, spoken
 from pycore.sections.answer import SectionAnswer
+from pycore.sections.colour import colour_section
+from pycore.sections.near import near_section
 
-SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {}
+SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
+    "near": near_section,
+    "colour": colour_section,
+}
 
 
 def add_sections(report: Entry, case: Case, wanted: Sequence[str], *, scenes: bool) -> None:

@@ -62,10 +62,10 @@ export function toJob(entries) {
       if (typeof step === "number") {
         const used = rows.get(prefix) ?? [];
         if (!used.includes(step))
-          rows.set(
+          {rows.set(
             prefix,
             [...used, step].sort((a, b) => a - b),
-          );
+          );}
       }
       prefix = join(prefix, step);
     }

@@ -157,7 +157,7 @@ export function createKeypad({ settings, next, setBase }) {
       return;
     }
     for (const input of document.querySelectorAll("input[data-kind=number], input[data-kind=power]"))
-      mode(/** @type {HTMLInputElement} */ (input));
+      {mode(/** @type {HTMLInputElement} */ (input));}
   }
   window.addEventListener("resize", () => {
     cramped = false;

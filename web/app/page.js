@@ -261,7 +261,7 @@ export function startPage(startEngine) {
     const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
     if (name) top.show(name);
     for (let node = control.node.parentElement; node; node = node.parentElement)
-      if (node instanceof HTMLDetailsElement) node.open = true;
+      {if (node instanceof HTMLDetailsElement) node.open = true;}
     control.node.scrollIntoView({ block: "center" });
     control.focus.focus();
   }

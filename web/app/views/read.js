@@ -73,7 +73,7 @@ export function readView({ form, state, steps }) {
   const summary = el("div", { class: "order-summary" });
   const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
   const notes = el("div", { class: "reading-notes" });
-  const pair = el("div", { class: "pair dials" }, ...cards.map((card) => card.node));
+  const pair = el("div", { class: "pair dials" }, ...cards.map(({ node: one }) => one));
   const node = el(
     "div",
     { class: "view read" },
@@ -93,7 +93,7 @@ export function readView({ form, state, steps }) {
     /** @param {import("../verdict.js").Standing} standing */
     draw({ report, earlier }) {
       pair.classList.toggle("earlier", earlier);
-      for (const card of cards) card.draw(report);
+      for (const lens of cards) lens.draw(report);
       const lines = EYES.flatMap((eye) => report?.order_lines?.[eye]?.slice(0, 1) ?? []);
       redraw(
         summary,
