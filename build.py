@@ -74,7 +74,7 @@ def step(title: str, inputs: Iterable[Path], outputs: Iterable[Path], make: Call
 
 def pip(*arguments: str | Path) -> None:
     """Call pip, which keeps to the settings of this machine and to the checksums of our lists."""
-    quiet = {"PIP_DISABLE_PIP_VERSION_CHECK": "1", "PIP_ROOT_USER_ACTION": "ignore"}
+    quiet = {"PIP_DISABLE_PIP_VERSION_CHECK": "1", "PIP_ROOT_USER_ACTION": "ignore", "PIP_USER": "0"}
     strict = ["--quiet", "--no-deps", "--only-binary=:all:", "--require-hashes"]
     run([sys.executable, "-m", "pip", *arguments[:1], *strict, *arguments[1:]], environment=quiet)
 
@@ -121,7 +121,10 @@ def install_web() -> None:
     package = node().parent if os.name == "nt" else node().parent.parent / "lib"
     inputs = [WEB / "package.json", WEB / "package-lock.json", WEB / ".npmrc", ROOT / "requirements" / "build.txt"]
     npm = package / "node_modules" / "npm" / "bin" / "npm-cli.js"
-    make = lambda: run_node(npm, "ci", "--loglevel=error", folder=WEB)  # noqa: E731
+
+    def make() -> None:
+        run_node(npm, "ci", "--loglevel=error", folder=WEB)
+
     step("install the page's packages", inputs, [WEB / "node_modules" / "pyodide"], make)
 
 
@@ -207,8 +210,9 @@ def test() -> None:
     # The report is made by a process of its own: Python 3.11.2 may refuse to parse after a test has exhausted its stack.
     run_all(
         lambda: run_node("--test", "--test-force-exit", *sorted((ROOT / "tests" / "web").glob("test_*.mjs"))),
-        lambda: run_python("-m", "coverage", "run", "-m", "pytest", purposes=("test", "build")),
+        lambda: run_python("-m", "coverage", "run", "-m", "pytest", "-m", "traced", purposes=("test", "build")),
         lambda: run_python("-m", "coverage", "report", purposes=("test",)),
+        lambda: run_python("-m", "pytest", "-m", "not traced", purposes=("test", "build")),
     )
 
 

@@ -69,9 +69,8 @@ class Edge:
     weight_g: float | None
 
     def at(self, angle_deg: float) -> float:
-        """Thickness in mm at the point of the rim nearest to an angle in degrees."""
-        count = len(self.profile)
-        return self.profile[round(angle_deg * count / 360.0) % count][1]
+        """Thickness in mm at the point of the rim nearest to an angle in degrees, 0 to 350."""
+        return min(self.profile, key=lambda place: abs(place[0] - angle_deg))[1]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -122,31 +121,47 @@ def edge_of(lens: FramedLens, prism: Prism, every: int = 1, *, weigh: bool = Tru
     wedge, facts 4.8; weight is density times the sum of thickness over the area.
     """
     solid = lens.with_prism(prism)
-    around = lens.rim.points[::every]
+    start_mm = lens.minimum_centre_mm if lens.centre_mm is None else lens.centre_mm
+    indices = list(range(0, len(lens.rim.points), every))
+    found = thicknesses(solid, start_mm, [lens.rim.points[index] for index in indices])
+    beside = _beside(indices, found, len(lens.rim.points)) if every > 1 else []
+    indices += beside
     inside = _thinnest_inside(lens, prism)
-    demands = [lens.minimum_edge_mm] * len(around)
+    others = [*(lens.rim.points[index] for index in beside), *lens.rim.holes, *inside]
+    found += thicknesses(solid, start_mm, others)
+    places = [*(lens.rim.points[index] for index in indices), *lens.rim.holes, *inside]
+    demands = [lens.minimum_edge_mm] * len(indices)
     demands += [lens.minimum_hole_mm] * len(lens.rim.holes)
     demands += [lens.minimum_centre_mm] * len(inside)
-    places = (*around, *lens.rim.holes, *inside)
-    centre_mm, governing, found = _thickness(lens, solid, places, demands)
-    count = len(around)
+    if lens.centre_mm is None:
+        centre_mm, governing, found = _thickness(solid, start_mm, found, places, demands)
+    else:
+        centre_mm, governing = lens.centre_mm, -1
+    around = dict(sorted(zip(indices, found, strict=False)))
+    step = 360.0 / len(lens.rim.points)
     volume = 0.0
     if weigh:
         inner = thicknesses(solid, centre_mm, lens.rim.nodes)
         volume = sum(map(mul, lens.rim.node_areas_mm2, inner))
-    around_mm = found[:count]
-    profile = tuple((360.0 * number / count, mm) for number, mm in enumerate(around_mm))
     density = lens.density_g_cm3 if weigh else None
+    thin, thick = (end(around, key=around.__getitem__) for end in (min, max))
     return Edge(
         centre_mm=centre_mm,
-        governs=_name(governing, count, len(lens.rim.holes)),
-        profile=profile,
-        thinnest=profile[around_mm.index(min(around_mm))],
-        thickest=profile[around_mm.index(max(around_mm))],
+        governs=_name(governing, len(indices), len(lens.rim.holes)),
+        profile=tuple((index * step, mm) for index, mm in around.items()),
+        thinnest=(thin * step, around[thin]),
+        thickest=(thick * step, around[thick]),
         least_mm=min(centre_mm, *found),
         volume_mm3=volume,
         weight_g=None if density is None else volume * density / 1000.0,
     )
+
+
+def _beside(indices: Sequence[int], found: Sequence[float], count: int) -> list[int]:
+    """The points of the rim left out beside the thinnest and the thickest one looked at."""
+    ends = (indices[found.index(end(found))] for end in (min, max))
+    beside = {(index + step) % count for index in ends for step in (-1, 1)}
+    return sorted(beside.difference(indices))
 
 
 def _thinnest_inside(lens: FramedLens, prism: Prism) -> tuple[Place, ...]:
@@ -160,14 +175,15 @@ def _thinnest_inside(lens: FramedLens, prism: Prism) -> tuple[Place, ...]:
 
 
 def _thickness(
-    lens: FramedLens, solid: Solid, places: Sequence[Place], demands: Sequence[float]
+    solid: Solid,
+    centre_mm: float,
+    found: list[float],
+    places: Sequence[Place],
+    demands: Sequence[float],
 ) -> tuple[float, int | None, list[float]]:
-    """Centre thickness, which demand governs it (None: that of the centre; -1: given), and the
-    thickness at every place."""
-    if lens.centre_mm is not None:
-        return lens.centre_mm, -1, thicknesses(solid, lens.centre_mm, places)
-    centre_mm, governing = lens.minimum_centre_mm, None
-    found = thicknesses(solid, centre_mm, places)
+    """The least centre thickness that meets all demands, which of them governs it (None: that of
+    the centre), and the thickness at every place. `found`: the thickness there to begin with."""
+    governing = None
     while True:
         lacking = [demand - mm for demand, mm in zip(demands, found, strict=True)]
         worst = max(range(len(places)), key=lacking.__getitem__)

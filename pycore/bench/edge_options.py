@@ -68,12 +68,8 @@ def _fitting(lenses: Lenses, dues: Mapping[Eye, Due]) -> Decimal:
     """The thinning that fits (none for lenses without an add), prism dioptres, up positive."""
     if not any(dues[eye].add for eye in lenses):
         return Decimal(0)
-    wanted = {}
-    for eye, lens in lenses.items():
-        try:
-            wanted[eye] = equalising(lens, dues[eye].prescribed)
-        except OutsideSurfaceError:
-            return Decimal(0)
-    up = amount_for_pair(wanted)
+    up = amount_for_pair(
+        {eye: equalising(lens, dues[eye].prescribed) for eye, lens in lenses.items()}
+    )
     there = {(dues[eye].thinning or NO_PRISM).y for eye in lenses}
     return Decimal(0) if there == {up} else up

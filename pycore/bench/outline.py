@@ -2,7 +2,8 @@
 
 Either radii somebody traced, or the box (A, B), the effective diameter ED and a class of shape:
 each quarter of the rim is then a superellipse that touches the box, and the fullest quarter
-reaches out to ED / 2 exactly. The real rim differs: what rests on a class is marked as assumed.
+reaches out to ED / 2 (a point every 5 degrees may miss the corner by up to 0.2 mm). The real rim
+differs: what rests on a class is marked as assumed.
 """
 
 from dataclasses import dataclass

@@ -14,6 +14,15 @@ from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 
 
+# The sentence without positions, for where one of them is not given.
+UNPLACED = {
+    "spot-single-vision": "spot-single-vision-unplaced",
+    "check-progressive": "check-progressive-unplaced",
+    "check-segmented": "check-segmented-unplaced",
+    "check-single-vision": "check-single-vision-unplaced",
+}
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Point:
     """The task at one lens and the code of the sentence that says where the point is."""
@@ -32,7 +41,7 @@ def point_of(job: Job, order: EyeOrder) -> Point:
     task, code, needed = _kind_of_point(job, order)
     places = _positions(order)
     if any(not places[name] for name in needed):
-        code += "-unplaced"
+        code = UNPLACED[code]
     return Point(task=task, code=code, params={name: places[name] for name in needed})
 
 

@@ -18,7 +18,7 @@ from pycore.optics.prism import Eye
 Place = tuple[float, float]
 
 MOST_RIM_POINTS = 72
-SECTORS = 24
+SECTORS = 16
 HOLE_FROM_RIM_MM = 3.0  # from the rim on the line of the datum, both sides: common practice
 # From memory (facts section 6): one eye's distance 27 to 36, near inset 1.5 to 2.5, DBL 14 to 24.
 _USUAL_MM = {"dbl_mm": Decimal(18), "pd_mm": Decimal(32), "near_pd_mm": Decimal(30)}
@@ -43,10 +43,6 @@ class Rim:
     holes: tuple[Place, ...]
     nodes: tuple[Place, ...]
     node_areas_mm2: tuple[float, ...]
-
-    def angle_deg(self, index: int) -> float:
-        """The angle of one point of the rim at the boxing centre, in degrees."""
-        return 360.0 * index / len(self.points)
 
     def index_at(self, angle_deg: float) -> int:
         """The point of the rim nearest to an angle in degrees at the boxing centre."""
@@ -82,7 +78,7 @@ def placed(job: Job, order: EyeOrder) -> Placed | None:
     for field in place.missing if place else ():
         value = _USUAL_MM.get(field.rpartition(".")[2])
         if value is None:
-            return None
+            continue
         usual[field] = str(value)
         if field == "frame.dbl_mm":
             filled = replace(filled, frame=replace(frame, dbl_mm=value))
@@ -135,16 +131,17 @@ def _holes(around: tuple[Place, ...]) -> list[Place]:
 def _nodes(around: tuple[Place, ...]) -> list[tuple[float, float, float]]:
     """Places and areas of a fixed sum over the outline: sectors, two radii in each.
 
-    A sector keeps the exact mean square of the rim's radii in it, so that the area is right.
+    A sector has the true mean of the rim's squared radii, so that its area is right, and its
+    radii are drawn out by the mean of the fourth powers, so that squares over it are right too.
     """
-    count = len(around)
     squares = [x * x + y * y for x, y in around]
-    step = 2.0 * math.pi / SECTORS
+    fourths = [square * square for square in squares]
+    width, step = len(around) / SECTORS, 2.0 * math.pi / SECTORS
     nodes = []
     for sector in range(SECTORS):
-        middle, half = sector * count / SECTORS, count / SECTORS / 2.0
-        square = _mean(squares, middle - half, middle + half)
-        radius, angle = math.sqrt(square), sector * step
+        ends = (sector - 0.5) * width, (sector + 0.5) * width
+        square = _mean(squares, *ends)
+        radius, angle = math.sqrt(_mean(fourths, *ends) / square), sector * step
         for reach, weight in RADII:
             x, y = reach * radius * math.cos(angle), reach * radius * math.sin(angle)
             nodes.append((x, y, weight * square * step))

@@ -17,7 +17,7 @@ from pycore.optics.prism import EYES, Eye, Prism
 HUNDREDTH = Decimal("0.01")
 NONE, HALF, ALL = Decimal(0), Decimal("0.5"), Decimal(1)
 EQUAL = 0.05  # mm, or grams: nobody measures a lens closer
-STEPS, NO_NARROWER = 12, 1e-4
+NO_NARROWER = 1e-4
 Pair = Mapping[Eye, Prism]
 
 
@@ -150,36 +150,22 @@ def _equal(
     """
     parts = [0.0, 0.5, 1.0]
     misses = [measure(share) or 0.0 for share in known]
-    if misses[0] * misses[2] > 0:
+    side = next((end for end in (0, 1) if misses[end] * misses[end + 1] <= 0), None)
+    if side is None:
         nearest = min(known, key=lambda share: abs(measure(share) or 0.0))
         return replace(nearest, kind=kind, reached=False)
-    side = 0 if misses[0] * misses[1] <= 0 else 1
     low, high = parts[side], parts[side + 1]
     miss_low, miss_high = misses[side], misses[side + 1]
-    part = _root_of_three(parts, misses)
-    share = known[1]
-    for _ in range(STEPS):
-        if not low < part < high:
-            part = low - miss_low * (high - low) / (miss_high - miss_low)
+    while True:
+        # False position, a tenth from the ends at least, so that it comes to an end.
+        share_of_way = miss_low / (miss_low - miss_high) if miss_low != miss_high else 0.5
+        part = low + (high - low) * min(max(share_of_way, 0.1), 0.9)
         share = way(kind, shared(whole, Decimal(part)))
         miss = measure(share) or 0.0
         if abs(miss) <= EQUAL or high - low < NO_NARROWER:
-            break
+            return share
+        # The miss that stays is halved (the Illinois rule): it would slow the search down.
         if miss * miss_high > 0:
-            high, miss_high, miss_low = part, miss, miss_low / 2.0  # the Illinois rule
+            high, miss_high, miss_low = part, miss, miss_low / 2.0
         else:
             low, miss_low, miss_high = part, miss, miss_high / 2.0
-        part = low - miss_low * (high - low) / (miss_high - miss_low)
-    return share
-
-
-def _root_of_three(parts: list[float], misses: list[float]) -> float:
-    """Where the curve through three points crosses zero (inverse quadratic); -1 if it does not."""
-    (a, b, c), (at_a, at_b, at_c) = parts, misses
-    if at_a in (at_b, at_c) or at_b == at_c:
-        return -1.0
-    return (
-        a * at_b * at_c / ((at_a - at_b) * (at_a - at_c))
-        + b * at_a * at_c / ((at_b - at_a) * (at_b - at_c))
-        + c * at_a * at_b / ((at_c - at_a) * (at_c - at_b))
-    )

@@ -13,6 +13,7 @@ from decimal import ROUND_HALF_EVEN, Decimal
 from pycore.bench.edge import COARSE, Edge, FramedLens, edge_of
 from pycore.bench.expected import SHARE_OF_ADD, THINNING_PLACES
 from pycore.optics.prism import EYES, Eye, Prism
+from pycore.optics.surface import OutsideSurfaceError
 from pycore.optics.thickness import thicknesses
 
 EQUAL_MM = 1e-6
@@ -34,11 +35,6 @@ class Choice:
         weights = [edge.weight_g for edge in self.edges.values()]
         known = [weight for weight in weights if weight is not None]
         return sum(known) if len(known) == len(weights) else None
-
-    @property
-    def centre_mm(self) -> float:
-        """The greater of the centre thicknesses, in mm."""
-        return max(edge.centre_mm for edge in self.edges.values())
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -68,12 +64,15 @@ def equalising(lens: FramedLens, prescribed: Prism) -> float | None:
         return top - bottom
 
     low, high = 0.0, 1.0
-    at_low, at_high = difference_mm(low), difference_mm(high)
-    while abs(at_high) > EQUAL_MM:  # nearly a straight line: the secant is there in three steps
-        low, high = high, high - at_high * (high - low) / (at_high - at_low)
-        if abs(high) > MOST:
-            return None
-        at_low, at_high = at_high, difference_mm(high)
+    try:
+        at_low, at_high = difference_mm(low), difference_mm(high)
+        while abs(at_high) > EQUAL_MM:  # nearly a straight line: the secant needs three steps
+            low, high = high, high - at_high * (high - low) / (at_high - at_low)
+            if abs(high) > MOST:
+                return None
+            at_low, at_high = at_high, difference_mm(high)
+    except OutsideSurfaceError:
+        return None
     return high
 
 
@@ -99,7 +98,7 @@ def amount_for_pair(wanted: Mapping[Eye, float | None]) -> Decimal:
 def thinnings(
     lenses: Mapping[Eye, FramedLens],
     prescribed: Mapping[Eye, Prism],
-    add: Decimal | None,
+    add: Decimal,
     stated: Mapping[str, Decimal],
 ) -> Thinnings:
     """All choices for a pair (or for the one lens there is).
@@ -112,9 +111,8 @@ def thinnings(
     each = {eye: equalising(lens, prescribed[eye]) for eye, lens in lenses.items()}
     fits = amount_for_pair(each)
     amounts = {"none": Decimal(0), "fits": fits}
-    if add:
-        for rule, share in SHARE_OF_ADD.items():
-            amounts[rule] = -(add * share).quantize(THINNING_PLACES, ROUND_HALF_EVEN)
+    for rule, share in SHARE_OF_ADD.items():
+        amounts[rule] = -(add * share).quantize(THINNING_PLACES, ROUND_HALF_EVEN)
     amounts |= stated
     done: dict[Decimal, Mapping[Eye, Edge]] = {}
     for up in amounts.values():

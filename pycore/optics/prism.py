@@ -76,12 +76,13 @@ def from_base(amount: Decimal, base_deg: Decimal) -> Prism:
     >>> from_base(Decimal("2.5"), Decimal(270))
     Prism(x=Decimal('0.0'), y=Decimal('-2.5'))
     """
-    exact = _QUARTERS.get(base_deg % 360)
+    turned = base_deg % 360
+    exact = _QUARTERS.get(turned)
     if exact is not None:
         return Prism(amount * exact[0] + 0, amount * exact[1] + 0)
-    if base_deg % 360 >= 180:  # in decimals, so that theta and theta + 180 cancel exactly
-        return -from_base(amount, base_deg % 360 - 180)
-    degrees = float(base_deg)
+    if turned >= 180:  # in decimals, so that theta and theta + 180 cancel exactly
+        return -from_base(amount, turned - 180)
+    degrees = float(turned)
     return Prism(
         from_float(float(amount) * cosine(degrees)), from_float(float(amount) * sine(degrees))
     )

@@ -20,11 +20,13 @@ Line = list[list[float]]
 
 
 def edge_scene(lens: FramedLens, prism: Prism, edge: Edge, texts: Sequence[str]) -> Scene:
-    """The picture of one lens. Arguments: `lens`; `prism` prism dioptres; its `edge`; `texts` of
-    the thickest and the thinnest place. Returns the scene, in mm."""
+    """The picture of one lens.
+
+    Arguments: `lens`; `prism` prism dioptres; its `edge` all round; `texts` of the thickest and
+    the thinnest place. Returns the scene, in mm.
+    """
     centre_x, centre_y = lens.rim.centre
-    every = len(lens.rim.points) // len(edge.profile)
-    around = [(x - centre_x, y - centre_y) for x, y in lens.rim.points[::every]]
+    around = [(x - centre_x, y - centre_y) for x, y in lens.rim.points]
     outer = [_outwards(place, mm) for place, (_, mm) in zip(around, edge.profile, strict=True)]
     bottom = min(y for _, y in outer) - ROOM_MM
     front, back = _cut(lens, prism, edge.centre_mm, bottom)

@@ -11,9 +11,13 @@ from pycore.names import Entry, spoken
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.colour import colour_section
 from pycore.sections.near import near_section
+from pycore.sections.surfacing import surfacing_section
+from pycore.sections.wear import wear_section
 
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "near": near_section,
+    "wear": wear_section,
+    "surfacing": surfacing_section,
     "colour": colour_section,
 }
 

@@ -53,7 +53,7 @@ def field_section(case: Case) -> SectionAnswer:
         eye: [_text(eye, *pair) for pair in zip(readings[eye], entries[eye], strict=True)]
         for eye in lenses
     }
-    title, params = _title(texts, agreement)
+    title, params = _title(entries, agreement)
     return SectionAnswer(
         title=title,
         title_params=params,
@@ -101,10 +101,10 @@ def _point_entry(eye: Eye, reading: Reading) -> Entry:
 
 
 def _title(
-    texts: Mapping[Eye, list[str]], agreement: Agreement | None
+    entries: Mapping[Eye, list[Entry]], agreement: Agreement | None
 ) -> tuple[str, dict[str, str]]:
     """The point last asked for on each lens, else how far the pair agrees."""
-    last = {eye: found[-1] for eye, found in texts.items() if found}
+    last = {eye: _short_text(found[-1]) for eye, found in entries.items() if found}
     if len(last) == 2:
         return "points", {"right_point": last["right"], "left_point": last["left"]}
     for eye, text in last.items():
@@ -116,7 +116,12 @@ def _title(
         if agreement.down_mm is None:
             return "agrees-aside", params | {"aside": millimetres(agreement.half_width_mm)}
         return "agrees-down", params | {"down": millimetres(agreement.down_mm)}
-    return ("touch" if texts else "needs-power"), {}
+    return ("touch" if entries else "needs-power"), {}
+
+
+def _short_text(entry: Entry) -> str:
+    """One point's prism as it is to be expected: exact where it is known."""
+    return str((entry["exact"] or entry["thin"])["shown"]["text"])
 
 
 def _text(eye: Eye, reading: Reading, entry: Entry) -> str:

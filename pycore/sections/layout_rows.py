@@ -10,7 +10,7 @@ from pycore.bench.outline import Outline
 from pycore.decimals import fixed, signed, snap
 from pycore.job.body import Frame
 from pycore.job.document import Job
-from pycore.names import degrees_text
+from pycore.names import degrees_text, plain
 from pycore.sections.answer import Row
 from pycore.sections.places import millimetres, spot_text
 from pycore.words import say
@@ -115,8 +115,8 @@ def lens_notes(job: Job, lenses: Sequence[LensLayout]) -> Notes:
         if order.cross_above_prp_mm is not None and cross and prp:
             above_mm = cross.up_mm - prp.up_mm + lens.place.shift.up_mm
             if above_mm != order.cross_above_prp_mm:
-                given = str(order.cross_above_prp_mm)
-                yield "heights-differ", {"eye": lens.eye, "given": given, "found": str(above_mm)}
+                given, found = plain(order.cross_above_prp_mm), plain(above_mm)
+                yield "heights-differ", {"eye": lens.eye, "given": given, "found": found}
 
 
 def _making_notes(lens: LensLayout) -> Notes:

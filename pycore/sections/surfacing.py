@@ -229,6 +229,8 @@ def _notes(case: Case, lenses: Lenses) -> Iterator[tuple[str, Mapping[str, str]]
         if lens.prism.amount > BEYOND_THIN:
             yield "beyond-thin", {"eye": eye, "amount": fixed(lens.prism.amount, 2)}
         yield from _notes_on_order(case, eye, case.dues[eye])
+    if any(lens.blocking.centre != (0.0, 0.0) for lens in lenses.values()):
+        yield "thin-formula", {}
     if lenses:
         yield "share", {}
 

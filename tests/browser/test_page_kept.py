@@ -96,7 +96,9 @@ def test_a_second_window_says_that_it_does_not_save(page_from_disk: Page, dist: 
 
 
 def test_where_storage_is_refused_it_is_said_and_the_page_works(dist: Path, page: Page) -> None:
-    page.add_init_script("Object.defineProperty(globalThis, 'indexedDB', { get() { throw new DOMException('no', 'SecurityError'); } });")
+    page.add_init_script(
+        "Object.defineProperty(globalThis, 'indexedDB', { get() { throw new DOMException('no', 'SecurityError'); } });"
+    )
     page.goto((dist / "index.html").as_uri())
     expect(page.locator(".save")).to_contain_text("not saved")
     page.locator("#f-line").fill("R -1.00 L -1.00")

@@ -20,11 +20,9 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 from scipy import integrate
-from tests.core.strategies import demonstration, patched
-from tests.references.edge_reference import ReferenceLens, spherical_thickness, wedge_rad
 
 from pycore.bench.body import body_values, usual_front_curve
-from pycore.bench.edge import COARSE, Edge, FramedLens, Framing, edge_of, framing_of
+from pycore.bench.edge import COARSE, Edge, Framing, edge_of, framing_of
 from pycore.bench.rim import rim_of
 from pycore.case import Case, case_of
 from pycore.contract import decode
@@ -37,6 +35,8 @@ from pycore.optics.thickness import CORRIDOR_MM, Solid, addition_depth, thicknes
 from pycore.optics.wedge import thin_wedge_tangent, wedge_tangent
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.edge import edge_section
+from tests.core.strategies import patched
+from tests.references.edge_reference import ReferenceLens, spherical_thickness, wedge_rad
 
 Job = dict[str, Any]
 EXAMPLES = Path(__file__).parents[1] / "references" / "worked_examples.csv"
@@ -148,9 +148,18 @@ def test_the_addition_is_the_second_integral_of_power() -> None:
         def curvature(depth: float) -> float:
             return 2.5 * min(max(depth / CORRIDOR_MM, 0.0), 1.0) / 1000.0 / 0.6
 
-        expected, _ = integrate.quad(lambda d, below=below: (below - d) * curvature(d), 0.0, max(below, 0.0), limit=200, points=[min(max(below, 1e-9), CORRIDOR_MM)])
+        expected, _ = integrate.quad(
+            lambda d, below=below: (below - d) * curvature(d),
+            0.0,
+            max(below, 0.0),
+            limit=200,
+            points=[min(max(below, 1e-9), CORRIDOR_MM)],
+        )
         assert addition_depth(2.5, 1.6, below) == pytest.approx(expected, abs=1e-9)
-    with_add, without = (thicknesses(Solid(index=1.6, front_d=5.0, power=Power(Decimal(1)), add=add), 3.0, [(2.0, -20.0), (2.0, 20.0)]) for add in (2.5, 0.0))
+    with_add, without = (
+        thicknesses(Solid(index=1.6, front_d=5.0, power=Power(Decimal(1)), add=add), 3.0, [(2.0, -20.0), (2.0, 20.0)])
+        for add in (2.5, 0.0)
+    )
     assert without[0] - with_add[0] == pytest.approx(addition_depth(2.5, 1.6, 20.0), abs=1e-12)
     assert with_add[1] == without[1]
 
@@ -206,10 +215,14 @@ def superellipse(half_a: float, half_b: float, exponent: float, angle: float) ->
     return float((abs(math.cos(angle) / half_a) ** exponent + abs(math.sin(angle) / half_b) ** exponent) ** (-1 / exponent))
 
 
-@pytest.mark.parametrize("sphere", ["-4.00", "3.50", "0.00"])
+@pytest.mark.parametrize("sphere", ["-4.00", "+3.50", "0.00"])
 def test_weight_against_scipy_for_spherical_lenses(sphere: str) -> None:
     """Twofold adaptive integration over the very outline, in closed form; WE rows give no volumes."""
-    job = plain_job({"sphere": sphere, "prism": [{"amount": "3", "base": "in"}, {"amount": "1", "base": "up"}]}, frame__shape="oval", frame__ed_mm=None)
+    job = plain_job(
+        {"sphere": sphere, "prism": [{"amount": "3", "base": "in"}, {"amount": "1", "base": "up"}]},
+        frame__shape="oval",
+        frame__ed_mm=None,
+    )
     found = framing(job)
     prism = Prism(Decimal(3), Decimal(1))
     edge = edge_of(found.lens, prism)
@@ -231,14 +244,16 @@ def test_weight_of_a_toric_lens_in_a_squarish_rim() -> None:
     found = framing(plain_job({"sphere": "-2.00", "cylinder": "-3.00", "axis": "30"}))
     edge = edge_of(found.lens, prism)
     lens, (right, up) = reference_of(found, edge, prism), found.lens.rim.centre
-    exponent = min(np.linspace(2.01, 12, 40000), key=lambda k: abs((26 ** (2 * k / (k - 2)) + 18 ** (2 * k / (k - 2))) ** ((k - 2) / 2 / k) - 27.5))
+    exponents = np.linspace(3.0, 6.0, 400)
+    longest = [max(superellipse(26.0, 18.0, k, angle) for angle in np.linspace(0.1, 1.2, 300)) for k in exponents]
+    exponent = float(np.interp(27.5, longest, exponents))
     around, weights_around = np.polynomial.legendre.leggauss(12)
     along, weights_along = np.polynomial.legendre.leggauss(6)
     volume = 0.0
     for quarter in range(4):
         for node, weight in zip(around, weights_around, strict=True):
             angle = (quarter + (node + 1) / 2) * math.pi / 2
-            reach = superellipse(26.0, 18.0, float(exponent), angle)
+            reach = superellipse(26.0, 18.0, exponent, angle)
             for step, share in zip(along, weights_along, strict=True):
                 r = reach * (step + 1) / 2
                 mm = lens.thickness(right + r * math.cos(angle), up + r * math.sin(angle))
@@ -272,8 +287,23 @@ def test_drilled_places_may_govern() -> None:
     assert edge_of(framing(thick_edges).lens, NO_PRISM).governs == "hole"
 
 
+def test_weighing_may_be_left_out() -> None:
+    edge = edge_of(framing(plain_job({"sphere": "-2.00"})).lens, NO_PRISM, weigh=False)
+    assert (edge.volume_mm3, edge.weight_g) == (0.0, None)
+
+
+def test_no_blank_is_thick_enough() -> None:
+    job = plain_job({"sphere": "+2.00"}, lens__minimum_edge_mm="20", frame__a_mm="90", frame__b_mm="80", frame__ed_mm="100")
+    with pytest.raises(OutsideSurfaceError):
+        edge_of(framing(job).lens, Prism(Decimal(60), Decimal(0)))
+
+
 powers = st.builds(
-    lambda sphere, cylinder, axis: {"sphere": f"{sphere / 4:+.2f}" if sphere else "0.00", "cylinder": f"{cylinder / 4:+.2f}" if cylinder else "0.00", "axis": str(axis)},
+    lambda sphere, cylinder, axis: {
+        "sphere": f"{sphere / 4:+.2f}" if sphere else "0.00",
+        "cylinder": f"{cylinder / 4:+.2f}" if cylinder else "0.00",
+        "axis": str(axis),
+    },
     st.integers(-32, 20),
     st.integers(-12, 12),
     st.integers(1, 180),
@@ -349,7 +379,9 @@ def test_usual_values_are_named_and_given_ones_are_not() -> None:
     assert values.usual["lens.minimum_centre_mm"] == "2.0"
     assert not values.thickness_given
     assert values.density_g_cm3 == Decimal("1.32")
-    assert body_values(case_on({"format": "wedgewright.job/1", "state": "uncut", "right": {"partner": True}, "left": {"sphere": "-1.00"}}).job.right, Frame()) is None  # type: ignore[arg-type]
+    powerless = case_on({"format": "wedgewright.job/1", "state": "uncut", "right": {"partner": True}, "left": {"sphere": "-1.00"}})
+    assert powerless.job.right
+    assert body_values(powerless.job.right, Frame()) is None
 
 
 def test_vogels_rule() -> None:
@@ -372,7 +404,7 @@ def test_the_report_says_what_the_contract_asks_for() -> None:
     thickness = dict(map(tuple, right["profile"]))
     assert right["thickest"]["thickness_mm"] == max(thickness.values())
     assert right["thinnest"]["thickness_mm"] == min(thickness.values())
-    assert right["thickest"]["place"] == "temporal"  # base out
+    assert right["thickest"]["place"].endswith("temporal")  # base out
     assert (right["nasal_mm"], right["temporal_mm"]) == (thickness[0.0], thickness[180.0])
     assert (found.own["left"]["nasal_mm"]) == dict(map(tuple, found.own["left"]["profile"]))[180.0]
     assert (right["top_mm"], right["bottom_mm"]) == (thickness[90.0], thickness[270.0])
@@ -408,7 +440,9 @@ def test_options_are_the_same_lenses_after_one_change() -> None:
 
 
 def test_thinning_as_an_option() -> None:
-    job = plain_job({"sphere": "+3.00", "add": "2.00"}, {"sphere": "+3.00", "add": "2.00"}, lens__design="progressive", thinning__rule="none")
+    job = plain_job(
+        {"sphere": "+3.00", "add": "2.00"}, {"sphere": "+3.00", "add": "2.00"}, lens__design="progressive", thinning__rule="none"
+    )
     found = answer(job)
     assert isinstance(found.own, dict)
     option = next(option for option in found.own["options"] if option["kind"] == "thinning")
@@ -425,7 +459,15 @@ def test_thinning_as_an_option() -> None:
 
 
 def test_what_is_missing_is_asked_for() -> None:
-    job = plain_job({"sphere": "-2.00"}, lens=None, frame__dbl_mm=None, right__pd_mm=None, right__prp_height_mm=None, frame__shape=None, frame__ed_mm=None)
+    job = plain_job(
+        {"sphere": "-2.00"},
+        lens=None,
+        frame__dbl_mm=None,
+        right__pd_mm=None,
+        right__prp_height_mm=None,
+        frame__shape=None,
+        frame__ed_mm=None,
+    )
     found = answer(job)
     asks = {ask.field: (ask.usual, ask.used) for ask in found.asks}
     assert asks == {
@@ -468,9 +510,9 @@ def test_an_order_without_a_power_has_no_edge() -> None:
 
 
 def test_a_given_thickness_is_kept_and_judged() -> None:
-    thin = answer(plain_job({"sphere": "+4.00", "centre_thickness_mm": "3.0"}))
+    thin = answer(plain_job({"sphere": "+4.00", "centre_thickness_mm": "3.6"}))
     assert isinstance(thin.own, dict)
-    assert (thin.own["right"]["centre_mm"], thin.own["right"]["governs"]) == (3.0, "given")
+    assert (thin.own["right"]["centre_mm"], thin.own["right"]["governs"]) == (3.6, "given")
     assert "below-minimum" in codes(thin)
     crossed = answer(plain_job({"sphere": "+4.00", "centre_thickness_mm": "1.0"}))
     assert "crossed" in codes(crossed)
@@ -485,19 +527,33 @@ def test_lenses_that_cannot_be_made_say_so() -> None:
     assert "right" not in steep.own
     alone = answer(plain_job({"sphere": "-30.00", "front_curve": "1.00"}))
     assert (alone.title, alone.own) == ("beyond-surface", None)
-    # Steep enough that no thickness of a blank brings the rim to its minimum.
-    assert answer(plain_job({"sphere": "+10.00", "front_curve": "-3.00"}, lens__minimum_edge_mm="20", frame__a_mm="70", frame__b_mm="60", frame__ed_mm="75")).title == "beyond-surface"
+
+
+def test_drilled_places_are_said_to_be_usual() -> None:
+    assert "holes-usual" in codes(answer(plain_job({"sphere": "-2.00"}, frame__drilled=True)))
+
+
+def test_an_option_that_no_surface_reaches_is_left_out() -> None:
+    """As ordered both backs just reach the rim; in halves, turned by its prism, the right one does not."""
+    job = plain_job({"sphere": "-17.00", "front_curve": "1.00"}, {"sphere": "-2.00", "prism": [{"amount": "20", "base": "out"}]})
+    found = answer(job)
+    assert isinstance(found.own, dict)
+    assert "right" in found.own
+    assert [option["kind"] for option in found.own["options"]] == ["index"]
 
 
 def test_traced_rims_are_taken_as_they_are() -> None:
     """A circle traced with 360, 72 and 25 radii is the same lens; the holes stand inside it."""
     volumes = []
     for count in (360, 72, 25):
-        job = plain_job({"sphere": "-3.00"}, frame={"outline_mm": ["24"] * count, "dbl_mm": "18"}, right__prp_height_mm="24", right__pd_mm="33")
+        job = plain_job(
+            {"sphere": "-3.00"}, frame={"outline_mm": ["24"] * count, "dbl_mm": "18"}, right__prp_height_mm="24", right__pd_mm="33"
+        )
         found = framing(job)
         assert len(found.lens.rim.points) == min(count, 72)
         edge = edge_of(found.lens, NO_PRISM)
-        assert edge.thickest[1] == pytest.approx(edge.thinnest[1], abs=1e-3)
+        if count % 4 == 0:  # else the box that 25 points span is not the circle's
+            assert edge.thickest[1] == pytest.approx(edge.thinnest[1], abs=1e-3)
         volumes.append(edge.volume_mm3)
     assert volumes == pytest.approx([volumes[0]] * 3, rel=5e-3)
 
@@ -512,7 +568,10 @@ def test_the_picture_is_to_scale() -> None:
     inner = next(shape["points"] for shape in shapes if shape["role"] == "outline")
     for (x, y), (x2, y2), (_, mm) in zip(inner, outer, profile, strict=True):
         assert math.hypot(x2 - x, y2 - y) == pytest.approx(mm, abs=0.003)
-    front, back = (next(shape["points"] for shape in shapes if shape["role"] == role and shape["kind"] == "polyline") for role in ("profile-front", "profile-back"))
+    front, back = (
+        next(shape["points"] for shape in shapes if shape["role"] == role and shape["kind"] == "polyline")
+        for role in ("profile-front", "profile-back")
+    )
     assert back[-1][1] - front[-1][1] == pytest.approx(dict(map(tuple, profile))[0.0], abs=0.002)
     assert back[0][1] - front[0][1] == pytest.approx(dict(map(tuple, profile))[180.0], abs=0.002)
     left, bottom, right, top = scene["extent"]

@@ -11,12 +11,15 @@ import copy
 import json
 import re
 from collections.abc import Iterator
-from decimal import Decimal as D
+from decimal import Decimal
 from importlib.resources import files
 from typing import Any
 
 import pytest
+
 from tests.references.limit_cases import EDITIONS, Case, cases_of, report_on
+
+D = Decimal
 
 CHECKS_OF_ROW = {"prism.vertical.each": "prism.lens", "prism.horizontal.each": "prism.lens"}
 

@@ -7,7 +7,6 @@ from typing import Any
 
 import numpy as np
 import pytest
-from tests.references import tilt_reference as room
 
 from pycore.bench.wear import Act, Worn
 from pycore.case import case_of
@@ -18,6 +17,7 @@ from pycore.optics.tilt import BeyondError, moved, oblique_factor, power_as_worn
 from pycore.optics.tilt_trace import Glass, prism_as_worn, prism_to_order
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.wear import wear_section
+from tests.references import tilt_reference as room
 
 Job = dict[str, Any]
 EYES: tuple[Eye, Eye] = ("right", "left")
@@ -175,7 +175,9 @@ def test_lenses_decentred_for_their_prism(capsys: pytest.CaptureFixture[str]) ->
     many.sphere, many.front_d = np.clip(many.sphere, -12, 8), np.clip(many.front_d, 1, 10)
     for share, limit in ((0.0, 1e-8), (0.3, 0.1)):
         powers = room.power_matrix(many.sphere, share * many.cylinder, many.axis)
-        upright, thickness = room.decentred(powers, moved_mm, many.front_d, many.thickness, many.index, np.tile(np.eye(3), (COUNT, 1, 1)))
+        upright, thickness = room.decentred(
+            powers, moved_mm, many.front_d, many.thickness, many.index, np.tile(np.eye(3), (COUNT, 1, 1))
+        )
         prism = upright.prism_ahead()  # what the lens meter's light gets, front upright
         tilted, _ = room.decentred(powers, moved_mm, many.front_d, many.thickness, many.index, many.axes)
         expected = tilted.prism_ahead()
@@ -246,6 +248,19 @@ def test_compensation_and_effect_undo_each_other() -> None:
         assert same(worn.lens_for(worn.effect_of(act)), act)
 
 
+def test_thinning_is_in_the_lens_that_is_traced() -> None:
+    """What the eye gets from prism and thinning together, less the thinning: by the outside trace."""
+    thinning = {"rule": "amount", "amount": "1.5", "base": "down"}
+    wear = {"pantoscopic_deg": "8", "wrap_deg": "12"}
+    entry = own(section(job_of(copy.deepcopy(RIGHT), **{**FULL, "wear": wear}, thinning=thinning)))["right"]["effective"]
+    one = [np.array([part]) for part in (-3.25, -0.75, 165.0, 5.0, 2.0, 1.586, 8.0, 12.0)]
+    sphere, cylinder, axis, front_d, thickness, index, panto, wrap = one
+    axes = room.front_in_room(np.array([False]), panto, wrap)
+    traced = room.worked(room.power_matrix(sphere, cylinder, axis), np.array([[3.0, 2.0 - 1.5]]), front_d, thickness, index, axes)
+    x, y = traced.prism_ahead()[0]
+    assert (entry["prism"]["x"], entry["prism"]["y"]) == pytest.approx((x, y + 1.5), abs=1e-8)
+
+
 def test_no_tilt_and_one_distance_change_nothing() -> None:
     for worn, act in random_worn(82, 200):
         upright = Worn(eye=worn.eye, tilt=tilt_of(worn.eye, 0, 0), glass=worn.glass, thinning=worn.thinning, farther_mm=0.0)
@@ -276,7 +291,9 @@ def test_small_tilts_agree_with_the_classical_formulas(capsys: pytest.CaptureFix
         worst = 0.0
         for index, front_d, power, x, y in ((1.5, 6.0, 0.0, 5.0, 0.0), (1.586, 4.0, -4.0, 3.0, 4.0), (1.67, 8.0, 3.0, -4.0, 3.0)):
             glass = Glass(index=index, front_d=front_d, thickness_mm=2.0)
-            worn = Worn(eye="left", tilt=tilt_of("left", angle * 0.6, angle * 0.8), glass=glass, thinning=(0.0, 0.0), farther_mm=0.0)
+            worn = Worn(
+                eye="left", tilt=tilt_of("left", angle * 0.6, angle * 0.8), glass=glass, thinning=(0.0, 0.0), farther_mm=0.0
+            )
             act = Act(power=lens(power, -1.0, 30), prism=prism_of(x, y))
             worst = max(worst, float((worn.effect_of(act).prism - worn.classical_prism(act)).amount))
         with capsys.disabled():
@@ -285,7 +302,7 @@ def test_small_tilts_agree_with_the_classical_formulas(capsys: pytest.CaptureFix
 
 
 def test_vertex_distance_is_the_vergence_rule() -> None:
-    """F / (1 + dF), any textbook: −10.00 at 12 mm is −9.8039 worn 2 mm nearer... and the far point stays in place."""
+    """F / (1 + dF), any textbook: and the far point stays where it was."""
     power, prism = moved(lens(-10).matrix(), (5.0, -2.0), -2.0)
     assert power[0] == pytest.approx(-10 / (1 + 0.02), abs=1e-12)
     for worn_d, away_mm in ((-10.0, -2.0), (8.0, 3.0)):
@@ -318,6 +335,9 @@ def test_where_nothing_comes_through() -> None:
         prism_as_worn(glass.back(lens(0)), (-150.0, 0.0), glass, tilt_of("right", 0, 60))
     with pytest.raises(BeyondError):
         prism_to_order(glass.back(lens(0)), (-5000.0, 0.0), glass, tilt_of("right", 0, 60))
+    low = Glass(index=1.5, front_d=4.0, thickness_mm=2.0)
+    with pytest.raises(BeyondError):  # near the greatest turn there is, where no step gets nearer
+        prism_to_order(low.back(lens(0)), (70.0, 60.0), low, tilt_of("left", 5, 0))
     with pytest.raises(BeyondError):
         moved((40.0, 0.0, 40.0), (0.0, 0.0), -25.0)
 
@@ -328,7 +348,12 @@ FULL: Job = {
     "lens": {"index": "1.586", "front_curve": "5", "curve_index": "1.586", "centre_thickness_mm": "2"},
     "wear": {"pantoscopic_deg": "8", "wrap_deg": "12", "vertex_tested_mm": "12", "vertex_worn_mm": "14"},
 }
-RIGHT: Job = {"sphere": "-3.25", "cylinder": "-0.75", "axis": "165", "prism": [{"amount": "3", "base": "in"}, {"amount": "2", "base": "up"}]}
+RIGHT: Job = {
+    "sphere": "-3.25",
+    "cylinder": "-0.75",
+    "axis": "165",
+    "prism": [{"amount": "3", "base": "in"}, {"amount": "2", "base": "up"}],
+}
 LEFT: Job = {"sphere": "+2.00", "cylinder": "+1.25", "axis": "20", "prism": [{"amount": "4", "base": "217"}]}
 
 
@@ -352,7 +377,8 @@ def test_we80_through_the_job() -> None:
     assert entry["effective"]["power"]["shown"]["text"] == "\u22123.07 \u22120.22 ×90"
     assert entry["compensated"]["minus_form"]["shown"]["text"] == "\u22122.74 \u22120.20 ×180"
     assert entry["effective"]["prism"]["horizontal"]["base"] == "out"
-    assert entry["compensated"]["x"] == -entry["compensated"]["prism"]["x"] + 2 * entry["compensated"]["x"] > 0
+    assert entry["compensated"]["prism"]["horizontal"]["base"] == "in"
+    assert entry["compensated"]["x"] == entry["compensated"]["prism"]["x"]  # the fields stand beside as well
     asks = {ask.field: (ask.usual, ask.used) for ask in answer.asks}
     assert asks["wear.pantoscopic_deg"] == ("0", True)
     assert set(asks) == {"wear.pantoscopic_deg", "lens.front_curve", "lens.centre_thickness_mm"}
@@ -392,7 +418,10 @@ def test_compensated_values_as_the_makers_give_the_prescription() -> None:
         assert {"stated-used"} <= codes(answer)
         assert "not-twice" not in codes(answer)
         assert rows(answer)["stated-off"].right == "0.00 D, 0.00 Δ"
-        for eye, given in (("right", (3.0, 2.0)), ("left", tuple(4 * np.array([math.cos(math.radians(217)), math.sin(math.radians(217))])))):
+        for eye, given in (
+            ("right", (3.0, 2.0)),
+            ("left", tuple(4 * np.array([math.cos(math.radians(217)), math.sin(math.radians(217))]))),
+        ):
             entry = own(answer)[eye]
             assert entry["stated_used"]
             found = entry["effective"]["prism"]
@@ -472,7 +501,9 @@ def test_usual_bodies_that_differ_are_asked_of_each_eye() -> None:
     answer = section(job_of({"sphere": "-3.00"}, {"sphere": "+3.00"}, wear={"wrap_deg": "10", "pantoscopic_deg": "5"}))
     fields = {ask.field for ask in answer.asks}
     assert {"lens.index", "right.front_curve", "left.front_curve"} <= fields
-    one = section(job_of({"sphere": "-3.00", "front_curve": "4"}, {"sphere": "-3.00"}, wear={"wrap_deg": "10", "pantoscopic_deg": "5"}))
+    one = section(
+        job_of({"sphere": "-3.00", "front_curve": "4"}, {"sphere": "-3.00"}, wear={"wrap_deg": "10", "pantoscopic_deg": "5"})
+    )
     assert "left.front_curve" in {ask.field for ask in one.asks}
 
 

@@ -517,14 +517,15 @@ def test_power_is_stated_in_both_forms_and_along_90_and_180() -> None:
     ("state", "design", "changes", "task", "code"),
     [
         ("uncut", "single-vision", {}, "spotting", "spot-single-vision"),
-        ("uncut", "near", {}, "spotting", "spot-single-vision"),
+        ("uncut", "near", {"near_pd_mm": "29.5"}, "spotting", "spot-single-vision"),
+        ("uncut", "near", {}, "spotting", "spot-single-vision-unplaced"),
         ("edged", "single-vision", {}, "checking", "check-single-vision"),
+        ("edged", "single-vision", {"pd_mm": None}, "checking", "check-single-vision-unplaced"),
         ("mounted", "single-vision", {"prp_height_mm": None}, "checking", "check-single-vision-no-height"),
-        ("mounted", "near", {}, "checking", "check-single-vision"),
-        ("mounted", "progressive", {}, "checking", "check-progressive"),
-        ("uncut", "progressive", {}, "checking", "check-progressive"),
+        ("mounted", "progressive", {"cross_above_prp_mm": "4"}, "checking", "check-progressive"),
+        ("uncut", "progressive", {}, "checking", "check-progressive-unplaced"),
         ("mounted", "bifocal", {}, "checking", "check-segmented"),
-        ("uncut", "trifocal", {"prp_height_mm": None}, "checking", "check-segmented-no-height"),
+        ("uncut", "trifocal", {"prp_height_mm": None}, "checking", "check-segmented-unplaced"),
     ],
 )
 def test_where_the_point_is(state: str, design: str, changes: Job, task: str, code: str) -> None:
@@ -534,6 +535,7 @@ def test_where_the_point_is(state: str, design: str, changes: Job, task: str, co
     assert (point["task"], point["code"]) == (task, code)
     sentence = WORDS["points"][point["code"]]
     assert ("move the lens until" in sentence) == (task == "spotting")
+    assert ("Do not move the lens" in sentence or "leave the frame table" in sentence) == (task == "checking")
 
 
 def test_the_compensator_and_the_rings() -> None:
@@ -1052,7 +1054,10 @@ def test_there_are_no_words_that_nothing_says() -> None:
     """Each code with words stands somewhere in the sources of the core or the page."""
     page = Path(__file__).parents[2] / "web" / "app"
     sources = "\n".join(path.read_text("utf-8") for folder in (PACKAGE, page) for path in folder.rglob("*.*") if path.suffix in (".py", ".js") and "generated" not in path.parts)
-    idle = {group: [code for code in WORDS[group] if f'"{code}"' not in sources] for group in ("errors", "fixes", "notes", "points")}
+    idle = {
+        group: [code for code in WORDS[group] if f'"{code.removesuffix("-unplaced")}"' not in sources]
+        for group in ("errors", "fixes", "notes", "points")
+    }
     assert idle == {group: [] for group in idle}
 
 

@@ -9,19 +9,21 @@ from __future__ import annotations
 import json
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
-from decimal import Decimal as D
+from decimal import Decimal
 from functools import cache
 from typing import Any
 
+from pycore.api import handle
 from tests.references import limits_reference as ref
 
-from pycore.api import handle
+D = Decimal
 
 Job = dict[str, Any]
 ABSENT = "absent"
 EYES = ("right", "left")
 EDITIONS = (*ref.ANSI, "iso-21987", "iso-8980-1", "iso-8980-2", "nj-13-35-5.2")
 DESIGNS = {
+    "iso-21987": ("single-vision", "progressive"),
     "iso-8980-1": ("single-vision", "bifocal"),
     "iso-8980-2": ("progressive",),
 }
@@ -314,7 +316,10 @@ def pair_distance_cases(edition: str, design: str) -> Iterator[Case]:
                     job["readings"]["left"]["pd_mm"] = "32"
                 else:
                     job["readings"]["prp_distance_mm"] = f"{64 + moved}"
-                due = [Due("prp.distance", "pair", outcome if power > switch else ABSENT), Due("prism.horizontal", "pair", "outside")]
+                due = [
+                    Due("prp.distance", "pair", outcome if power > switch else ABSENT),
+                    Due("prism.horizontal", "pair", "outside"),
+                ]
                 yield case(f"distance off {moved}, power {power}, switch {switch}", job, due, power=power)
 
 
@@ -332,7 +337,9 @@ def each_lens_cases(edition: str, design: str) -> Iterator[Case]:
         for eye in EYES:
             job[eye]["prism"] = prism(D(1), D("0.50"))
             job["readings"][eye]["prism"] = prism(D(1) + off["horizontal"], D("0.50") + off["vertical"])
-        yield case(f"each lens off {deviation}", job, [Due("prism.lens", eye, outcome, way) for eye in EYES for way in ways], power=D(0))
+        yield case(
+            f"each lens off {deviation}", job, [Due("prism.lens", eye, outcome, way) for eye in EYES for way in ways], power=D(0)
+        )
 
 
 # --- prism of the single lens ---------------------------------------------------------------------------------------------------
@@ -344,7 +351,9 @@ def lens_vector_cases(edition: str, design: str) -> Iterator[Case]:
         return
     limit = ref.ANSI_LENS_PRISM
     oblique = [((limit * 3 / 5, limit * 4 / 5), "within"), ((limit * 3 / 5, limit * 4 / 5 + D("0.001")), "outside")]
-    straight = [((value, D(0)), outcome) for value, outcome in around(limit)] + [((D(0), value), outcome) for value, outcome in around(limit)]
+    straight = [((value, D(0)), outcome) for value, outcome in around(limit)] + [
+        ((D(0), value), outcome) for value, outcome in around(limit)
+    ]
     for state in ("uncut", "edged"):
         for (across, upward), outcome in [*straight, *oblique]:
             for options in ({}, {"lens-prism": "components"}):
@@ -353,7 +362,9 @@ def lens_vector_cases(edition: str, design: str) -> Iterator[Case]:
                     job[eye]["prism"] = prism(D(2), D(1))
                     job["readings"][eye]["prism"] = prism(D(2) + across, D(1) + upward)
                 due_here = outcome if not options or D(0) in (across, upward) else "within"
-                yield case(f"lens off {across} {upward} {options}", job, [Due("prism.lens", eye, due_here) for eye in EYES], power=D(0))
+                yield case(
+                    f"lens off {across} {upward} {options}", job, [Due("prism.lens", eye, due_here) for eye in EYES], power=D(0)
+                )
 
 
 def lens_mm_cases(edition: str, design: str) -> Iterator[Case]:
@@ -385,10 +396,17 @@ def lens_component_cases(edition: str, design: str) -> Iterator[Case]:
             for (across, first), (upward, second) in both:
                 job = base_job(edition, "uncut", design)
                 for eye in EYES:  # the strongest principal power lies along neither 90 nor 180
-                    job[eye] |= {"sphere": signed(strongest), "cylinder": signed(-strongest / 4), "axis": "35", "prism": prism(size, size)}
+                    job[eye] |= {
+                        "sphere": signed(strongest),
+                        "cylinder": signed(-strongest / 4),
+                        "axis": "35",
+                        "prism": prism(size, size),
+                    }
                     job["readings"][eye]["prism"] = prism(size + across, size + upward)
                 due = [
-                    Due("prism.lens", eye, outcome, way) for eye in EYES for way, outcome in (("horizontal", first), ("vertical", second))
+                    Due("prism.lens", eye, outcome, way)
+                    for eye in EYES
+                    for way, outcome in (("horizontal", first), ("vertical", second))
                 ]
                 yield case(f"lens {size}, power {strongest}, off {across} {upward}", job, due, power=strongest, prism=size)
 

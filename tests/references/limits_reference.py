@@ -9,7 +9,9 @@ common practice.
 
 from __future__ import annotations
 
-from decimal import Decimal as D
+from decimal import Decimal
+
+D = Decimal
 
 ANSI = ("ansi-z80.1-2010", "ansi-z80.1-2015", "ansi-z80.1-2020")
 ANSI_SWITCH_VERTICAL = D("3.375")  # S1 S2 S3 (printed 3.37 in places)

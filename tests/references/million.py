@@ -13,15 +13,16 @@ from collections import defaultdict
 from concurrent.futures import ProcessPoolExecutor
 
 import numpy as np
-from tests.references import bench_reference as bench
-from tests.references.orders import COMPENSATOR_MAXIMUM, RINGS, SENSES, STRATA, Job, Orders, draw, jobs, reckon
 
 from pycore.api import handle
+from tests.references import bench_reference as bench
+from tests.references.orders import COMPENSATOR_MAXIMUM, RINGS, SENSES, STRATA, Job, Orders, draw, jobs, reckon
 
 ALLOWED = 1e-9
 ALLOWED_BASE_DEG = 1e-7
 NOTHING = 5e-10  # what leaves the optics is snapped to 1e-9
-WEAKEST_D = 0.25  # below it the program names no optical centre: ill-conditioned, must be ground (facts: singular at 0; limit: common practice)
+# Below it the program names no optical centre: too weak to decentre, must be ground (singular at 0; 0.25: common practice).
+WEAKEST_D = 0.25
 EYES = ("right", "left")
 Errors = dict[str, float]
 
@@ -43,7 +44,9 @@ def compare_names(eye: str, entry: Job, true: complex) -> Errors:
     if min(abs(abs(part) - NOTHING) for part in (true.real, true.imag)) < 1e-12:
         right = {}  # half a step from 0: either word is right
     errors = {name: 0.0 if holds else math.inf for name, holds in right.items()}
-    errors["components"] = abs(complex(entry["horizontal"]["amount"] - abs(true.real), entry["vertical"]["amount"] - abs(true.imag)))
+    errors["components"] = abs(
+        complex(entry["horizontal"]["amount"] - abs(true.real), entry["vertical"]["amount"] - abs(true.imag))
+    )
     errors["amount"] = abs(entry["amount"] - amount)
     if amount >= 0.01:
         base, notation = bench.base_of(true), entry["notation_180"]
@@ -100,7 +103,9 @@ def compare_centres(entries: list[Job | None], prescribed: bench.Complexes, powe
     must_be_there = (weakest > WEAKEST_D + 1e-9) & (np.abs(prescribed) > 2 * NOTHING) & ~must_be_absent
     errors["optical centre missing"] = 0.0 if not np.any(absent[must_be_there]) else math.inf
     there = must_be_there & ~absent
-    given = np.array([complex(entry["right_mm"], entry["up_mm"]) for entry, take in zip(entries, there, strict=True) if entry and take])
+    given = np.array(
+        [complex(entry["right_mm"], entry["up_mm"]) for entry, take in zip(entries, there, strict=True) if entry and take]
+    )
     if len(given):
         true = bench.optical_centre_mm(prescribed[there], power[there])
         errors["optical centre, mm"] = float((np.abs(given - true) / np.maximum(1, np.abs(true))).max())
@@ -157,7 +162,9 @@ def main(count: int) -> int:
         print(f"{stratum}: " + ", ".join(f"{name} {error:.1e}" for name, error in errors.items()))
     largest = max(error for errors in worst.values() for error in errors.values())
     vectors = max(error for errors in worst.values() for name, error in errors.items() if name.endswith("vector"))
-    print(f"{len(pieces) * piece} orders: largest vector error {vectors:.1e} Δ, largest of all {largest:.1e} (allowed {ALLOWED:.0e})")
+    print(
+        f"{len(pieces) * piece} orders: largest vector error {vectors:.1e} Δ, largest of all {largest:.1e} (allowed {ALLOWED:.0e})"
+    )
     return int(largest > ALLOWED)
 
 

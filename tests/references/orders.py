@@ -12,6 +12,7 @@ from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
+
 from tests.references import bench_reference as bench
 
 Ints = NDArray[np.int64]
@@ -85,7 +86,9 @@ def draw(rng: np.random.Generator, stratum: str, count: int) -> Orders:
     thinned = stratum == "thinned"
     rules = rng.choice(["two-thirds", "six-tenths"] if thinned else ["none"], count // 2)
     small = tuple((rng.integers(0, 501, count), rng.integers(0, 3600, count) * (DEGREE // 10)) for _ in range(2))
-    return Orders(stratum, amount, base, sphere, cylinder, axis, rng.integers(6, 33, count), tuple(map(str, rules)), small[0], small[1])
+    return Orders(
+        stratum, amount, base, sphere, cylinder, axis, rng.integers(6, 33, count), tuple(map(str, rules)), small[0], small[1]
+    )
 
 
 # --- as text ------------------------------------------------------------------------------------------------------------

@@ -128,19 +128,18 @@ class Lenses:
         """Power matrix about that ray: how directions behind the lens grow with place there."""
         count = len(self.index)
         ray = np.tile([0.0, 0.0, -1.0], (count, 1))
-        middle, chief = self.through(np.zeros((count, 3)), ray)
+        middle, _ = self.through(np.zeros((count, 3)), ray)
         places, turns = [], []
         for offset in ([step_mm, 0.0, 0.0], [0.0, step_mm, 0.0]):
             pair = [self.through(np.tile(sign * np.array(offset), (count, 1)), ray) for sign in (1.0, -1.0)]
             found = []
             for at, left in pair:
                 # On the plane through the chief ray's exit, square to the line of sight.
-                along = dot(middle - at, np.tile([0.0, 0.0, 1.0], (count, 1))) / left[:, 2]
+                along = (middle - at)[:, 2] / left[:, 2]
                 found.append(((at + along[:, None] * left)[:, :2], left[:, :2] / -left[:, 2:]))
             places.append((found[0][0] - found[1][0]) / (2 * step_mm))
             turns.append((found[0][1] - found[1][1]) / (2 * step_mm))
         place, turn = np.stack(places, -1), np.stack(turns, -1)
-        del chief
         return -1000.0 * turn @ np.linalg.inv(place)
 
 
@@ -154,9 +153,7 @@ def back_radii(power: Array, front_d: Array, thickness_mm: Array, index: Array) 
     return 1 / curvatures[rows, steep], 1 / curvatures[rows, 1 - steep], vectors[rows, :, steep]
 
 
-def worked(
-    power: Array, prism: Array, front_d: Array, thickness_mm: Array, index: Array, axes: Array
-) -> Lenses:
+def worked(power: Array, prism: Array, front_d: Array, thickness_mm: Array, index: Array, axes: Array) -> Lenses:
     """Lenses with their prism worked in: the back turned about the point straight behind the pole."""
     amount = np.hypot(*prism.T)
     wedge = wedge_of(amount, index)

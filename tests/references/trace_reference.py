@@ -80,9 +80,7 @@ class Torus:
         """The gradient of G, pointing to the observer."""
         from_axis, within = self._parts(at)
         share = within / self.tube
-        return np.stack(
-            [at[..., 0] / self.tube, share * at[..., 1] / from_axis, share * (at[..., 2] + self.ring) / from_axis], -1
-        )
+        return np.stack([at[..., 0] / self.tube, share * at[..., 1] / from_axis, share * (at[..., 2] + self.ring) / from_axis], -1)
 
 
 def _bent(curvature: Array) -> Array:
