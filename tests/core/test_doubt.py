@@ -47,7 +47,8 @@ def test_chance_within_a_circle(share: float, limit: Decimal, uncertainty: float
     away = (float(distance) - float(limit)) / uncertainty
     # Far from the rim on either side the answer is plain, and scipy's series is at its end.
     wanted = float(away < 0) if abs(away) > 12 else rice_within(float(distance), float(limit), uncertainty)
-    assert chance_within_circle(distance, limit, uncertainty) == pytest.approx(wanted, abs=1e-9)
+    allowed = 1e-9 if float(limit) < 500 * uncertainty else 1e-8  # scipy's series wears out as well
+    assert chance_within_circle(distance, limit, uncertainty) == pytest.approx(wanted, abs=allowed)
 
 
 @pytest.mark.parametrize("uncertainty", [0.5, 0.1, 0.02, 0.005, 0.002, 0.001, 0.0003])

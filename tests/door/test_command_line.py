@@ -42,7 +42,7 @@ def run(*arguments: object, **environment: str) -> subprocess.CompletedProcess[b
 def test_a_report_is_the_door_s_answer(job_file: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["report", str(job_file)]) == 0
     out, err = capsys.readouterr()
-    assert json.loads(out) == report_on(demonstration())
+    assert json.loads(out) == answer_to(demonstration())
     assert err == ""
 
 
@@ -115,7 +115,7 @@ def test_as_a_program_of_its_own(tmp_path: Path, job_file: Path) -> None:
     for encoding in ("utf-8", "cp1252", "ascii"):
         done = run("report", job_file, PYTHONIOENCODING=encoding)
         assert (done.returncode, done.stderr) == (0, b"")
-        assert json.loads(done.stdout.decode("utf-8")) == report_on(demonstration())
+        assert json.loads(done.stdout.decode("utf-8")) == answer_to(demonstration())
     refused = run("report", written(tmp_path / "bad.json", {"format": "wedgewright.job/1", "id": "Ж" * 70}))
     assert refused.returncode == 2
     assert json.loads(refused.stdout.decode("utf-8"))["errors"][1]["given"] == "Ж" * 64

@@ -973,7 +973,7 @@ def test_a_sequence_that_is_none_is_refused(sequence: Any) -> None:
 
 
 def test_a_bare_job_is_a_report_request() -> None:
-    assert answer_to(PAIR) == report_on(PAIR)
+    assert answer_to(PAIR) == ask("report", job=PAIR)
 
 
 def test_a_refused_job_still_echoes_what_was_understood() -> None:

@@ -158,6 +158,27 @@ function hatching(id, unit) {
   );
 }
 
+const STILL = new Set(["ring", "ring-label", "tick", "base-label", "grid"]);
+/** @type {WeakMap<SVGElement, string>} what each layer was drawn from */
+const drawn = new WeakMap();
+
+/**
+ * Draws one layer, unless it shows this already: a keystroke moves the reading, not the rings.
+ *
+ * @param {SVGElement} layer
+ * @param {Shape[]} shapes
+ * @param {number} unit
+ * @param {string} hatch
+ */
+function drawLayer(layer, shapes, unit, hatch) {
+  const from = JSON.stringify([unit, say("directions.in"), shown("0.5"), shapes]);
+  if (drawn.get(layer) === from) return;
+  drawn.set(layer, from);
+  layer.setAttribute("font-size", String(5 * unit));
+  const marks = shapes.flatMap((shape) => marksOf(shape, unit, hatch));
+  layer.replaceChildren(...marks.map(({ tag, attributes, text }) => svg(tag, attributes, text ?? null)));
+}
+
 /**
  * Draws a scene into an svg element.
  *
@@ -168,13 +189,16 @@ function hatching(id, unit) {
 export function drawScene(host, scene, id) {
   const box = viewBox(scene);
   const unit = (box[2] ?? 1) / 100;
-  host.setAttribute("viewBox", box.join(" "));
   const hatch = `hatch-${id}`;
-  const nodes = scene.shapes
-    .flatMap((shape) => marksOf(shape, unit, hatch))
-    .map(({ tag, attributes, text }) => svg(tag, attributes, text ?? null));
-  const letters = svg("g", { "font-size": 5 * unit }, svg("defs", {}, hatching(hatch, unit)), ...nodes);
-  host.replaceChildren(letters);
+  const place = box.join(" ");
+  if (host.getAttribute("viewBox") !== place) {
+    host.setAttribute("viewBox", place);
+    host.replaceChildren(svg("defs", {}, hatching(hatch, unit)), svg("g", { class: "still" }), svg("g", { class: "content" }));
+  }
+  const [still, content] = /** @type {Iterable<SVGElement>} */ (host.querySelectorAll(":scope > g"));
+  const isStill = (/** @type {Shape} */ { role }) => STILL.has(role);
+  if (still) drawLayer(still, scene.shapes.filter(isStill), unit, hatch);
+  if (content) drawLayer(content, scene.shapes.filter((shape) => !isStill(shape)), unit, hatch);
 }
 
 /**

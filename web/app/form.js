@@ -37,7 +37,8 @@ export function createForm(state) {
     const text = fault ? faultText(fault) : echo && control.echoes ? shown(echo) : "";
     control.mark(Boolean(fault));
     const kind = fault ? (isAsk(fault) ? "ask" : "wrong") : "echo";
-    control.node.dataset["state"] = text ? kind : "";
+    const look = text ? kind : "";
+    if (control.node.dataset["state"] !== look) control.node.dataset["state"] = look;
     if (control.line.textContent !== text) control.line.textContent = text;
   }
 
