@@ -12,7 +12,7 @@ from operator import mul
 
 from pycore.bench.body import BodyValues, body_values, usual_minimum_centre_mm
 from pycore.bench.expected import Due
-from pycore.bench.rim import Place, Placed, Rim, placed, rim_of
+from pycore.bench.rim import MOST_RIM_POINTS, Place, Placed, Rim, placed, rim_of
 from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 from pycore.optics.material import usual_material
@@ -21,7 +21,7 @@ from pycore.optics.prism import NO_PRISM, Prism
 from pycore.optics.surface import OutsideSurfaceError, true_front_d
 from pycore.optics.thickness import Solid, thicknesses
 
-COARSE = 2  # every second point of the rim, where only comparisons are made
+COARSE = 24  # points of the rim, where only comparisons are made
 THICKEST_MM = 60.0  # no blank is thicker
 KEPT_MM = 1e-4  # how well a minimum is met
 OTHER_INDICES = tuple(map(Decimal, ("1.60", "1.67", "1.74")))
@@ -112,16 +112,20 @@ def framing_of(job: Job, order: EyeOrder, due_: Due) -> Framing | None:
     return Framing(lens=lens, values=values, placed=spot)
 
 
-def edge_of(lens: FramedLens, prism: Prism, every: int = 1, *, weigh: bool = True) -> Edge:
+def edge_of(
+    lens: FramedLens, prism: Prism, most: int = MOST_RIM_POINTS, *, weigh: bool = True
+) -> Edge:
     """A lens's thickness with a prism at its reference point.
 
-    Arguments: `lens`; `prism` prism dioptres; `every` which points of the rim are looked at;
-    `weigh` whether the volume is wanted too. Returns the Edge, in mm and g. Raises
-    OutsideSurfaceError where the lens's surfaces do not reach its rim. Source: exact sagitta and
-    wedge, facts 4.8; weight is density times the sum of thickness over the area.
+    Arguments: `lens`; `prism` prism dioptres; about how many points of the rim are looked at, at
+    `most`, besides those next to the extremes; `weigh` whether the volume is wanted too. Returns
+    the Edge, in mm and g. Raises OutsideSurfaceError where the lens's surfaces do not reach its
+    rim. Source: exact sagitta and wedge, facts 4.8; weight is density times the sum of thickness
+    over the area.
     """
     solid = lens.with_prism(prism)
     start_mm = lens.minimum_centre_mm if lens.centre_mm is None else lens.centre_mm
+    every = max(1, len(lens.rim.points) // most)
     indices = list(range(0, len(lens.rim.points), every))
     found = thicknesses(solid, start_mm, [lens.rim.points[index] for index in indices])
     beside = _beside(indices, found, len(lens.rim.points)) if every > 1 else []

@@ -13,7 +13,6 @@ from pycore.job.body import SEGMENTED
 from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 
-
 # The sentence without positions, for where one of them is not given.
 UNPLACED = {
     "spot-single-vision": "spot-single-vision-unplaced",

@@ -16,6 +16,7 @@ from pycore.scenes.dial import Scene, Shape
 
 ROOM_MM = 4.0
 SLICES = 16
+LABEL_AT = 0.7
 Line = list[list[float]]
 
 
@@ -82,12 +83,15 @@ def _marks(
     ):
         x, y = outer[edge.profile.index(found)]
         yield {"role": role, "kind": "point", "x": _tidy(x), "y": _tidy(y)}
-        yield {"role": role, "kind": "label", "x": _tidy(x), "y": _tidy(y), "text": text}
+        # The text stands inside the rim, where there is room.
+        x, y = _tidy(x * LABEL_AT), _tidy(y * LABEL_AT)
+        yield {"role": role, "kind": "label", "x": x, "y": y, "text": text}
 
 
 def _line(places: Sequence[tuple[float, float]]) -> Line:
-    return [[round(x, 3), round(y, 3)] for x, y in places]
+    return [[_tidy(x), _tidy(y)] for x, y in places]
 
 
 def _tidy(value: float) -> float:
-    return round(value, 3) + 0.0
+    """A length in mm to its micrometre (several times quicker than `round`)."""
+    return math.floor(value * 1000.0 + 0.5) / 1000.0

@@ -10,15 +10,21 @@ from pycore.case import Case
 from pycore.names import Entry, spoken
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.colour import colour_section
+from pycore.sections.edge import edge_section
 from pycore.sections.field import field_section
 from pycore.sections.layout import layout_section
 from pycore.sections.near import near_section
+from pycore.sections.split import split_section
 from pycore.sections.surfacing import surfacing_section
+from pycore.sections.thinning import thinning_section
 from pycore.sections.wear import wear_section
 
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "layout": layout_section,
     "field": field_section,
+    "edge": edge_section,
+    "thinning": thinning_section,
+    "split": split_section,
     "near": near_section,
     "wear": wear_section,
     "surfacing": surfacing_section,

@@ -46,7 +46,7 @@ def edge_section(case: Case) -> SectionAnswer:
     framings = framings_of(case)
     asks = asks_for(framings.values(), case.job)
     if not framings:
-        return SectionAnswer(title="frame-missing" if asks else "power-missing", asks=asks)
+        return SectionAnswer(title="frame-missing", asks=asks)
     edges: dict[Eye, Edge] = {}
     notes: Notes = []
     for eye, framing in framings.items():

@@ -1,5 +1,6 @@
 """What the sections on thickness share: lenses in their rims, what is asked, texts of places."""
 
+import math
 from collections.abc import Iterable, Mapping
 from decimal import Decimal
 
@@ -122,8 +123,13 @@ def place_text(eye: Eye, angle_deg: float) -> str:
 
 
 def rounded(value: float | None) -> float | None:
-    """A computed mm or g as the report's number: kept to 1e-6. Arguments: `value`."""
-    return None if value is None else float(round(value, 6) + 0.0)
+    """A computed mm or g as the report's number: kept to 1e-6. Arguments: `value`.
+
+    >>> rounded(1.23456789), rounded(-0.0)
+    (1.234568, 0.0)
+    """
+    # Several times quicker than `round`, which shows over whole profiles.
+    return None if value is None else math.floor(value * 1e6 + 0.5) / 1e6
 
 
 def edge_summary(edge: Edge) -> Entry:

@@ -48,7 +48,7 @@ def thinning_section(case: Case) -> SectionAnswer:
     framings = framings_of(case)
     asks = asks_for(framings.values(), case.job)
     if not framings:
-        return SectionAnswer(title="frame-missing" if asks else "power-missing", asks=asks)
+        return SectionAnswer(title="frame-missing", asks=asks)
     lenses = {eye: framing.lens for eye, framing in framings.items()}
     prescribed = {eye: _prescribed(case.job, eye) for eye in framings}
     try:

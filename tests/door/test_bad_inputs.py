@@ -26,7 +26,8 @@ GOOD: Job = {
     "decision_rule": "simple",
     "edition_options": {},
     "lens": {"design": "progressive", "index": "1.60"},
-    "frame": {"a_mm": "52", "b_mm": "34"},
+    "frame": {"a_mm": "52", "b_mm": "34", "outline_mm": ["26"] * 36},
+    "points": {"right": [{"right_mm": "0", "up_mm": "-10"}], "left": [{"right_mm": "0", "up_mm": "-10"}]},
     "wear": {"wrap_deg": "5"},
     "thinning": {"rule": "two-thirds"},
     "right": {
@@ -37,6 +38,7 @@ GOOD: Job = {
         "prism": [{"amount": "3", "base": "in"}, {"amount": "1.5", "base": "up"}],
         "stated": {"sphere": "-2.12", "cylinder": "+1.37", "axis": "21", "prism": [{"amount": "3", "base": "0"}]},
         "segment": {"shape": "flat top"},
+        "surfacing": {"ring_index": "1.53"},
     },
     "left": {
         "sphere": "-1.75",

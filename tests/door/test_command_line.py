@@ -1,5 +1,6 @@
 """The command line: the same answers as the door, with exit codes."""
 
+import io
 import json
 import os
 import runpy
@@ -83,6 +84,13 @@ def test_an_edition_of_the_shop(tmp_path: Path, job_file: Path, capsys: pytest.C
 def test_text_for_people(job_file: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["report", str(job_file), "--text"]) == 0
     assert capsys.readouterr().out == report_on(demonstration(), text=True)["text"]
+
+
+def test_where_standard_output_is_no_file(job_file: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    """A caller's own stream is left as it is."""
+    monkeypatch.setattr(sys, "stdout", io.StringIO())
+    assert main(["report", str(job_file), "--text"]) == 0
+    assert "DEMO-1042" in sys.stdout.getvalue()  # type: ignore[attr-defined]
 
 
 def test_files_that_are_not_there_or_not_text(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -864,6 +864,66 @@ def test_the_signature_is_carried_and_never_judged() -> None:
     assert first == second
 
 
+def test_one_lens_alone_and_a_job_without_an_edition_in_text_and_picture() -> None:
+    lone = report_on(patched(PAIR, left=None, edition=None, id=None, readings__right__prism=words("1 up")), scenes=True, text=True)
+    assert "Pair" not in lone["text"]
+    assert "Verdict" not in lone["text"]
+    shapes = {shape["role"]: shape for shape in lone["scenes"]["right"]["close"]["shapes"]}
+    assert set(lone["scenes"]) == {"right"}
+    assert "region" not in shapes
+    assert shapes["uncertainty"]["radius"] == 0.16  # twice the standard uncertainty
+    alone = patched(PAIR, left=None, decision_rule="guarded", instrument__uncertainty__prism="0.8")
+    assert not {"guarded-never-passes", "guarded-needs-repeats"} & codes(report_on(alone))  # no pair to be judged
+    unpowered = patched(PAIR, decision_rule="guarded", left={"prp_height_mm": "18"})
+    assert "power-missing" in codes(report_on(unpowered))
+
+
+def test_an_uncut_partner_has_no_region_of_its_own() -> None:
+    job = patched(PAIR, state="uncut", left__partner=True, left__prism=words("0 up"), readings__left__prism=words("0.2 down"))
+    scenes = report_on(job, scenes=True)["scenes"]
+    roles = {eye: {shape["role"] for shape in scenes[eye]["dial"]["shapes"]} for eye in EYES}
+    assert "region" not in roles["left"]
+    assert "region" in roles["right"]
+
+
+def test_rows_of_an_edition_may_not_overlap() -> None:
+    """Else the first would win in silence."""
+    row = {"check": "prism.lens", "limit": {"fixed": "0.20"}, "clause": "1"}
+    edition = {"format": "wedgewright.edition/1", "id": "shop", "name": "Shop", "rows": [row | {"component": "vertical"}, row | {"component": "horizontal"}]}
+    assert ask("check-edition", edition=edition)["edition"]["rows"] == 2
+    for second in (row, row | {"component": "vertical"}, row | {"power": {"over": "3"}, "component": "vertical"}):
+        answer = ask("check-edition", edition=edition | {"rows": [row | {"component": "vertical"}, second]})
+        assert errors_of(answer) == [("edition-rows-overlap", "edition.rows")]
+        assert (answer["errors"][0]["params"]["first"], answer["errors"][0]["params"]["second"]) == ("1", "2")
+    low, high = {"power": {"to": "3"}}, {"power": {"over": "3"}}
+    for ranges in ((low, high), (high, low), ({"power": {"below": "3"}}, {"power": {"from": "3"}}), ({"states": ["uncut"]}, {"states": ["mounted"]})):
+        assert ask("check-edition", edition=edition | {"rows": [row | part for part in ranges]})["edition"]["rows"] == 2
+    for ranges in ((low, {"power": {"from": "3"}}), (low, {"add": {"to": "2"}}), ({"power": {"over": "2", "to": "4"}}, {"power": {"over": "3"}})):
+        assert errors_of(ask("check-edition", edition=edition | {"rows": [row | part for part in ranges]})) == [("edition-rows-overlap", "edition.rows")]
+
+
+def test_a_plano_lens_has_nothing_to_slide() -> None:
+    """A shop's millimetres for any power: on a lens without power no shift takes the error away."""
+    rows = [{"check": "prism.lens", "limit": {"fixed": "0.33"}, "clause": "1"}, {"check": "prp.position", "limit": {"fixed": "1"}, "clause": "2"}]
+    shop = {"format": "wedgewright.edition/1", "id": "shop", "name": "Shop", "rows": rows}
+    job = patched(read(PAIR, words("0.40 up"), words("0.40 up")), state="uncut", edition="shop", right__sphere="0.00")
+    job = patched(job, readings__right__slid_mm="0.5", readings__left__slid_mm="0.5")
+    checks = report_on(job, editions=[shop])["verdict"]["checks"]
+    assert [check["eye"] for check in checks if check["id"] == "prp.position"] == ["left"]
+
+
+def test_sections_are_worked_out_as_asked() -> None:
+    """All where nothing is said; the same whether alone or together; order and verdict untouched by them."""
+    job = demonstration()
+    everything, nothing = ask("report", job=job), report_on(job)
+    names = list(everything.get("sections", {}))
+    assert "sections" not in nothing
+    one_by_one = [ask("report", job=job, sections=[name, name])["sections"] for name in names]
+    assert [list(found) for found in one_by_one] == [[name] for name in names]
+    assert {name: entry for found in one_by_one for name, entry in found.items()} == everything.get("sections", {})
+    assert {key: everything[key] for key in ("verdict", "notes", "pair")} == {key: nothing[key] for key in ("verdict", "notes", "pair")}
+
+
 # --- touch, step, one line ----------------------------------------------------------------------------------------------------
 
 
@@ -951,6 +1011,7 @@ def test_an_order_in_one_line_through_the_door() -> None:
     pair = ask("read-order", line="OU -1.00 PD 62")
     assert (pair["pd_mm"], pair["left"]) == ("62", {"sphere": "-1.00"})
     assert errors_of(ask("read-order", line="R -1.00 2.5 @37", bases="180"))
+    assert ask("read-order", line="R -1 add 2 progressive")["lens"] == {"design": "progressive"}
     assert errors_of(ask("read-order", line="R -99.00")) == [("number-out-of-range", "right.sphere")]
     report_on(patched(PAIR, right=answer["right"]))
 

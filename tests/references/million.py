@@ -1,7 +1,7 @@
 """A million random orders through the door, compared with the reference: `python -m tests.references.million [count]`.
 
-Prints the largest error of each quantity per stratum, and fails above 1e-9 prism dioptres, dioptres or
-millimetres (bases: 1e-7 degrees where the prism is at least 0.01).
+Prints the largest error of each stratum and every quantity that is off by more than 1e-9 prism dioptres, dioptres
+or millimetres (bases: 1e-7 degrees where the prism is at least 0.01); fails if there is one. A wrong word is `inf`.
 """
 
 from __future__ import annotations
@@ -159,7 +159,8 @@ def main(count: int) -> int:
             stratum, errors = done.result()
             worst[stratum] = {name: max(error, worst[stratum].get(name, 0.0)) for name, error in errors.items()}
     for stratum, errors in worst.items():
-        print(f"{stratum}: " + ", ".join(f"{name} {error:.1e}" for name, error in errors.items()))
+        wrong = {name: error for name, error in errors.items() if error > ALLOWED}
+        print(f"{stratum}: {len(errors)} quantities, largest error {max(errors.values()):.1e}", wrong or "")
     largest = max(error for errors in worst.values() for error in errors.values())
     vectors = max(error for errors in worst.values() for name, error in errors.items() if name.endswith("vector"))
     print(

@@ -8,8 +8,8 @@ const SIGNED = new Set(["sphere", "cylinder"]);
 const WORDS = new Set(["in", "out", "up", "down"]);
 /** What stays when the next job is begun: the bench and its rules, not the order. */
 const BENCH = /^(instrument|edition|edition_options|decision_rule)\b/;
-const GUEST = "page.guest";
-const ASIDE = "page.bench.";
+const GUEST = "page-guest";
+const ASIDE = "page-bench.";
 /** What the page keeps beside the job: the line being typed, the way a prism is written. */
 const PAGE_ONLY = /^(line|page)\b/;
 
@@ -164,7 +164,7 @@ export function hasOrder(entries) {
 
 /**
  * What the next job begins with: this bench and its rules. A job from elsewhere (a file, the demonstration) brings its
- * own bench; the one it pushed aside stands under `page.bench` and comes back with the next job.
+ * own bench; the one it pushed aside stands under `page-bench` and comes back with the next job.
  *
  * @param {Entries} entries
  * @returns {Entries}
