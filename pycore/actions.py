@@ -81,7 +81,7 @@ def _wanted_sections(sections: Any) -> tuple[str, ...]:
     if not isinstance(sections, list):
         _refuse("list-expected", "sections", "", "send-again")
     for name in sections:
-        if name not in SECTIONS:
+        if not isinstance(name, str) or name not in SECTIONS:
             _refuse(
                 "choice-unknown",
                 "sections",
@@ -259,8 +259,8 @@ def _touch(envelope: Source, fields: Fields) -> Entry:
 def _step(envelope: Source, fields: Fields) -> Entry:
     """The reading moved by whole steps; where nothing is read yet, from the expected point."""
     eye = _eye(envelope)
-    right = fields.number("right", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
-    up = fields.number("up", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
+    right = fields.count("right", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
+    up = fields.count("up", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
     fine = fields.flag("fine")
     for key in ("job", "eye"):
         fields.raw(key)

@@ -33,7 +33,7 @@ def prism_entry(eye: Eye, prism: Prism) -> Entry:
     base_deg = prism.base_deg
     across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
     entry: Entry = {
-        "amount": number(prism.amount),
+        "amount": 0.0 if base_deg is None else number(prism.amount),
         "base": None if base_deg is None else round(base_deg, 9) % 360.0,
         "x": number(prism.x),
         "y": number(prism.y),

@@ -219,7 +219,7 @@ def _sentence(verdict: Verdict, tightest: Entry | None) -> Entry:
         params |= {"tightest": tightest["shown"]["text"], "doubt": tightest["shown"]["doubt"]}
         if verdict.outcome == "within" and tightest["doubt"] > ACCEPTED_DOUBT:
             code = "within-close"
-    elif verdict.outcome == "unread":
+    else:
         code = "nothing-read"
     return {"code": code, "params": params}
 

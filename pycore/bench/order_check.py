@@ -18,6 +18,7 @@ MUCH_PRISM = Decimal(10)
 BEYOND_THIN = Decimal(20)  # thin-prism formulas end about here (domain facts section 8)
 THINNING_SHARE = (Decimal("0.57"), Decimal("0.70"))  # around 0.6 and 2/3 of the add
 ADD_DESIGNS = ("progressive", "bifocal", "trifocal")
+STATED_STEP = Decimal("0.50")  # dioptres
 FAR_APART = Decimal(3)  # dioptres of mean power
 
 
@@ -65,16 +66,13 @@ def _lens_notes(order: EyeOrder) -> Iterator[Note]:
     if order.lens.design == "near" and order.pd_mm is not None and order.pd_for != "near":
         yield _warn("near-pair-distance-pd", f"{eye}.pd_mm", eye=eye)
     if order.stated and order.stated.power and target.power:
-        yield from _stated_notes(order)
+        yield from _stated_notes(order, order.stated.power, target.power)
 
 
-def _stated_notes(order: EyeOrder) -> Iterator[Note]:
+def _stated_notes(order: EyeOrder, stated: Power, power: Power) -> Iterator[Note]:
     """Stated values replace the prescription in every check, so a large step is queried."""
-    stated, power = order.stated, order.prescribed.power
-    if stated is None or stated.power is None or power is None:
-        return
     yield Note(code="stated-values-used", field=f"{order.eye}.stated", params={"eye": order.eye})
-    if abs(stated.power.strongest - power.strongest) > Decimal("0.50"):
+    if abs(stated.strongest - power.strongest) > STATED_STEP:
         yield _warn("stated-far-from-order", f"{order.eye}.stated", eye=order.eye)
 
 

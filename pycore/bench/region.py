@@ -62,10 +62,9 @@ def region_of(matter: Matter, eye: Eye) -> Region | None:
     )
 
 
-def _circle(matter: Matter, eye: Eye) -> Region | None:
+def _circle(matter: Matter, eye: Eye) -> Region:
     found = lens_row(matter, eye, "vertical")
-    if found is None:
-        return None
+    assert found is not None  # judged_as_vector has looked
     limit, uncertainty = found[1], lens_uncertainty(matter, eye)
     half = _accepted(matter, limit, uncertainty, circle=True)
     centre = matter.dues[eye].expected

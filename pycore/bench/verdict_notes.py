@@ -25,7 +25,8 @@ from pycore.bench.verdict_prism import (
 )
 from pycore.decimals import fixed, snap
 from pycore.errors import Note
-from pycore.optics.prism import Eye
+from pycore.job.bench import EyeReading
+from pycore.optics.prism import EYES, Eye
 
 
 def verdict_notes(
@@ -43,6 +44,7 @@ def verdict_notes(
     return [
         *_notes_on_lenses(matter),
         *_notes_on_place(matter),
+        *_notes_on_strays(matter),
         *doubts,
         *_notes_on_millimetres(checks),
     ]
@@ -99,6 +101,21 @@ def _notes_on_place(matter: Matter) -> list[Note]:
             )
         ]
     return []
+
+
+def _notes_on_strays(matter: Matter) -> list[Note]:
+    """Readings of a lens that is not ordered are not judged; that is said."""
+    return [
+        Note(
+            code="reading-without-order",
+            field=f"readings.{eye}",
+            severity="warning",
+            about="reading",
+            params={"eye": eye},
+        )
+        for eye in EYES
+        if eye not in matter.dues and matter.job.readings.of(eye) != EyeReading()
+    ]
 
 
 def _notes_on_millimetres(checks: Sequence[Check]) -> list[Note]:

@@ -114,8 +114,6 @@ def open_row(matter: Matter, component: str) -> Row | None:
     if matter.option("prism-alternatives") == "prism-only" or not matter.pair_is_ordered:
         return None
     sizes = [abs(due.power.along(MERIDIAN[component])) for due in matter.dues.values() if due.power]
-    if not sizes:
-        return None
     both = matter.option("millimetre-power") == "both-lenses"
     check = "prp.height" if component == "vertical" else "prp.distance"
     return matter.row(check, {"power": min(sizes) if both else max(sizes)}, state="mounted")

@@ -30,9 +30,10 @@ def prism_checks(matter: Matter) -> Iterator[Check]:
     Source: the edition's rows; the order of method by Z80.1-2010, 8.4 and 8.5 as quoted.
     """
     mounted = matter.job.state == "mounted"
-    if matter.pair_is_ordered and len(matter.reads) == 2:
+    right, left = matter.error("right"), matter.error("left")
+    if right is not None and left is not None:
         for component in COMPONENTS:
-            yield from _pair_checks(matter, component, counts=mounted)
+            yield from _pair_checks(matter, component, (right, left), counts=mounted)
     for eye in matter.own_eyes:
         if eye not in matter.reads:
             continue
@@ -70,14 +71,6 @@ def lens_uncertainty(matter: Matter, eye: Eye, repeats: int = 0) -> float:
     )
 
 
-def pair_deviation(matter: Matter, component: str) -> Decimal | None:
-    """Right minus left of read minus expected, in prism dioptres, or None where unread."""
-    right, left = matter.error("right"), matter.error("left")
-    if right is None or left is None:
-        return None
-    return snap(component_of(right - left, component))
-
-
 def _powers(matter: Matter) -> list[Power]:
     return [due.power for due in matter.dues.values() if due.power]
 
@@ -103,16 +96,19 @@ def _row_prism(matter: Matter, component: str) -> Decimal:
     return snap(max((abs(part) for part in parts.values()), default=Decimal(0)))
 
 
-def _pair_checks(matter: Matter, component: str, counts: bool) -> Iterator[Check]:
+def _pair_checks(
+    matter: Matter, component: str, errors: tuple[Prism, Prism], counts: bool
+) -> Iterator[Check]:
+    """The pair's check of one component; `errors` of the right and the left lens."""
     found = pair_row(matter, component)
-    deviation = pair_deviation(matter, component)
-    if found is None or deviation is None:
+    if found is None:
         return
     if component == "vertical" and not matter.vertical_pair_is_readable:
         return
     if component == "vertical" and pair_decides_vertical(matter):
         counts = True
     row, limit = found
+    deviation = snap(component_of(errors[0] - errors[1], component))
     uncertainty = pair_uncertainty(matter)
     right, left = matter.dues["right"].expected, matter.dues["left"].expected
     ordered = snap(component_of(right - left, component))

@@ -136,10 +136,6 @@ class Edition:
         kinds = {row.provenance for row in self.rows}
         return tuple(kind for kind in ("published", "local", "memory") if kind in kinds)
 
-    def has(self, check: str) -> bool:
-        """Tell whether the edition says anything on a check."""
-        return check in self.by_check
-
     def row(
         self,
         check: str,

@@ -144,7 +144,7 @@ def read_instrument(fields: Fields) -> Instrument:
     step = Decimal("0.25") if kind == "manual" else Decimal("0.01")
     instrument = Instrument(
         kind=kind,
-        rings=fields.number("rings", "1", "20") or Decimal(5),
+        rings=fields.count("rings", "1", "20") or Decimal(5),
         ring_step=fields.number("ring_step", "0.1", "5") or Decimal(1),
         compensator=fields.word("compensator", SENSES),
         compensator_maximum=fields.number("compensator_maximum", "0", "40"),

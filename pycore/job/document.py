@@ -169,7 +169,8 @@ def _require_an_eye(fields: Fields, job: Job) -> None:
 
 def _typed_sphere(fields: Fields, eye: Eye) -> bool:
     source = fields.raw(eye)
-    return isinstance(source, Mapping) and source.get("sphere") not in (None, "")
+    sphere = source.get("sphere") if isinstance(source, Mapping) else None
+    return sphere is not None and bool(str(sphere).strip())
 
 
 def _read_options(fields: Fields) -> dict[str, str]:

@@ -141,16 +141,28 @@ class Fields:
         value = self.raw(name)
         if value is None:
             return ()
-        if not isinstance(value, list) or len(value) > most:
-            self.refuse("list-expected", name, "", "send-again")
+        if not isinstance(value, list):
+            self.refuse("list-expected", name, value, "send-again")
             return ()
-        items = Fields({str(index): item for index, item in enumerate(value)}, "", [])
-        read = [items.number(str(index), low, high) for index in range(len(value))]
+        if len(value) > most:
+            self.refuse("list-too-long", name, str(len(value)), "shorten", limit=str(most))
+        items = Fields({str(index): item for index, item in enumerate(value[:most])}, "", [])
+        read = [items.number(place, low, high) for place in items.names()]
+        for place in items.names():
+            if not items.has(place):
+                items.refuse("number-missing", place, "", "type-number")
         for fault in items.faults:
-            self.refuse(
-                fault.code, f"{name}[{fault.field}]", fault.given, fault.fix, **fault.params
-            )
+            where = f"{name}[{fault.field}]"
+            self.refuse(fault.code, where, fault.given, fault.fix, **fault.params)
         return tuple(number for number in read if number is not None)
+
+    def count(self, name: str, low: str, high: str) -> Decimal | None:
+        """A whole number within [low, high]; None where absent."""
+        number = self.number(name, low, high)
+        if number is not None and number % 1:
+            self.refuse("number-not-whole", name, str(number), "type-whole")
+            return None
+        return number
 
     def finish(self) -> None:
         """Refuse every key that nobody read."""

@@ -77,6 +77,11 @@ def assert_said_in_full(answer: dict[str, Any]) -> None:
             spoken.append(("verdict", verdict["sentence"]["code"], verdict["sentence"]["params"]))
             spoken += [("cautions", code, {}) for code in verdict["cautions"]]
             spoken += [("options", option["why"], {}) for option in verdict["edition"]["options"]]
+    for section in answer.get("sections", {}).values():
+        spoken.append(("section_titles", section["title"]["code"], section["title"]["params"]))
+        spoken += [("section_notes", note["code"], note["params"]) for note in section["notes"]]
+        spoken += [("section_rows", row["code"], {}) for row in section["rows"]]
+        spoken += [("fields", asked["field"].split(".")[-1], {}) for asked in section["asks"]]
     for group, code, params in spoken:
         sentence = WORDS[group].get(code)
         assert sentence, f"no words for {group}.{code}"
@@ -169,10 +174,15 @@ def signed_power(low: str = "-12", high: str = "12") -> st.SearchStrategy[str]:
     return decimals(low, high, "0.25").map(lambda value: f"{value:+f}" if value else "0.00")
 
 
-degrees_360 = st.one_of(typed("0", "359.99", "0.01"), st.sampled_from(["0", "90", "180", "270", "360", "45", "30", "0.03", "179.98", "180.02", "359.97"]))
+degrees_360 = st.one_of(
+    typed("0", "359.99", "0.01"),
+    st.sampled_from(["0", "90", "180", "270", "360", "45", "30", "0.03", "179.98", "180.02", "359.97"]),
+)
 in_180 = st.one_of(
     st.builds(lambda degrees, side: {"degrees": degrees, "side": side}, typed("1", "179", "1"), st.sampled_from(["up", "down"])),
-    st.builds(lambda degrees, side: {"degrees": degrees, "side": side}, st.sampled_from(["0", "180"]), st.sampled_from(["in", "out"])),
+    st.builds(
+        lambda degrees, side: {"degrees": degrees, "side": side}, st.sampled_from(["0", "180"]), st.sampled_from(["in", "out"])
+    ),
 )
 bases = st.one_of(st.sampled_from(["in", "out", "up", "down"]), degrees_360, in_180)
 
@@ -272,7 +282,9 @@ def jobs(
         "state": state,
         "edition": edition,
         "decision_rule": draw(st.sampled_from(rules)),
-        "edition_options": {name: draw(st.sampled_from(values)) for name, values in offered.items() if draw(st.integers(0, 3)) == 0},
+        "edition_options": {
+            name: draw(st.sampled_from(values)) for name, values in offered.items() if draw(st.integers(0, 3)) == 0
+        },
         "lens": {"design": design},
         "right": draw(orders(design)),
         "left": draw(orders(design)),

@@ -10,7 +10,6 @@ from hypothesis import given
 from hypothesis import strategies as st
 from scipy.optimize import brentq
 from scipy.stats import ncx2, norm
-from tests.core.strategies import Job, checks_of, codes, decimals, report_on
 
 from pycore.bench.doubt import (
     ACCEPTED_DOUBT,
@@ -19,6 +18,7 @@ from pycore.bench.doubt import (
     largest_accepted,
     repeats_needed,
 )
+from tests.core.strategies import Job, checks_of, codes, decimals, report_on
 
 LIMITS = decimals("0.05", "3")
 # Down to the smallest uncertainty that may be typed (0.001), read twenty times.
@@ -79,7 +79,9 @@ def test_guarded_acceptance(limit: Decimal, share: float) -> None:
         if reference(0.0, float(limit), uncertainty) < 1 - ACCEPTED_DOUBT:
             assert accepted is None
             continue
-        wanted = brentq(lambda off, reference=reference: reference(off, float(limit), uncertainty) - 0.95, 0.0, float(limit), xtol=1e-13)
+        wanted = brentq(
+            lambda off, reference=reference: reference(off, float(limit), uncertainty) - 0.95, 0.0, float(limit), xtol=1e-13
+        )
         assert accepted is not None
         assert float(accepted) == pytest.approx(wanted, abs=1e-7 * float(limit) + 1e-8)
 
@@ -174,7 +176,9 @@ def test_guarded_rule_says_before_reading_that_nothing_could_pass() -> None:
     assert "guarded-never-passes" in codes(report_on(job))
     job["instrument"]["uncertainty"]["prism"] = "0.05"
     assert not codes(report_on(job)) & {"guarded-needs-repeats", "guarded-never-passes"}
-    assert "guarded-needs-repeats" in codes(report_on(pair("0", decision_rule="guarded", state="uncut", instrument={"uncertainty": {"prism": "0.2"}})))
+    assert "guarded-needs-repeats" in codes(
+        report_on(pair("0", decision_rule="guarded", state="uncut", instrument={"uncertainty": {"prism": "0.2"}}))
+    )
 
 
 def test_guarded_rule_says_so_for_the_axis_too() -> None:

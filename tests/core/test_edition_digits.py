@@ -17,7 +17,8 @@ from typing import Any
 
 import pytest
 
-from tests.references.limit_cases import EDITIONS, Case, cases_of, report_on
+from tests.references.limit_cases import cases_of
+from tests.references.limit_jobs import EDITIONS, Case, report_on
 
 D = Decimal
 

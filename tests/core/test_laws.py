@@ -15,6 +15,9 @@ from typing import Any
 import pytest
 from hypothesis import assume, given
 from hypothesis import strategies as st
+
+from pycore.names import prism_entry
+from pycore.optics.prism import NO_PRISM, Prism, from_base, total
 from tests.core.strategies import (
     EYES,
     OPPOSITE,
@@ -30,9 +33,6 @@ from tests.core.strategies import (
     text_of,
     typed,
 )
-
-from pycore.names import prism_entry
-from pycore.optics.prism import NO_PRISM, Prism, from_base, total
 
 CLOSE = 1e-9
 
@@ -156,7 +156,9 @@ def test_mirror(job: Job) -> None:
         for mine_shape, theirs_shape in zip(regions(here, eye), regions(there, OPPOSITE[eye]), strict=True):
             assert mine_shape["empty"] == theirs_shape["empty"]
             turned = _mirrored_shape(theirs_shape)
-            assert mine_shape["empty"] or all(close(value, turned[key]) if isinstance(value, float) else value == turned[key] for key, value in mine_shape.items())
+            assert mine_shape["empty"] or all(
+                close(value, turned[key]) if isinstance(value, float) else value == turned[key] for key, value in mine_shape.items()
+            )
     assert close(here["pair"]["horizontal"]["ordered"], there["pair"]["horizontal"]["ordered"])
     assert close(here["pair"]["vertical"]["ordered"], -there["pair"]["vertical"]["ordered"])
     first = here["read_first"] and here["read_first"]["eye"]
@@ -173,7 +175,9 @@ def test_mirror_with_two_designs() -> None:
         "thinning": {"rule": "none"},
         "right": eye | {"design": "single-vision"},
         "left": eye | {"design": "progressive", "add": "2.00"},
-        "readings": {eye_name: {"sphere": "-2.15", "cylinder": "-0.85", "axis": "90", "prism": [{"amount": "0"}]} for eye_name in EYES},
+        "readings": {
+            eye_name: {"sphere": "-2.15", "cylinder": "-0.85", "axis": "90", "prism": [{"amount": "0"}]} for eye_name in EYES
+        },
     }
     here, there = report_on(job), report_on(mirrored(job))
     assert judged(here) == judged(there, swap=True)
@@ -184,7 +188,10 @@ def test_mirror_with_two_designs() -> None:
 # --- rotation, cancellation, order, zero ---------------------------------------------------------------------------------
 
 
-@given(parts=st.lists(st.tuples(decimals("0", "12"), decimals("0", "359.9", "0.1")), min_size=1, max_size=4), turn=decimals("0", "359.9", "0.1"))
+@given(
+    parts=st.lists(st.tuples(decimals("0", "12"), decimals("0", "359.9", "0.1")), min_size=1, max_size=4),
+    turn=decimals("0", "359.9", "0.1"),
+)
 def test_rotation(parts: list[tuple[Decimal, Decimal]], turn: Decimal) -> None:
     """Turning every component turns the sum (complex multiplication)."""
     before = total(from_base(amount, base) for amount, base in parts)
@@ -282,7 +289,9 @@ def test_transposition_changes_only_the_form(job: Job, which: str) -> None:
 # --- thinning -------------------------------------------------------------------------------------------------------------
 
 
-@given(job=jobs(designs=("progressive", "bifocal"), states=("mounted",)), amount=typed("0", "3"), base=st.sampled_from(["down", "up"]))
+@given(
+    job=jobs(designs=("progressive", "bifocal"), states=("mounted",)), amount=typed("0", "3"), base=st.sampled_from(["down", "up"])
+)
 def test_equal_thinning_leaves_the_pair_unchanged(job: Job, amount: str, base: str) -> None:
     """Yoked vertical prism cancels (study note of the technical brief of 1998)."""
     for eye in EYES:
@@ -348,7 +357,11 @@ def test_the_180_notation(degrees: int, side: str, eye: str, amount: str) -> Non
     assert found["notation_180"]["words"] == words
 
 
-@given(x=decimals("-3", "3", "0.000000000001"), y=st.sampled_from(["0", "1E-12", "-1E-12", "4E-10", "-6E-10", "0.001"]), eye=st.sampled_from(EYES))
+@given(
+    x=decimals("-3", "3", "0.000000000001"),
+    y=st.sampled_from(["0", "1E-12", "-1E-12", "4E-10", "-6E-10", "0.001"]),
+    eye=st.sampled_from(EYES),
+)
 def test_bases_next_to_the_horizontal_have_sound_names(x: Decimal, y: str, eye: Any) -> None:
     entry = prism_entry(eye, Prism(x, Decimal(y)))
     assert (entry["base"] is None) == (entry["quadrant"] == "none")
@@ -367,7 +380,9 @@ def test_bases_next_to_the_horizontal_have_sound_names(x: Decimal, y: str, eye: 
     maximum=typed("1", "15"),
     sphere=signed_power(),
 )
-def test_compensator_setting_and_residual_make_the_expected_reading(prism: list[Any], eye: str, sense: str, maximum: str, sphere: str) -> None:
+def test_compensator_setting_and_residual_make_the_expected_reading(
+    prism: list[Any], eye: str, sense: str, maximum: str, sphere: str
+) -> None:
     """p = scale + residual where the scale reads the lens's prism, p = residual - scale where its own base (from memory)."""
     job = {
         "format": "wedgewright.job/1",

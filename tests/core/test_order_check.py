@@ -9,6 +9,7 @@ import copy
 from typing import Any
 
 import pytest
+
 from tests.core.strategies import Job, answer_to, codes, errors_of, patched, report_on
 
 EYE = {"sphere": "-2.00", "cylinder": "-1.00", "axis": "90", "pd_mm": "31", "prp_height_mm": "18"}
@@ -66,13 +67,23 @@ CASES: list[tuple[str, str, Job, dict[str, Any]]] = [
     ("power-odd-step", "left.sphere", CLEAN, {"left__cylinder": "-1.30"}),
     ("near-pair-distance-pd", "right.pd_mm", patched(CLEAN, lens={"design": "near"}, left__pd_for="near"), {}),
     ("heights-disagree", "right.prp_height_mm", PROGRESSIVE, {"right__fitting_height_mm": "23", "right__cross_above_prp_mm": "4"}),
-    ("cross-height-missing", "left.cross_above_prp_mm", PROGRESSIVE, {"left__fitting_height_mm": "22", "left__prp_height_mm": None}),
+    (
+        "cross-height-missing",
+        "left.cross_above_prp_mm",
+        PROGRESSIVE,
+        {"left__fitting_height_mm": "22", "left__prp_height_mm": None},
+    ),
     ("height-above-frame", "left.prp_height_mm", CLEAN, {"left__prp_height_mm": "34.5"}),
     ("pds-disagree", "pd_mm", CLEAN, {"pd_mm": "63"}),
     ("designs-differ", "lens.design", BIFOCAL, {"right__design": "trifocal"}),
     ("design-missing", "lens.design", BIFOCAL, {"lens": None}),
     ("power-missing", "left.sphere", CLEAN, {"left__sphere": None, "left__cylinder": None, "left__axis": None}),
-    ("thinning-differs", "thinning.left_amount", PROGRESSIVE, {"thinning": {"rule": "amount", "amount": "1", "base": "down", "left_amount": "1.5"}}),
+    (
+        "thinning-differs",
+        "thinning.left_amount",
+        PROGRESSIVE,
+        {"thinning": {"rule": "amount", "amount": "1", "base": "down", "left_amount": "1.5"}},
+    ),
     ("thinning-needs-add", "thinning.rule", CLEAN, {"thinning": {"rule": "two-thirds"}}),
     ("stated-far-from-order", "right.stated", CLEAN, {"right__stated": {"sphere": "-2.60", "cylinder": "-1.00", "axis": "90"}}),
     ("edition-missing", "edition", CLEAN, {"edition": None}),
@@ -86,7 +97,9 @@ COMPANIONS = {
 }
 
 
-@pytest.mark.parametrize(("code", "field", "job", "changes"), CASES, ids=[f"{case[0]}-{number}" for number, case in enumerate(CASES)])
+@pytest.mark.parametrize(
+    ("code", "field", "job", "changes"), CASES, ids=[f"{case[0]}-{number}" for number, case in enumerate(CASES)]
+)
 def test_it_is_queried(code: str, field: str, job: Job, changes: dict[str, Any]) -> None:
     found = queries(patched(job, **changes))
     assert found.get(code) == field
@@ -98,7 +111,10 @@ def test_thinning_copied_into_the_prescription(amount: str) -> None:
     """Base down alike in both lenses at 0.6 to 2/3 of the add: both rules of 1998, and near them."""
     job = patched(PROGRESSIVE, right__prism=base(amount, "down"), left__prism=base(amount, "down"))
     assert set(queries(job)) == {"vertical-same-way", "thinning-in-prescription"}
-    for changes in ({"right__prism": base("0.90", "down"), "left__prism": base("0.90", "down")}, {"right__prism": base(amount, "up"), "left__prism": base(amount, "up")}):
+    for changes in (
+        {"right__prism": base("0.90", "down"), "left__prism": base("0.90", "down")},
+        {"right__prism": base(amount, "up"), "left__prism": base(amount, "up")},
+    ):
         assert set(queries(patched(PROGRESSIVE, **changes))) == {"vertical-same-way"}
 
 
@@ -113,7 +129,11 @@ def test_limits_of_the_queries_are_where_they_are_said_to_be() -> None:
     assert set(queries(patched(CLEAN, right__prism=base("20", "in")))) == {"prism-much"}
     assert queries(patched(CLEAN, left__sphere="-5.00")) == {}  # 3 D apart on the mean, not more
     assert queries(patched(CLEAN, right__sphere="+0.25")) == {}  # mixed: not opposite in sign
-    eighths = [f"-{whole}.{part}" for whole in range(3) for part in ("00", "12", "125", "13", "25", "37", "375", "38", "50", "62", "63", "75", "87", "88")]
+    eighths = [
+        f"-{whole}.{part}"
+        for whole in range(3)
+        for part in ("00", "12", "125", "13", "25", "37", "375", "38", "50", "62", "63", "75", "87", "88")
+    ]
     assert [sphere for sphere in eighths if "power-odd-step" in queries(patched(CLEAN, right__sphere=sphere))] == []
 
 
@@ -124,15 +144,17 @@ def test_a_single_lens_and_an_unknown_design_are_said() -> None:
 
 def test_the_order_is_never_altered() -> None:
     """Whatever is queried, what was ordered is what the report holds it to be."""
-    for _, _, job, changes in CASES:
-        job = patched(job, **changes)
+    for _, _, before, changes in CASES:
+        job = patched(before, **changes)
         kept = copy.deepcopy(job)
         report = report_on(job)
         for eye in ("right", "left"):
             parts = job[eye].get("prism", [])
             assert job == kept
             assert len(report["echo"]) > 0
-            across = sum(float(part["amount"]) * {"in": 1, "out": -1}.get(part["base"], 0) for part in parts if part["base"] != "180")
+            across = sum(
+                float(part["amount"]) * {"in": 1, "out": -1}.get(part["base"], 0) for part in parts if part["base"] != "180"
+            )
             up = sum(float(part["amount"]) * {"up": 1, "down": -1}.get(part["base"], 0) for part in parts)
             across += sum(float(part["amount"]) * (-1 if eye == "right" else 1) for part in parts if part["base"] == "180")
             assert report[eye]["prescribed"]["y"] == pytest.approx(up, abs=1e-9)

@@ -7,6 +7,7 @@ from typing import Any
 import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
+
 from tests.core.strategies import EYES, OPPOSITE, Job, jobs, report_on
 
 STEP = 4e-6  # prism dioptres beside the edge; a guarded edge is found to a billionth of the limit

@@ -17,10 +17,75 @@ NONSENSE = [
     "abc", "2..5", "--1", "1e3", "NaN", "inf", "1_0", "٣", "１２", "½", "0x10", "1/2", "2.5D", "∞", "1,000.0", ".", "+", "²",
     "1234567890123", "\x00", "1\x00", "x" * 70, "=1+1", "−−2", "1;2", "1 2", "$5", "{}", "null", "1e400", "٫5", "±1",
 ]  # fmt: skip
-ODD = [None, True, False, [], {}, [[]], {"a": 1}, "", " ", "in", "up", "360", "-0", "0", 0, -1, 99999, 1.5, ["in"], "right", "мост", "😀", "\u202e", "a" * 64]
-PIECES = ['"', "{", "}", "[", "]", ",", ":", "null", "NaN", "1e9", "\\ud800", "\\u0000", "-", "0", "9" * 30, "\ufeff", "\x1f", "é", "true", "\\", "//"]
+ODD = [
+    None,
+    True,
+    False,
+    [],
+    {},
+    [[]],
+    {"a": 1},
+    "",
+    " ",
+    "in",
+    "up",
+    "360",
+    "-0",
+    "0",
+    0,
+    -1,
+    99999,
+    1.5,
+    ["in"],
+    "right",
+    "мост",
+    "😀",
+    "\u202e",
+    "a" * 64,
+]
+PIECES = [
+    '"',
+    "{",
+    "}",
+    "[",
+    "]",
+    ",",
+    ":",
+    "null",
+    "NaN",
+    "1e9",
+    "\\ud800",
+    "\\u0000",
+    "-",
+    "0",
+    "9" * 30,
+    "\ufeff",
+    "\x1f",
+    "é",
+    "true",
+    "\\",
+    "//",
+]
 # Leaves that are words or free text; every other text of the good job is a number.
-WORDS = {"format", "id", "state", "edition", "decision_rule", "design", "rule", "base", "side", "kind", "compensator", "target", "at", "add_side", "pd_for", "shape", "initials"}
+WORDS = {
+    "format",
+    "id",
+    "state",
+    "edition",
+    "decision_rule",
+    "design",
+    "rule",
+    "base",
+    "side",
+    "kind",
+    "compensator",
+    "target",
+    "at",
+    "add_side",
+    "pd_for",
+    "shape",
+    "initials",
+}
 
 
 def leaves(value: Any, path: str = "") -> list[tuple[Any, Any, str]]:
@@ -39,7 +104,9 @@ def faults_in(good: Any, source: random.Random) -> str:
     way = source.randrange(5)
     must_refuse = ""
     if way == 0:
-        holder, key, must_refuse = source.choice([leaf for leaf in leaves(job) if leaf[1] not in WORDS and isinstance(leaf[0][leaf[1]], str)])
+        holder, key, must_refuse = source.choice(
+            [leaf for leaf in leaves(job) if leaf[1] not in WORDS and isinstance(leaf[0][leaf[1]], str)]
+        )
         holder[key] = source.choice(NONSENSE)
     elif way in (1, 2):
         for _ in range(source.randrange(1, 4)):
@@ -91,7 +158,13 @@ def nonsense_taken(job: Any) -> str:
     """A leaf of an accepted job that is no number where a number belongs, or ""."""
     for holder, key, path in leaves(job):
         value = holder[key]
-        if isinstance(value, str) and value.strip() and not isinstance(key, int) and key not in WORDS and not NUMBER.fullmatch(value):
+        if (
+            isinstance(value, str)
+            and value.strip()
+            and not isinstance(key, int)
+            and key not in WORDS
+            and not NUMBER.fullmatch(value)
+        ):
             return f"{path} was taken as a number: {value!r}"
     return ""
 

@@ -13,6 +13,7 @@ from typing import Any
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
+
 from tests.core.strategies import WORDS, Job, answer_to, errors_of, fresh, jobs, report_on
 from tests.door.fuzz import faults_in
 
@@ -96,7 +97,24 @@ def test_the_good_job_is_good_and_the_cases_are_many() -> None:
 
 
 # Codes that other tests bring about: of one-line orders, of editions, of the page, of the program itself.
-ELSEWHERE = {code for code in WORDS["errors"] if code.startswith(("line-", "edition-", "engine-", "rows-", "internal", "text-missing", "number-missing", "number-empty", "request-too-long", "job-too-long"))}
+ELSEWHERE = {
+    code
+    for code in WORDS["errors"]
+    if code.startswith(
+        (
+            "line-",
+            "edition-",
+            "engine-",
+            "rows-",
+            "internal",
+            "text-missing",
+            "number-missing",
+            "number-empty",
+            "request-too-long",
+            "job-too-long",
+        )
+    )
+}
 
 
 @pytest.mark.parametrize("case", CASES, ids=[case["name"] for case in CASES])
@@ -128,7 +146,11 @@ def test_any_text_is_answered(text: str) -> None:
     assert answer_to(text)["format"] == "wedgewright.refusal/1"
 
 
-ANYTHING = st.recursive(st.none() | st.booleans() | st.integers() | st.text(max_size=6), lambda inner: st.lists(inner, max_size=3) | st.dictionaries(st.text(max_size=6), inner, max_size=3), max_leaves=6)
+ANYTHING = st.recursive(
+    st.none() | st.booleans() | st.integers() | st.text(max_size=6),
+    lambda inner: st.lists(inner, max_size=3) | st.dictionaries(st.text(max_size=6), inner, max_size=3),
+    max_leaves=6,
+)
 
 
 @given(job=jobs(), value=ANYTHING, place=st.randoms(use_true_random=False))

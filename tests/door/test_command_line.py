@@ -10,10 +10,10 @@ from pathlib import Path
 
 import jsonschema
 import pytest
-from tests.core.strategies import Job, answer_to, ask, demonstration, patched, report_on
 
 from pycore import __version__
 from pycore.__main__ import main
+from tests.core.strategies import Job, answer_to, ask, demonstration, patched, report_on
 
 ROOT = Path(__file__).resolve().parents[2]
 EDITION = {
@@ -129,7 +129,9 @@ def test_as_a_program_of_its_own(tmp_path: Path, job_file: Path) -> None:
     assert json.loads(refused.stdout.decode("utf-8"))["errors"][1]["given"] == "Ж" * 64
 
 
-def test_run_as_a_module_ends_with_its_code(monkeypatch: pytest.MonkeyPatch, job_file: Path, capsys: pytest.CaptureFixture[str]) -> None:
+def test_run_as_a_module_ends_with_its_code(
+    monkeypatch: pytest.MonkeyPatch, job_file: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
     monkeypatch.delitem(sys.modules, "pycore.__main__", raising=False)
     monkeypatch.setattr(sys, "argv", ["pycore", "report", str(job_file)])
     with pytest.raises(SystemExit) as ended:

@@ -11,23 +11,9 @@ from decimal import Decimal
 import pytest
 
 from tests.references import limits_reference as ref
-from tests.references.limit_cases import (
-    EDITIONS,
-    EYES,
-    MAKERS,
-    Due,
-    Job,
-    around,
-    base_job,
-    cases_of,
-    designs_of,
-    lens_component_cases,
-    pair_cases,
-    prism,
-    read_pair,
-    report_on,
-    signed,
-)
+from tests.references.limit_cases import MAKERS, cases_of
+from tests.references.limit_cases_prism import lens_component_cases, pair_cases, read_pair
+from tests.references.limit_jobs import EDITIONS, EYES, Due, around, base_job, designs_of, prism, report_on, signed
 
 D = Decimal
 
@@ -114,122 +100,6 @@ def test_power_on_the_limit_over_the_grid(edition: str) -> None:
         report = report_on(job)
         wrong += [(power, off, eye) for eye in EYES if Due("power", eye, outcome).seen_in(report) != outcome]
     assert not wrong, wrong[:5]
-
-
-# --- groups: prism or millimetres ------------------------------------------------------------------------------------------
-
-
-def pair_of_fives(up: str, moved_mm: str | None, **options: str) -> str:
-    """The outcome of a wholly read pair of −5.00 D lenses: `up` too much in the pair, found `moved_mm` too high."""
-    job = base_job("ansi-z80.1-2015", "mounted", "single-vision", edition_options=options)
-    for eye in EYES:
-        job[eye]["sphere"] = job["readings"][eye]["sphere"] = "-5.00"
-    read_pair(job, D("1.00"), D(0), D(up))
-    if moved_mm is not None:
-        job["readings"]["right"]["prp_height_mm"] = f"{17 + D(moved_mm)}"
-        job["readings"]["left"]["prp_height_mm"] = "17"
-        job["readings"]["prp_distance_mm"] = "64"
-    outcome: str = report_on(job)["verdict"]["outcome"]
-    return outcome
-
-
-@pytest.mark.parametrize(
-    ("option", "up", "moved_mm", "outcome"),
-    [
-        # S1 prints OR: the pair passes by prism or by millimetres.
-        ("either", "0.33", None, "within"),
-        ("either", "0.34", "1.0", "within"),
-        ("either", "0.33", "1.1", "within"),
-        ("either", "0.34", "1.1", "outside"),
-        ("either", "0.34", None, "outside"),  # computed millimetres pass nothing
-        # S6 quotes 2010, 5.1.4: "1.0 mm AND 0.33".
-        ("both", "0.33", "1.0", "within"),
-        ("both", "0.34", "1.0", "outside"),
-        ("both", "0.33", "1.1", "outside"),
-        ("both", "0.33", None, "unread"),
-        # The tables (S1 S2 S3) show the millimetres in place of the prism above the switch.
-        ("replace", "0.34", "1.0", "within"),
-        ("replace", "0.33", "1.1", "outside"),
-        ("replace", "0.33", None, "unread"),
-        ("prism-only", "0.33", "1.1", "within"),
-        ("prism-only", "0.34", "0.0", "outside"),
-    ],
-)
-def test_prism_and_millimetres_together(option: str, up: str, moved_mm: str | None, outcome: str) -> None:
-    assert pair_of_fives(up, moved_mm, **{"prism-alternatives": option}) == outcome
-
-
-@pytest.mark.parametrize(("option", "seen"), [("stronger", "within"), ("both-lenses", "absent")])
-def test_whose_power_opens_the_millimetres(option: str, seen: str) -> None:
-    """The stronger lens of the pair along 90, or both: domain corrections; common practice. One lens is below 3.375 D."""
-    job = base_job("ansi-z80.1-2015", "mounted", "single-vision", edition_options={"millimetre-power": option})
-    job["right"] |= {"sphere": "-2.00", "cylinder": "-2.00", "axis": "180"}  # −4.00 along 90
-    job["left"]["sphere"] = "-3.00"
-    read_pair(job, D("1.00"), D(0), D("0.60"))
-    for eye in EYES:
-        job["readings"][eye]["prp_height_mm"] = "17"
-    assert Due("prp.height", "pair", seen).seen_in(report_on(job)) == seen
-
-
-def test_the_meridian_opens_the_millimetres_not_the_strongest_power() -> None:
-    """−2.00 −2.00 ×90: 4 D lie along 180 only, so distance has its alternative (2.75) and height has none (3.375)."""
-    job = base_job("ansi-z80.1-2015", "mounted", "single-vision")
-    for eye in EYES:
-        job[eye] |= {"sphere": "-2.00", "cylinder": "-2.00", "axis": "90"}
-    read_pair(job, D("1.00"), D("1.00"), D("0.60"))
-    for eye in EYES:
-        job["readings"][eye]["prp_height_mm"] = "17"
-    job["readings"]["prp_distance_mm"] = "64"
-    report = report_on(job)
-    assert Due("prp.height", "pair", "absent").seen_in(report) == "absent"
-    assert Due("prp.distance", "pair", "within").seen_in(report) == "within"
-
-
-# --- which row ---------------------------------------------------------------------------------------------------------------
-
-
-@pytest.mark.parametrize(
-    ("read_sphere", "read_cylinder", "outcome"),
-    [("+1.13", "-2.26", "within"), ("+1.14", "-2.14", "outside"), ("+1.00", "-2.13", "within"), ("+1.00", "-2.14", "outside")],
-)
-def test_principal_powers_equal_in_size_are_both_tested(read_sphere: str, read_cylinder: str, outcome: str) -> None:
-    """+1.00 −2.00 is +1.00 and −1.00: ±0.13 for each (limits S1 S2 S3; that both count: common practice)."""
-    job = base_job("ansi-z80.1-2015", "mounted", "single-vision")
-    for eye in EYES:
-        job[eye] |= {"sphere": "+1.00", "cylinder": "-2.00", "axis": "70"}
-        job["readings"][eye] |= {"sphere": read_sphere, "cylinder": read_cylinder, "axis": "70"}
-    report = report_on(job)
-    assert [Due("power", eye, outcome).seen_in(report) for eye in EYES] == [outcome, outcome]
-
-
-def uncut_8980(amount: str, base: str, across: str, upward: str) -> Job:
-    """The report on an uncut plano of ISO 8980-1 with an oblique prism, read off by two components."""
-    job = base_job("iso-8980-1", "uncut", "single-vision")
-    for eye in EYES:
-        job[eye]["prism"] = [{"amount": amount, "base": base}]
-        job["readings"][eye]["prism"] = [{"amount": amount, "base": base}, *prism(D(across), D(upward))]
-    return report_on(job)
-
-
-@pytest.mark.parametrize(("off", "outcome"), [("0.25", "within"), ("0.26", "outside")])
-def test_an_oblique_prism_is_resolved_before_its_row_is_chosen(off: str, outcome: str) -> None:
-    """2.30 Δ at 30° is 1.99 across and 1.15 up: both in the row up to 2.00 Δ, though 2.30 is not. ISO 8980 [M]."""
-    report = uncut_8980("2.30", "30", off, off)
-    due = [Due("prism.lens", eye, outcome, way) for eye in EYES for way in ("horizontal", "vertical")]
-    assert [one.seen_in(report) for one in due] == [outcome] * 4
-
-
-@pytest.mark.parametrize(("option", "limit"), [("lens", "0.67"), ("pair", "1.00")])
-def test_iso_21987_row_by_the_lens_or_by_the_pair(option: str, limit: str) -> None:
-    """1.50 in each: the larger single component is 1.50 (0.67), the pair's is 3.00 (1.00). [M], an option of the edition."""
-    for off, outcome in around(D(limit)):
-        job = base_job("iso-21987", "mounted", "single-vision", edition_options={"prism-row": option})
-        for eye in EYES:
-            job[eye]["prism"] = prism(D("1.50"), D(0))
-        job["readings"]["right"]["prism"] = prism(D("1.50") + off, D(0))
-        job["readings"]["left"]["prism"] = prism(D("1.50"), D(0))
-        due = Due("prism.horizontal", "pair", outcome)
-        assert due.seen_in(report_on(job)) == outcome, (option, off)
 
 
 def test_the_makers_cover_the_rows_of_iso() -> None:

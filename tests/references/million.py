@@ -157,7 +157,7 @@ def main(count: int) -> int:
         work = [pool.submit(compare_some, 1000 * place + seed, stratum, piece) for place, (stratum, seed) in enumerate(pieces)]
         for done in work:
             stratum, errors = done.result()
-            worst[stratum] = {name: max(error, worst[stratum].get(name, 0.0)) for name, error in errors.items()}
+            worst[stratum] |= {name: max(error, worst[stratum].get(name, 0.0)) for name, error in errors.items()}
     for stratum, errors in worst.items():
         wrong = {name: error for name, error in errors.items() if error > ALLOWED}
         print(f"{stratum}: {len(errors)} quantities, largest error {max(errors.values()):.1e}", wrong or "")

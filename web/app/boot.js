@@ -54,7 +54,7 @@ export function afterFirstPaint() {
         resolve(undefined);
       }
     }).observe({ type: "paint", buffered: true });
-    setTimeout(resolve, 500);
+    setTimeout(resolve, 3000); // a page that is shown is always painted before that
   });
 }
 

@@ -12,6 +12,7 @@ import { say } from "./words.js";
  * @property {HTMLElement} line
  * @property {(text: string) => void} show
  * @property {(wrong: boolean) => void} mark
+ * @property {boolean} [list] whether it holds a whole list, so that what is wrong with a row is said at it
  * @property {boolean} [echoes] whether what was understood is written beside it: what was typed, not what was chosen
  */
 

@@ -206,12 +206,13 @@ export function drawScene(host, scene, id) {
  *
  * @param {SVGSVGElement} picture
  * @param {{clientX: number, clientY: number}} event
+ * @param {number} [places] decimals
  */
-export function placeOf(picture, event) {
+export function placeOf(picture, event, places = 4) {
   const matrix = picture.getScreenCTM();
   if (!matrix) return null;
   const point = new DOMPoint(event.clientX, event.clientY).matrixTransform(matrix.inverse());
-  return { x: point.x.toFixed(4), y: (-point.y).toFixed(4) };
+  return { x: point.x.toFixed(places), y: (-point.y).toFixed(places) };
 }
 
 /**

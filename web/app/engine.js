@@ -218,11 +218,18 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
     });
   }
 
+  /** @param {string} lane whose question is given up unless it is being answered already */
+  function cancel(lane) {
+    waiting.get(lane)?.resolve(null);
+    waiting.delete(lane);
+  }
+
   onState(state);
   afterFirstPaint().then(open);
 
   return {
     ask,
+    cancel,
     get state() {
       return state;
     },

@@ -32,7 +32,7 @@ export function createForm(state) {
 
   /** @param {string} path @param {Control} control */
   function paint(path, control) {
-    const fault = answer.faults.find(({ field }) => field === path);
+    const fault = answer.faults.find(({ field }) => field === path || (control.list && field.startsWith(`${path}[`)));
     const echo = answer.echo[path];
     const text = fault ? faultText(fault) : echo && control.echoes ? shown(echo) : "";
     control.mark(Boolean(fault));
@@ -62,6 +62,8 @@ export function createForm(state) {
         selectControl(spec, (text) => state.set(spec.path, text), nameOf),
       );
     },
+    /** @param {string} path @param {Control} control one that is made elsewhere */
+    adopt: (path, control) => keep(path, control),
     /** @param {string} prefix forgets fields that are drawn anew */
     forget(prefix) {
       for (const path of controls.keys()) if (path.startsWith(prefix)) controls.delete(path);

@@ -5,7 +5,7 @@ import { saveSettings, wantsKeypad } from "./settings.js";
 import { svg } from "./dom.js";
 import { say } from "./words.js";
 
-const MOVES = ["order", "read", "decide", "keep", "bench"];
+const MOVES = ["order", "layout", "read", "decide", "keep", "bench"];
 
 /** @param {string} path */
 function icon(path) {

@@ -3,7 +3,7 @@
 /** @typedef {import("./types.js").Entries} Entries */
 
 export const FORMAT = "wedgewright.job/1";
-const FLAGS = new Set(["partner", "aspheric", "includes_thinning", "demonstration"]);
+const FLAGS = new Set(["partner", "aspheric", "includes_thinning", "demonstration", "drilled"]);
 const SIGNED = new Set(["sphere", "cylinder"]);
 const WORDS = new Set(["in", "out", "up", "down"]);
 /** What stays when the next job is begun: the bench and its rules, not the order. */

@@ -20,6 +20,7 @@ import { outcomeOf, sentenceOf, verdictStrip } from "./verdict.js";
 import { benchView } from "./views/bench.js";
 import { decideView } from "./views/decide.js";
 import { keepView } from "./views/keep.js";
+import { layoutView } from "./views/layout.js";
 import { orderView } from "./views/order.js";
 import { readView } from "./views/read.js";
 import { say, useComma } from "./words.js";
@@ -65,6 +66,7 @@ export function startPage(startEngine) {
   const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
+    layout: layoutView({ form, state, engine, goTo }),
     read: readView({ form, state, steps }),
     decide: decideView({ state, sign, print: () => window.print(), copy }),
     keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
@@ -135,6 +137,7 @@ export function startPage(startEngine) {
     standing.earlier = faults.length > 0 && standing.report !== null;
     if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
     draw();
+    views.layout.follow(standing, editions.all);
     root.dataset["drawn"] = String(given.sequence ?? "");
     if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
     hash = await hashOf(JSON.stringify(built.job));
@@ -273,7 +276,7 @@ export function startPage(startEngine) {
   }
 
   window.addEventListener("beforeprint", () =>
-    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()) }),
+    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()), sections: views.layout.sheet() }),
   );
   listenToKeys({ state });
   watchDock();

@@ -94,7 +94,15 @@ function editionPart({ edition }) {
 
 /** @param {Entries} entries what was typed, by its path: the record of what the answer rests on */
 function inputs(entries) {
-  const typed = Object.entries(entries).filter(([path]) => !/^(page|line|signed)\b/.test(path));
+  const lists = new Set(["frame.outline_mm"]);
+  /** @type {Map<string, string>} the rows of a long list in one line */
+  const lines = new Map();
+  for (const [path, text] of Object.entries(entries)) {
+    const list = path.replace(/\[\d+\]$/, "");
+    const name = lists.has(list) ? list : path;
+    lines.set(name, lines.has(name) ? `${lines.get(name)} ${text}` : text);
+  }
+  const typed = [...lines].filter(([path]) => !/^(page|line|signed)\b/.test(path));
   return el(
     "p",
     { class: "sheet-inputs" },
@@ -132,8 +140,9 @@ function verdictPart(verdict) {
  * @param {Entries} what.entries
  * @param {string} what.hash of the job document
  * @param {string} what.at
+ * @param {HTMLElement|null} what.sections those whose panels stand open
  */
-export function drawSheet(host, { standing, entries, hash, at }) {
+export function drawSheet(host, { standing, entries, hash, at, sections }) {
   const { report, earlier } = standing;
   if (!report || earlier) {
     redraw(host, el("p", { class: "sheet-refused" }, say("page.print.refused")));
@@ -170,5 +179,6 @@ export function drawSheet(host, { standing, entries, hash, at }) {
       el("p", { class: "sheet-box" }, by ? `${by} · ${entries["signed.at"] ?? ""}` : ""),
     ),
     el("div", { class: "cautions" }, ...cautionLines(verdict?.cautions ?? [])),
+    sections,
   );
 }

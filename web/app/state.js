@@ -59,11 +59,11 @@ export function createState(initial = {}) {
     seal() {
       open = "";
     },
-    /** @param {(draft: Entries) => void} change one step of several fields */
-    change(change) {
+    /** @param {(draft: Entries) => void} change one step of several fields @param {string} [group] as with `set` */
+    change(change, group = "") {
       const next = unsigned(entries);
       change(next);
-      step(next, "");
+      step(next, group);
     },
     /** @param {string} initials @param {string} at signing is the one change that keeps a signature */
     sign(initials, at) {
