@@ -5,7 +5,7 @@ from collections.abc import Mapping
 from typing import Any
 
 from pycore.actions import ACTIONS
-from pycore.contract import REFUSAL_FORMAT, REQUEST_FORMAT, decode, encode
+from pycore.contract import REFUSAL_FORMAT, REQUEST_FORMAT, check_job_text, decode, encode
 from pycore.errors import Fault, RefusedError
 from pycore.job.fields import Fields
 from pycore.names import Entry, spoken
@@ -33,6 +33,7 @@ def handle(request: str) -> str:
             sequence = given if isinstance(given, str) and SEQUENCE.fullmatch(given) else ""
             answer = _answer(source)
         else:
+            check_job_text(request)
             answer = ACTIONS["report"]({"job": source}, Fields({}, "", []))
     except RefusedError as refused:
         answer = refusal(refused.faults)

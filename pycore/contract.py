@@ -109,10 +109,20 @@ def check_job_size(job: Mapping[str, Any]) -> None:
     >>> check_job_size({"id": "T-1"})
     """
     text = json.dumps(job, ensure_ascii=False)
-    if len(text.encode()) > MAXIMUM_JOB_BYTES:
-        _refuse("job-too-long", "shorten", "job", limit=str(MAXIMUM_JOB_BYTES // 1024))
+    check_job_text(text)
     if depth_of(text) > MAXIMUM_DEPTH:
         _refuse("json-too-deep", "send-again", "job", limit=str(MAXIMUM_DEPTH))
+
+
+def check_job_text(text: str) -> None:
+    """Refuse a job's text that is longer than a job may be.
+
+    Arguments: `text` JSON. Raises RefusedError: job-too-long.
+
+    >>> check_job_text("{}")
+    """
+    if len(text.encode()) > MAXIMUM_JOB_BYTES:
+        _refuse("job-too-long", "shorten", "job", limit=str(MAXIMUM_JOB_BYTES // 1024))
 
 
 def encode(answer: Mapping[str, Any]) -> str:
