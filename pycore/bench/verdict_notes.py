@@ -1,6 +1,6 @@
 """What should a person be told beside the verdict: excess, closeness, what to measure or repeat?"""
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from decimal import Decimal
 from functools import partial
 
@@ -27,6 +27,8 @@ from pycore.decimals import fixed, snap
 from pycore.errors import Note
 from pycore.job.bench import EyeReading
 from pycore.optics.prism import EYES, Eye
+
+Chance = Callable[[int], float]
 
 
 def verdict_notes(
@@ -159,42 +161,38 @@ def _check_of_group(name: str) -> str:
 
 def _notes_on_unreachable(matter: Matter) -> list[Note]:
     """Under guarded acceptance: where no reading at all could pass, and how many would do."""
+    hardest: dict[str, Chance] = {}  # of both lenses the one that passes less easily
+    for name, chance in _best_chances(matter):
+        if name not in hardest or chance(1) < hardest[name](1):
+            hardest[name] = chance
     notes = []
-    for name, chance in _best_chances(matter).items():
+    for name, chance in hardest.items():
         if 1.0 - chance(1) <= ACCEPTED_DOUBT:
             continue
         needed = repeats_needed(chance)
         code = "guarded-needs-repeats" if needed else "guarded-never-passes"
-        notes.append(
-            Note(
-                code=code,
-                about="verdict",
-                severity="warning",
-                params={"check": name, "count": str(needed or "")},
-            )
-        )
+        params = {"check": name, "count": str(needed or "")}
+        notes.append(Note(code=code, about="verdict", severity="warning", params=params))
     return notes
 
 
-def _best_chances(matter: Matter) -> dict[str, Callable[[int], float]]:
+def _best_chances(matter: Matter) -> Iterator[tuple[str, Chance]]:
     """For each limit, the chance that a perfect reading repeated n times passes.
 
     Only the prism is read repeatedly; for power, cylinder, axis and add n changes nothing.
     """
-    chances: dict[str, Callable[[int], float]] = {}
     for name, limit, uncertainty in power_limits(matter):
-        chances[name] = partial(_fixed_chance, limit, uncertainty)
+        yield name, partial(_fixed_chance, limit, uncertainty)
     if matter.job.state == "mounted":
         for component in COMPONENTS:
             found = pair_row(matter, component)
             if found and matter.pair_is_ordered:
-                chances[f"prism.{component}"] = partial(_pair_chance, matter, found[1])
-        return chances
+                yield f"prism.{component}", partial(_pair_chance, matter, found[1])
+        return
     for eye in matter.own_eyes:
         found = lens_row(matter, eye, "horizontal")
         if found:
-            chances["prism.lens"] = partial(_lens_chance, matter, eye, found[1])
-    return chances
+            yield "prism.lens", partial(_lens_chance, matter, eye, found[1])
 
 
 def _fixed_chance(limit: Decimal, uncertainty: float, _count: int) -> float:

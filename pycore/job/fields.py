@@ -160,7 +160,7 @@ class Fields:
         """A whole number within [low, high]; None where absent."""
         number = self.number(name, low, high)
         if number is not None and number % 1:
-            self.refuse("number-not-whole", name, str(number), "type-whole")
+            self.refuse("number-not-whole", name, self.raw(name), "type-whole")
             return None
         return number
 

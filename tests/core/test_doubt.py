@@ -41,7 +41,7 @@ def test_chance_between_two_limits(share: float, limit: Decimal, uncertainty: fl
     assert chance_within(deviation, limit, uncertainty) == pytest.approx(wanted, abs=1e-9)
 
 
-@given(share=st.floats(0, 3), limit=LIMITS, uncertainty=UNCERTAINTIES)
+@given(share=decimals("0", "3", "0.00001").map(float), limit=LIMITS, uncertainty=UNCERTAINTIES)
 def test_chance_within_a_circle(share: float, limit: Decimal, uncertainty: float) -> None:
     distance = Decimal(share) * limit
     away = (float(distance) - float(limit)) / uncertainty
@@ -188,3 +188,13 @@ def test_guarded_rule_says_so_for_the_axis_too() -> None:
         job[eye] = job[eye] | {"cylinder": "-1.50", "axis": "90"}
     notes = [note for note in report_on(job)["notes"] if note["code"] == "guarded-never-passes"]
     assert any("axis" in note["params"]["check"] for note in notes)
+
+
+@pytest.mark.parametrize(("strict", "wide"), [("right", "left"), ("left", "right")])
+def test_guarded_rule_looks_at_both_lenses(strict: str, wide: str) -> None:
+    """N.J.: 1 degree over 1.00 D, 3 degrees up to 0.37 D; the lens that cannot pass is told, whichever it is."""
+    job = pair("0", decision_rule="guarded", edition="nj-13-35-5.2")
+    job[strict] = job[strict] | {"cylinder": "-1.50", "axis": "90"}
+    job[wide] = job[wide] | {"cylinder": "-0.25", "axis": "90"}
+    notes = [note for note in report_on(job)["notes"] if note["code"] == "guarded-never-passes"]
+    assert [note["params"]["check"] for note in notes] == ["axis"]

@@ -203,6 +203,7 @@ def test_limits_of_the_document_are_where_the_contract_says() -> None:
     assert errors_of(answer_to(patched(PAIR, readings__left__repeats=again * 21))) == [("list-too-long", "readings.left.repeats")]
     job = json.dumps(PAIR)
     assert answer_to(job + " " * (64 * 1024 - len(job)))["format"] == "wedgewright.report/1"
+    assert errors_of(answer_to(job + " " * (64 * 1024 + 1 - len(job)))) == [("job-too-long", "job")]
     padded = {
         "format": "wedgewright.request/1",
         "do": "report",

@@ -129,6 +129,12 @@ def test_what_is_not_read_is_named() -> None:
     assert ("no-limit", "prism, one lens") in [(item["code"], item["params"].get("check")) for item in elsewhere]
 
 
+def test_readings_of_a_lens_that_is_not_ordered_are_not_passed_over_in_silence() -> None:
+    report = report_on(patched(PAIR, left=None, readings__left__prism=words("9 up")))
+    assert [note["field"] for note in report["notes"] if note["code"] == "reading-without-order"] == ["readings.left"]
+    assert "reading-without-order" not in codes(report_on(patched(PAIR, left=None)))
+
+
 def test_the_signature_is_carried_and_never_judged() -> None:
     signed = patched(PAIR, signed={"initials": "AB", "at": "2024-05-01 10:00"})
     first, second = report_on(signed), report_on(PAIR)

@@ -15,6 +15,8 @@ import { pointList, putPoint } from "./points.js";
  * @typedef {{form: import("../form.js").Form, state: import("../state.js").State, goTo: (field: string) => void}} Tools
  */
 
+/** @type {import("./content.js").Section} what is shown of a section while there is no answer */
+const NOTHING = { title: { code: "" }, rows: [], asks: [], notes: [] };
 const PLACES = /** @type {const} */ (["right", "left", "pair"]);
 
 /** @param {string} name @param {Tools} tools */
@@ -87,14 +89,14 @@ export function createPanel(name, tools) {
 
   function drawBody() {
     stale = false;
-    const section = report?.sections?.[name];
+    const section = report?.sections?.[name] ?? NOTHING;
     // Each point stands with its own fields; the table need not say it again.
-    const rows = (section?.rows ?? []).filter(({ code }) => code !== "field.point");
-    pictures.show(section ? report?.scenes?.[name] : undefined);
-    for (const { eye, show } of points) show(section ? (report?.[eye]?.field?.points ?? []) : []);
-    redraw(table, section ? tableOf(rows, panelName(name)) : null);
-    redraw(notes, section ? notesOf(section.notes) : null);
-    redraw(asks, section ? asksOf(name, section.asks, { goTo, take }) : null);
+    const rows = section.rows.filter(({ code }) => code !== "field.point");
+    pictures.show(report?.scenes?.[name]);
+    for (const { eye, show } of points) show(report?.[eye]?.field?.points ?? []);
+    redraw(table, tableOf(rows, panelName(name)));
+    redraw(notes, notesOf(section.notes));
+    redraw(asks, asksOf(name, section.asks, { goTo, take }));
   }
 
   return {

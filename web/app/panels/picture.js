@@ -15,6 +15,7 @@ const BAR_MM = 10;
 const FOOT_PX = 24;
 /** Where the sheet is printed nothing is laid out yet. */
 const PRINTED_PX = 420;
+const WIDE_MM = 100;
 
 /** @param {Scene[]} scenes @returns {Size} the size that holds each of them */
 export function commonSize(scenes) {
@@ -125,10 +126,15 @@ export function createPicture(id, touch) {
   };
 }
 
+/** @param {Size} size whether a picture needs the width of the sheet to be read */
+export function isWide([across]) {
+  return across > WIDE_MM;
+}
+
 /** @param {string} id @param {Scene} scene @param {Size} size a picture for paper */
 export function printedPicture(id, scene, size) {
   const host = svg("svg", { class: "scene", "aria-hidden": "true", id });
-  draw(host, scene, size, size[0] > 100 ? 1.6 * PRINTED_PX : PRINTED_PX);
+  draw(host, scene, size, isWide(size) ? 2 * PRINTED_PX : PRINTED_PX);
   return host;
 }
 

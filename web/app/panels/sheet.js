@@ -5,7 +5,7 @@ import { EYES } from "../types.js";
 import { say } from "../words.js";
 import { notesOf, printedAsks, tableOf, titleOf } from "./content.js";
 import { panelName } from "./names.js";
-import { captionOf, commonSize, legendOf, printedPicture } from "./picture.js";
+import { captionOf, commonSize, isWide, legendOf, printedPicture } from "./picture.js";
 
 /** @typedef {import("./keeper.js").SectionReport} SectionReport */
 
@@ -18,7 +18,7 @@ function pictures(name, report) {
     const scene = scenes[place];
     if (!scene) return [];
     const size = place === "pair" ? commonSize([scene]) : lenses;
-    return [el("figure", { class: `picture ${place}` }, captionOf(name, place), printedPicture(`print-${name}-${place}`, scene, size))];
+    return [el("figure", { class: `picture ${place} ${isWide(size) ? "wide" : ""}` }, captionOf(name, place), printedPicture(`print-${name}-${place}`, scene, size))];
   });
   return el("div", { class: "scene-pictures" }, ...shown, legendOf(name, Object.values(scenes)));
 }

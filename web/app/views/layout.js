@@ -38,10 +38,21 @@ export function layoutView({ form, state, engine, goTo }) {
     else keeper.cancel();
   }
 
+  /** Whether what stands in the panels is not of the job as it is now, and will not be by itself. */
+  function isEarlier() {
+    return Boolean(standing?.earlier) || (keeper.report !== null && keeper.failed);
+  }
+
+  /** @param {boolean} earlier */
+  function standingText(earlier) {
+    if (!standing?.begun) return say("page.panels.no_order");
+    if (earlier) return say("page.panels.earlier");
+    return keeper.failed ? say("page.panels.failed") : "";
+  }
+
   function show() {
-    const earlier = Boolean(standing?.earlier) || (keeper.report !== null && !keeper.current && keeper.failed);
-    const code = !standing?.begun ? "no_order" : earlier ? "earlier" : keeper.failed ? "failed" : "";
-    const text = code ? say(`page.panels.${code}`) : "";
+    const earlier = isEarlier();
+    const text = standingText(earlier);
     if (said.textContent !== text) said.textContent = text;
     list.classList.toggle("earlier", earlier);
     list.dataset["current"] = String(keeper.current);
