@@ -142,6 +142,44 @@ def test_doubt_of_a_single_lens_counts_the_zero() -> None:
     assert check["doubt"] == pytest.approx(1 - rice_within(0.25, 0.33, math.hypot(0.08, 0.05)), abs=1e-9)
 
 
+def test_uncertainty_of_every_other_figure() -> None:
+    """A cylinder and an add are each the difference of two focus readings, a height of two places."""
+    job = pair("0", lens={"design": "progressive"}, thinning={"rule": "none"})
+    for eye in ("right", "left"):
+        job[eye] = job[eye] | {"sphere": "-5.00", "cylinder": "-1.00", "axis": "90", "add": "2.00"}
+        job["readings"][eye] |= {
+            "sphere": "-5.00",
+            "cylinder": "-1.00",
+            "axis": "90",
+            "add": "2.00",
+            "prp_height_mm": "18",
+            "pd_mm": "31",
+        }
+    job["instrument"]["uncertainty"] |= {"power_d": "0.05", "axis_deg": "0.8", "position_mm": "0.4"}
+    found = {check["id"]: check["uncertainty"] for check in report_on(job)["verdict"]["checks"]}
+    single = {"power": 0.05, "axis": 0.8, "prp.height": 0.4, "prp.distance": 0.4}  # progressives are measured each
+    double = {"cylinder": 0.05 * math.sqrt(2), "add": 0.05 * math.sqrt(2)}
+    pair_of_prisms = {"prism.vertical": 0.08 * math.sqrt(2), "prism.horizontal": 0.08 * math.sqrt(2)}
+    assert found == pytest.approx(single | double | pair_of_prisms, abs=1e-9)
+    job |= {"lens": {"design": "bifocal"}}
+    found = {check["id"]: check["uncertainty"] for check in report_on(job)["verdict"]["checks"]}
+    assert (found["prp.height"], found["prp.distance"]) == pytest.approx((0.4 * math.sqrt(2), 0.4), abs=1e-9)
+
+
+def test_the_worst_group_makes_the_outcome() -> None:
+    """Outside before undecided before unread before within."""
+    job = pair("0.30", decision_rule="guarded")
+    assert report_on(job)["verdict"]["outcome"] == "undecided"
+    job["readings"]["right"]["prism"].append({"amount": "2", "base": "in"})
+    assert report_on(job)["verdict"]["outcome"] == "outside"
+    half = pair("0.30", decision_rule="guarded", edition_options={"prism-alternatives": "both"})
+    for eye in ("right", "left"):
+        half[eye] = half[eye] | {"sphere": "-5.00"}
+    assert report_on(half)["verdict"]["outcome"] == "undecided"  # though the millimetres are still to be read
+    half["readings"]["right"]["prism"] = [{"amount": "0", "base": "up"}]
+    assert report_on(half)["verdict"]["outcome"] == "unread"
+
+
 @pytest.mark.parametrize(("option", "together"), [("either", lambda p, q: 1 - (1 - p) * (1 - q)), ("both", lambda p, q: p * q)])
 def test_doubt_of_alternatives(option: str, together: object) -> None:
     """Prism and millimetres are two measurements: their chances multiply (independence)."""

@@ -202,5 +202,8 @@ def test_the_optical_centre_and_where_decentring_gives_no_prism() -> None:
         report = report_on(patched(oblique, **{"right__cylinder": None, "right__axis": None, **changes}))
         assert report["right"]["oc_from_prp_mm"] is None
         assert code in codes(report)
+    weak = patched(oblique, right__cylinder=None, right__axis=None)
+    assert report_on(patched(weak, right__sphere="-0.25"))["right"]["oc_from_prp_mm"] == {"right_mm": -60, "up_mm": 0}
+    assert report_on(patched(weak, right__sphere="-0.12"))["right"]["oc_from_prp_mm"] is None  # 125 mm: nobody decentres so far
     own = report_on(patched(oblique, lens__aspheric=True, right__aspheric=False))
     assert own["right"]["oc_from_prp_mm"] is not None
