@@ -8,6 +8,7 @@ thinnest place inside, all round the rim and at drilled holes.
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from decimal import Decimal
+from functools import lru_cache
 from operator import mul
 
 from pycore.bench.body import BodyValues, body_values, usual_minimum_centre_mm
@@ -112,6 +113,7 @@ def framing_of(job: Job, order: EyeOrder, due_: Due) -> Framing | None:
     return Framing(lens=lens, values=values, placed=spot)
 
 
+@lru_cache(maxsize=256)
 def edge_of(
     lens: FramedLens, prism: Prism, most: int = MOST_RIM_POINTS, *, weigh: bool = True
 ) -> Edge:
@@ -120,8 +122,8 @@ def edge_of(
     Arguments: `lens`; `prism` prism dioptres; about how many points of the rim are looked at, at
     `most`, besides those next to the extremes; `weigh` whether the volume is wanted too. Returns
     the Edge, in mm and g. Raises OutsideSurfaceError where the lens's surfaces do not reach its
-    rim. Source: exact sagitta and wedge, facts 4.8; weight is density times the sum of thickness
-    over the area.
+    rim. (A pure function, kept because the sections ask for the same.) Source: exact sagitta and
+    wedge, facts 4.8; weight is density times the sum of thickness over the area.
     """
     solid = lens.with_prism(prism)
     start_mm = lens.minimum_centre_mm if lens.centre_mm is None else lens.centre_mm

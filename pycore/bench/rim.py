@@ -28,7 +28,8 @@ _ROOT = math.sqrt(6.0)
 RADII = (((6.0 - _ROOT) / 10.0, (9.0 - _ROOT) / 36.0), ((6.0 + _ROOT) / 10.0, (9.0 + _ROOT) / 36.0))
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
+# Compared by identity: `rim_of` keeps one object for one frame, and a rim's points are many.
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Rim:
     """Places of one lens, each (right_mm, up_mm) from its prism reference point.
 

@@ -260,7 +260,7 @@ def _thickness(
     if framing is None:
         return given_mm, None, None
     try:
-        edge = edge_of(replace(framing.lens, centre_mm=None), prism, weigh=False)
+        edge = edge_of(replace(framing.lens, centre_mm=None), prism)
     except OutsideSurfaceError:
         return given_mm, None, None
     return given_mm if body.thickness_given else edge.centre_mm, edge.centre_mm, edge.governs

@@ -52,5 +52,6 @@ def add_sections(report: Entry, case: Case, wanted: Sequence[str], *, scenes: bo
                 for code, params in answer.notes
             ],
         }
-        if scenes and answer.scenes:
-            report["scenes"][name] = dict(answer.scenes)
+        drawn = answer.scenes if scenes else {}
+        if drawn:
+            report["scenes"][name] = dict(drawn)

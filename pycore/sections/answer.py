@@ -1,6 +1,6 @@
 """What every section answers with: numbers for callers, texts and pictures for people."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field
 
 from pycore.names import Entry
@@ -49,7 +49,7 @@ class SectionAnswer:
 
     `own` goes under the section's key of the report, `eyes` under the eyes' key of that name;
     `title` is a code of words `section_titles` and says the answer in one line; `notes` are
-    codes of words `section_notes` with their texts; `scenes` the pictures by name.
+    codes of words `section_notes` with their texts; `draw` makes the pictures.
     """
 
     title: str
@@ -59,4 +59,9 @@ class SectionAnswer:
     rows: tuple[Row, ...] = ()
     asks: tuple[Ask, ...] = ()
     notes: tuple[tuple[str, Mapping[str, str]], ...] = ()
-    scenes: Mapping[str, Scene] = field(default_factory=dict)
+    draw: Callable[[], Mapping[str, Scene]] = dict
+
+    @property
+    def scenes(self) -> Mapping[str, Scene]:
+        """The pictures by name, drawn when they are asked for."""
+        return self.draw()

@@ -67,7 +67,7 @@ def edge_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(case, framings, edges, options)),
         asks=asks,
         notes=(*notes, *_notes(case, framings, edges)),
-        scenes={
+        draw=lambda: {
             eye: edge_scene(framings[eye].lens, case.dues[eye].expected, edge, _marks(edge))
             for eye, edge in edges.items()
         },

@@ -62,7 +62,7 @@ def field_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(texts, agreement)),
         asks=tuple(_asks(job, lenses, readings)),
         notes=tuple(field_notes(lenses, readings, agreement)),
-        scenes=_scenes(job, case.dues, lenses, readings, agreement),
+        draw=lambda: _scenes(job, case.dues, lenses, readings, agreement),
     )
 
 

@@ -41,7 +41,7 @@ def layout_section(case: Case) -> SectionAnswer:
         rows=tuple(layout_rows(frame_pd_mm, lenses)),
         asks=tuple(_asks(rim, lenses)),
         notes=(*frame_notes(job.frame, rim), *lens_notes(job, lenses)),
-        scenes=_scenes(box, rim, lenses),
+        draw=lambda: _scenes(box, rim, lenses),
     )
 
 

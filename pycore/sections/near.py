@@ -55,7 +55,7 @@ def near_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(case, near, lenses, effects, eyes, own)),
         asks=tuple(_asks(case, near, lenses)),
         notes=tuple(near_notes(case, near, lenses, effects)),
-        scenes=_scenes(case, near, lenses),
+        draw=lambda: _scenes(case, near, lenses),
     )
 
 

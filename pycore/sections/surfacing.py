@@ -50,7 +50,7 @@ def surfacing_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(lenses, own)),
         asks=tuple(_asks(lenses)),
         notes=tuple(_notes(case, lenses)),
-        scenes={eye: surfacing_scene(lens) for eye, lens in lenses.items()},
+        draw=lambda: {eye: surfacing_scene(lens) for eye, lens in lenses.items()},
     )
 
 
