@@ -153,6 +153,15 @@ def test_what_is_shown_agrees_with_the_outcome(right: Decimal, limit: str, more:
     assert "-" not in check["shown"]["deviation"]
 
 
+def test_what_is_shown_is_rounded_half_to_even_with_the_true_minus() -> None:
+    seen = patched(PAIR, right__prism=words("0.125 in", "0.375 up"), readings__right__prism=words("0.12 in", "0.3749 up"))
+    right = report_on(seen)["right"]
+    assert (right["prescribed"]["shown"]["horizontal"], right["prescribed"]["shown"]["vertical"]) == ("0.12", "0.38")
+    assert right["error"]["shown"]["vertical"] == "0.00"
+    check = checks_of(report_on(read(PAIR, words("0.1 down"), words("0 up"))), "prism.vertical")[0]
+    assert (check["shown"]["deviation"], check["shown"]["margin"]) == ("−0.10", "0.23")
+
+
 def test_a_sign_must_be_written_unless_there_is_nothing_to_sign() -> None:
     for field in ("sphere", "cylinder"):
         job = patched(patched(PAIR, right__cylinder="-1.00", right__axis="90"), **{f"right__{field}": "1.25"})

@@ -89,6 +89,18 @@ def test_stated_values_replace_the_prescription() -> None:
     assert report_on(patched(job, left__stated={"add": "2.10"}))["left"]["thinning"]["y"] == -1.4
 
 
+def test_thinning_known_in_one_lens_only() -> None:
+    """The maker states one lens with its thinning and nobody knows the other's: the pair has no vertical order."""
+    stated = {"prism": words("1.33 down"), "includes_thinning": True}
+    job = read(patched(PROGRESSIVE, right__stated=stated), words("1.33 down"), words("1.33 down"))
+    report = report_on(job)
+    assert (report["right"]["expected_known"], report["left"]["expected_known"]) == ("full", "horizontal")
+    assert not checks_of(report, "prism.vertical")
+    assert report["verdict"]["outcome"] == "unread"
+    assert "thinning_found" not in report["pair"]
+    assert outcome(patched(job, left__stated=stated)) == "within"
+
+
 @pytest.mark.parametrize("thinning", [None, {"rule": "none"}, {"rule": "two-thirds"}])
 def test_matching_an_existing_partner(thinning: Job | None) -> None:
     """The new lens must agree with the old one (the technical brief of 1998: match the old thinning)."""
