@@ -8,6 +8,7 @@ NANO = Decimal("1E-9")
 PICO = Decimal("1E-12")
 TRUE_MINUS = "\u2212"
 
+_LAST_PLACE = tuple(Decimal(1).scaleb(-places) for places in range(16))
 _NUMBER = re.compile(r"([+-]?)([0-9]+[.,]?[0-9]*|[.,][0-9]+)", re.ASCII)
 _EXPONENT = re.compile(r"[+-]?[0-9.,]+[eE][+-]?[0-9]+", re.ASCII)
 _THOUSANDS = re.compile(r"[+-]?[0-9]{1,3}([., '][0-9]{3})+[., '][0-9]*", re.ASCII)
@@ -92,7 +93,7 @@ def fixed(value: Decimal, places: int) -> str:
     >>> fixed(Decimal("-0.125"), 2), fixed(Decimal("-0.001"), 2)
     ('\u22120.12', '0.00')
     """
-    rounded = value.quantize(Decimal(1).scaleb(-places), ROUND_HALF_EVEN)
+    rounded = value.quantize(_LAST_PLACE[places], ROUND_HALF_EVEN)
     text = format(abs(rounded), "f")
     return TRUE_MINUS + text if rounded < 0 else text
 

@@ -2,7 +2,7 @@
 
 import json
 from collections.abc import Mapping
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any
 
 from pycore.data import package_text
@@ -31,10 +31,14 @@ def say(code: str, **params: str) -> str:
     >>> say("no.such-code")
     'no.such-code'
     """
-    group, _, name = code.partition(".")
-    sentence = table().get(group, {}).get(name)
-    if not isinstance(sentence, str):
-        return code
+    sentence = _sentence(code)
     for key, value in params.items():
         sentence = sentence.replace("{" + key + "}", value)
     return sentence
+
+
+@lru_cache(maxsize=2000)
+def _sentence(code: str) -> str:
+    group, _, name = code.partition(".")
+    sentence = table().get(group, {}).get(name)
+    return sentence if isinstance(sentence, str) else code

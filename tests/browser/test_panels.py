@@ -256,6 +256,8 @@ def test_the_whole_body_can_be_typed_and_stands_in_the_job(opened: Opener, tmp_p
     assert (job["right"]["design"], job["left"]["segment"]["shape"]) == ("progressive", "flat-top")
     assert (job["centration_shift_mm"], job["field_limit"]) == ("0.25", "0.75")
     assert job["points"] == {"left": [{"right_mm": "4", "up_mm": "-3"}]}
+    page.evaluate("window.dispatchEvent(new Event('beforeprint'))")
+    assert f"frame.outline_mm = {' '.join(radii)}" in (page.locator("#sheet").text_content() or ""), "one line on paper"
 
 
 def test_a_wrong_radius_is_said_at_the_list_and_the_earlier_answer_marked(opened: Opener) -> None:

@@ -178,3 +178,19 @@ test("where workers are refused, the engine runs on the page's own thread", asyn
   assert.deepEqual(await engine.ask({ do: "report" }, { lane: "a" }), { format: "here" });
   assert.equal(engine.mode, "main-thread");
 });
+
+test("a question that has not begun can be taken back; one that is being answered goes on", async () => {
+  const engine = await startAsked();
+  const running = engine.ask({ do: "running" }, { lane: "a" });
+  const waiting = engine.ask({ do: "waiting" }, { lane: "b" });
+  const newest = engine.ask({ do: "newest" }, { lane: "c" });
+  engine.cancel("a");
+  engine.cancel("b");
+  engine.cancel("nobody's");
+  assert.equal(await waiting, null);
+  FakeWorker.last.answer();
+  assert.equal((await running).what, "running");
+  assert.equal(FakeWorker.last.asked.at(-1).do, "newest", "what was taken back is never sent");
+  FakeWorker.last.answer();
+  assert.equal((await newest).what, "newest");
+});

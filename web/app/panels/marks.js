@@ -13,11 +13,11 @@ import { say, shown } from "../words.js";
 /** @type {Record<string, Stroke[]>} */
 const GLYPHS = {
   prp: [
-    ["circle", { r: 8 }],
-    ["circle", { r: 2.4 }, "solid"],
+    ["circle", { r: 9 }],
+    ["circle", { r: 1.6 }, "solid"],
   ],
   oc: [["circle", { r: 5 }, "solid"]],
-  pupil: [["circle", { r: 4.5 }]],
+  pupil: [["circle", { r: 5 }]],
   "boxing-centre": [
     ["line", { x1: -5, y1: -5, x2: 5, y2: 5 }],
     ["line", { x1: -5, y1: 5, x2: 5, y2: -5 }],
