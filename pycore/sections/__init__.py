@@ -1,7 +1,8 @@
 """The sections of the report beside order and verdict: one question, one module each.
 
 The list is `SECTIONS`; a section's name is its module here and in `bench`, its picture in
-`scenes`, its key in the report, its words.
+`scenes`, its key in the report, its words. A module is loaded when its section is first asked
+for, so that the page's start does not wait for what nobody has opened.
 """
 
 from collections.abc import Callable, Mapping, Sequence
@@ -9,26 +10,72 @@ from collections.abc import Callable, Mapping, Sequence
 from pycore.case import Case
 from pycore.names import Entry, spoken
 from pycore.sections.answer import SectionAnswer
-from pycore.sections.colour import colour_section
-from pycore.sections.edge import edge_section
-from pycore.sections.field import field_section
-from pycore.sections.layout import layout_section
-from pycore.sections.near import near_section
-from pycore.sections.split import split_section
-from pycore.sections.surfacing import surfacing_section
-from pycore.sections.thinning import thinning_section
-from pycore.sections.wear import wear_section
+
+
+def _layout(case: Case) -> SectionAnswer:
+    from pycore.sections.layout import layout_section
+
+    return layout_section(case)
+
+
+def _field(case: Case) -> SectionAnswer:
+    from pycore.sections.field import field_section
+
+    return field_section(case)
+
+
+def _edge(case: Case) -> SectionAnswer:
+    from pycore.sections.edge import edge_section
+
+    return edge_section(case)
+
+
+def _thinning(case: Case) -> SectionAnswer:
+    from pycore.sections.thinning import thinning_section
+
+    return thinning_section(case)
+
+
+def _split(case: Case) -> SectionAnswer:
+    from pycore.sections.split import split_section
+
+    return split_section(case)
+
+
+def _near(case: Case) -> SectionAnswer:
+    from pycore.sections.near import near_section
+
+    return near_section(case)
+
+
+def _wear(case: Case) -> SectionAnswer:
+    from pycore.sections.wear import wear_section
+
+    return wear_section(case)
+
+
+def _surfacing(case: Case) -> SectionAnswer:
+    from pycore.sections.surfacing import surfacing_section
+
+    return surfacing_section(case)
+
+
+def _colour(case: Case) -> SectionAnswer:
+    from pycore.sections.colour import colour_section
+
+    return colour_section(case)
+
 
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
-    "layout": layout_section,
-    "field": field_section,
-    "edge": edge_section,
-    "thinning": thinning_section,
-    "split": split_section,
-    "near": near_section,
-    "wear": wear_section,
-    "surfacing": surfacing_section,
-    "colour": colour_section,
+    "layout": _layout,
+    "field": _field,
+    "edge": _edge,
+    "thinning": _thinning,
+    "split": _split,
+    "near": _near,
+    "wear": _wear,
+    "surfacing": _surfacing,
+    "colour": _colour,
 }
 
 

@@ -3,6 +3,7 @@
  * wins, and a worker that fails or takes too long is ended and started anew.
  */
 import { afterFirstPaint, payload, scriptUrl } from "./boot.js";
+import { NAMES } from "./section-names.js";
 
 /** @typedef {"reading" | "starting" | "ready" | "restarted" | "failed"} EngineState */
 /** @typedef {{do: string, [key: string]: unknown}} EngineRequest the request without `format` and `sequence` */
@@ -19,6 +20,8 @@ import { afterFirstPaint, payload, scriptUrl } from "./boot.js";
 
 const TIME_LIMIT_MS = 20000;
 const START_LIMIT_MS = 120000;
+/** After the start: long enough that nobody is likely to wait for the first answer any more. */
+const IDLE_MS = 1500;
 
 /**
  * Opens a worker made of the engine's own text, or, where workers are refused, runs the engine on this thread.
@@ -167,6 +170,14 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
     const demonstration = await ask({ do: "demonstration" }, { lane: "warm-up" });
     if (demonstration?.job) {
       await ask({ do: "report", job: demonstration.job, sections: [], scenes: true }, { lane: "warm-up" });
+      setTimeout(() => loadSections(demonstration.job), IDLE_MS);
+    }
+  };
+
+  // Each section's code is loaded when it is first asked for; here one by one, so that nobody waits behind them all.
+  const loadSections = async (/** @type {unknown} */ job) => {
+    for (const name of NAMES) {
+      await ask({ do: "report", job, sections: [name], scenes: true }, { lane: "warm-up" });
     }
   };
 

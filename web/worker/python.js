@@ -55,5 +55,10 @@ export async function startPython(pyodideBehind, wasm, python) {
     env: { HOME, PYTHONHASHSEED: "0" },
     stdin: () => null,
   });
-  return pyodide.pyimport("pycore.api").handle;
+  const { handle } = pyodide.pyimport("pycore.api");
+  // What is loaded now stays; looking it over again and again would only make some keystrokes late.
+  const collector = pyodide.pyimport("gc");
+  collector.freeze();
+  collector.set_threshold(50_000, 50, 100);
+  return handle;
 }

@@ -1,8 +1,6 @@
-/** The sections of the report as the page shows them, in the order of their panels. */
+/** What sections and their fields are called on the page. */
 
 import { has, say, shown } from "../words.js";
-
-export const NAMES = ["layout", "field", "near", "edge", "thinning", "split", "wear", "surfacing", "colour"];
 
 /** @param {string} name of a section */
 export function panelName(name) {

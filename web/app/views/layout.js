@@ -3,7 +3,7 @@
 import { el } from "../dom.js";
 import { toJob } from "../job.js";
 import { createKeeper } from "../panels/keeper.js";
-import { NAMES } from "../panels/names.js";
+import { NAMES } from "../section-names.js";
 import { createPanel } from "../panels/panel.js";
 import { printedSections } from "../panels/sheet.js";
 import { say } from "../words.js";
