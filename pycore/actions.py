@@ -18,7 +18,6 @@ from pycore.job.bench import Instrument, read_instrument, taken_by_compensator
 from pycore.job.body import Lens
 from pycore.job.document import PAIR_PD_MM, Job, read_job
 from pycore.job.fields import Fields
-from pycore.job.line import read_line
 from pycore.job.order import EyeOrder, read_eye
 from pycore.names import Entry
 from pycore.optics.prism import EYES, Eye, Prism, horizontal_word, vertical_word
@@ -201,6 +200,8 @@ def _read_order(envelope: Source, fields: Fields) -> Entry:
         _refuse("text-expected", "line", str(line), "type-text")
     if bases not in ("360", "180"):
         _refuse("choice-unknown", "bases", str(bases), "choose-one", allowed="360, 180")
+    from pycore.job.line import read_line  # here, so that the start does not wait for it
+
     reading = read_line(line, bases)
     if reading.errors:
         raise RefusedError(reading.errors)
