@@ -55,10 +55,12 @@ export async function startPython(pyodideBehind, wasm, python) {
     env: { HOME, PYTHONHASHSEED: "0" },
     stdin: () => null,
   });
-  const { handle } = pyodide.pyimport("pycore.api");
-  // What is loaded now stays; looking it over again and again would only make some keystrokes late.
+  // What is loaded now stays; looking it over again and again would only make the start and some keystrokes late.
   const collector = pyodide.pyimport("gc");
+  collector.disable();
+  const { handle } = pyodide.pyimport("pycore.api");
   collector.freeze();
+  collector.enable();
   collector.set_threshold(50_000, 50, 100);
   return handle;
 }
