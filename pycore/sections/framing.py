@@ -12,6 +12,7 @@ from pycore.job.document import Job
 from pycore.names import Entry, plain
 from pycore.optics.prism import EYES, Eye
 from pycore.sections.answer import Ask, Row
+from pycore.sections.body_asks import body_asks
 from pycore.words import say
 
 PLACES = ("nasal", "top-nasal", "top", "top-temporal", "temporal", "bottom-temporal", "bottom")
@@ -35,25 +36,22 @@ def asks_for(framings: Iterable[Framing], job: Job) -> tuple[Ask, ...]:
 
     Arguments: `framings`; `job`. Returns the asks.
     """
-    usual: dict[str, list[str]] = {}
+    framings = tuple(framings)
     outline = outline_of(job.frame)
     if outline is None:
         return tuple(Ask(field=field) for field in BOX if _lacks(job, field))
-    for field, text in outline.assumed:
-        usual[field] = [text]
-    unknown: set[str] = set()
+    placed: dict[str, str] = dict(outline.assumed)
+    taken: dict[Eye, dict[str, str]] = {}
     for framing in framings:
-        values = framing.values
         names = [f"lens.{name}" for name in MATERIAL]
-        taken = {name: values.usual[name] for name in names if name in values.usual}
-        for field, text in {**taken, **framing.placed.usual}.items():
-            texts = usual.setdefault(field, [])
-            if text not in texts:
-                texts.append(text)
-        if values.density_g_cm3 is None:
-            unknown.add("lens.density_g_cm3")
-    asks = [Ask(field=f, usual=", ".join(texts), used=True) for f, texts in usual.items()]
-    return tuple(asks + [Ask(field=field) for field in sorted(unknown)])
+        usual = framing.values.usual
+        taken[framing.lens.rim.eye] = {name: usual[name] for name in names if name in usual}
+        placed |= framing.placed.usual
+    asks = [Ask(field=field, usual=text, used=True) for field, text in placed.items()]
+    asks += body_asks(taken) if taken else ()
+    if any(framing.values.density_g_cm3 is None for framing in framings):
+        asks.append(Ask(field="lens.density_g_cm3"))
+    return tuple(asks)
 
 
 def _lacks(job: Job, field: str) -> bool:

@@ -13,7 +13,7 @@ from playwright.sync_api import Browser, BrowserContext, Page, expect
 ROOT = Path(__file__).resolve().parents[2]
 SCREENS = ROOT / "test-results" / "screens"
 AXE = (ROOT / "web" / "node_modules" / "axe-core" / "axe.min.js").read_text("utf-8")
-VIEWS = ("order", "read", "decide", "keep", "bench")
+VIEWS = ("order", "layout", "read", "decide", "keep", "bench")
 THEMES: dict[str, dict[str, Any]] = {
     "light": {"color_scheme": "light"},
     "dark": {"color_scheme": "dark"},
