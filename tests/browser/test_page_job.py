@@ -453,6 +453,6 @@ def test_an_edition_of_the_shop_judges_as_the_shops_own(page_from_disk: Page, tm
     page.locator("details.check").first.locator("summary").click()
     expect(page.locator("details.check").first).to_contain_text("the shop's own")
     expect(page.locator("details.check").first).not_to_contain_text("published")
-    page.wait_for_timeout(2000)  # what is not yet saved may be lost by leaving; this is about the edition
+    expect(page.locator(".save")).to_have_text("saved")  # each change takes that word away until it is true again
     page.reload()
     expect(page.locator(".decide-head .word")).to_have_text("Outside", timeout=60_000)

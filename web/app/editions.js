@@ -15,8 +15,9 @@ export function shopEditions({ engine, listed }) {
   /** @type {import("./store.js").Store|null} */
   let store = null;
 
-  async function list() {
-    const given = await engine.ask({ do: "list-editions", editions }, { lane: "editions" });
+  /** @param {{idle?: boolean}} [how] `idle` at the start, when the first answer goes before */
+  async function list({ idle = false } = {}) {
+    const given = await engine.ask({ do: "list-editions", editions }, { lane: "editions", idle });
     if (given?.["editions"]) listed(given["editions"]);
   }
 
@@ -29,7 +30,7 @@ export function shopEditions({ engine, listed }) {
     async open(opened) {
       store = opened;
       editions = await opened.all("editions");
-      if (editions.length) await list();
+      list({ idle: true });
     },
     /** @param {unknown} edition @returns {Promise<import("./types.js").Fault[]>} what is wrong with it; nothing where it was taken */
     async add(edition) {

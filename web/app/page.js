@@ -290,7 +290,7 @@ export function startPage(startEngine) {
     })
     .catch(() => top.saved("off"));
 
-  editions.list();
+  editions.list({ idle: true });
   top.show(settings.view);
   draw();
   keypad.refresh();
