@@ -167,7 +167,7 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS, q
         warmUp();
         sendNext();
       } else if (data.kind === "answer" && data.id === running?.id) {
-        if (!running.idle) {
+        if (!running?.idle) {
           somebodyAsks();
         }
         settle(JSON.parse(data.text));
