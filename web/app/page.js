@@ -12,7 +12,7 @@ import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
 import { orderLine } from "./order-line.js";
 import { drawSheet } from "./print.js";
-import { applyTheme, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
 import { openStore } from "./store.js";
@@ -23,7 +23,7 @@ import { keepView } from "./views/keep.js";
 import { layoutView } from "./views/layout.js";
 import { orderView } from "./views/order.js";
 import { readView } from "./views/read.js";
-import { say, useComma } from "./words.js";
+import { say, writeWith } from "./words.js";
 
 /**
  * @typedef {import("./types.js").Report} Report
@@ -35,8 +35,8 @@ import { say, useComma } from "./words.js";
 export function startPage(startEngine) {
   const root = document.documentElement;
   const settings = loadSettings();
-  applyTheme(settings);
-  useComma(settings.decimal === "comma");
+  applyLook(settings);
+  writeWith(settings);
 
   const state = createState();
   const form = createForm(state);
@@ -249,8 +249,8 @@ export function startPage(startEngine) {
 
   function settingsChanged() {
     saveSettings(settings);
-    applyTheme(settings);
-    useComma(settings.decimal === "comma");
+    applyLook(settings);
+    writeWith(settings);
     keypad.refresh();
     top.keypad();
     line.ask();
