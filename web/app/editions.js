@@ -14,11 +14,14 @@ export function shopEditions({ engine, listed }) {
   let editions = [];
   /** @type {import("./store.js").Store|null} */
   let store = null;
+  let known = false;
 
   /** @param {{idle?: boolean}} [how] `idle` at the start, when the first answer goes before */
   async function list({ idle = false } = {}) {
     const given = await engine.ask({ do: "list-editions", editions }, { lane: "editions", idle });
-    if (given?.["editions"]) listed(given["editions"]);
+    if (!given?.["editions"]) return;
+    known = true;
+    listed(given["editions"]);
   }
 
   return {
@@ -26,6 +29,10 @@ export function shopEditions({ engine, listed }) {
       return editions;
     },
     list,
+    /** Asks for the list unless it is there: the first answer is drawn, and the next thing may be to choose. */
+    listOnce() {
+      if (!known) list();
+    },
     /** @param {import("./store.js").Store} opened */
     async open(opened) {
       store = opened;

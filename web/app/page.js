@@ -1,5 +1,6 @@
 /** Joins the parts: state to form, form to engine, answer to pictures. One way round, no return. */
 
+import { demonstration } from "./demonstration.js";
 import { watchDock } from "./dock.js";
 import { byId, el, redraw } from "./dom.js";
 import { copyText, download, fileName } from "./files.js";
@@ -63,6 +64,8 @@ export function startPage(startEngine) {
   });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
+  const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
+  const demonstrate = invented.load;
   const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
@@ -90,6 +93,7 @@ export function startPage(startEngine) {
     drawView(settings.view);
     strip.draw(standing);
     top.draw();
+    invented.draw();
     top.queries(
       (standing.report?.notes ?? []).filter(({ about, severity }) => about === "order" && severity === "warning").length,
     );
@@ -137,6 +141,7 @@ export function startPage(startEngine) {
     standing.earlier = faults.length > 0 && standing.report !== null;
     if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
     draw();
+    editions.listOnce();
     views.layout.follow(standing, editions.all);
     root.dataset["drawn"] = String(given.sequence ?? "");
     if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
@@ -153,16 +158,6 @@ export function startPage(startEngine) {
     views.order.useEditions(list);
     views.bench.showEditions(list.filter(({ provenance }) => provenance.includes("local")));
     if (state.entries["edition"]) answer();
-  }
-
-  async function demonstrate() {
-    const given = await engine.ask({ do: "demonstration" }, { lane: "demonstration" });
-    if (!given?.["job"]) {
-      if (given?.["errors"]) refuse(given["errors"]);
-      return;
-    }
-    state.replace(guestJob(state.entries, fromJob(given["job"])));
-    top.show("read");
   }
 
   function newJob() {
