@@ -8,6 +8,7 @@ so that it is asked for where it is used and never taken silently.
 from collections.abc import Mapping
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
+from functools import lru_cache
 
 from pycore.job.body import Frame
 from pycore.job.order import EyeOrder
@@ -77,10 +78,12 @@ def usual_minimum_centre_mm(index: Decimal) -> Decimal:
     return Decimal("2.0") if index < LOW_INDEX else Decimal("1.5")
 
 
+@lru_cache(maxsize=8)
 def body_values(order: EyeOrder, frame: Frame) -> BodyValues | None:
     """One lens's body from the order, with usual values where it says nothing.
 
-    Arguments: `order` of the eye; `frame`. Returns the values, or None without a power.
+    Arguments: `order` of the eye; `frame`. Returns the values, or None without a power. (A pure
+    function, kept because most sections ask the same.)
     """
     power = order.verified.power
     if power is None:
