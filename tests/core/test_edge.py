@@ -584,3 +584,13 @@ def test_the_picture_is_to_scale() -> None:
 
 def test_rims_are_none_without_a_box() -> None:
     assert rim_of(Frame(), "right", 0.0, 0.0) is None
+
+
+def test_the_estimated_thickness_knows_the_prism() -> None:
+    """Facts 4.8: a fixed thin edge raises the centre by P·r / 100(n - 1): 4 Δ, 25 mm, n 1.5 is 2.0 mm; by hand."""
+    job = plain_job({"sphere": "0.00", "prism": [{"amount": "4", "base": "in"}]}, lens__index="1.5", frame__ed_mm="50")
+    order = read_job(job).right
+    assert order
+    values = body_values(order, read_job(job).frame)
+    assert values
+    assert values.thickness_mm == Decimal("3.2")  # on the least edge of 1.2 mm

@@ -482,3 +482,13 @@ def test_every_code_has_its_words(job: Job) -> None:
     assert {f"layout.{code}" for code in notes(answer)} <= set(WORDS["section_notes"])
     assert not [row for row in answer.rows if "section_texts" in row.right + row.left]
     json.dumps([answer.own, dict(answer.scenes)], allow_nan=False)
+
+
+def test_a_segment_without_a_width_is_asked_for_it() -> None:
+    """It stands on the drawing only when its width is known; a full-width one needs none."""
+    segment = {"shape": "flat-top", "height_mm": "14", "inset_mm": "2"}
+    for shape, width, asked in (("flat-top", None, True), ("flat-top", "28", False), ("full-width", None, False)):
+        given = {**segment, "shape": shape} | ({"width_mm": width} if width else {})
+        job = patched(demonstration(), lens__design="bifocal", right__segment=given)
+        fields = asks(layout(job))
+        assert ("right.segment.width_mm" in fields) is asked

@@ -282,7 +282,7 @@ def test_the_picture_shows_the_edges_before_and_after(rule: str, right: Job, lef
             assert bare[number][end][0] - front[end][0] == pytest.approx(choice(found, "none")[eye][at], abs=0.002)
             assert back[end][1] == front[end][1]
     named = [shape["text"] for shape in scene["shapes"] if shape["role"] == "way"]
-    assert named[0].startswith({"fits": "fits both", "two-thirds": "two thirds of the add"}[rule])
+    assert named[0].startswith({"fits": "what fits", "two-thirds": "two thirds of the add"}[rule])
     left_mm, low, right_mm, high = scene["extent"]
     assert all(left_mm < x < right_mm and low < y < high for body in bodies for x, y in body)
 
