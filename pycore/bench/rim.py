@@ -18,7 +18,7 @@ from pycore.optics.prism import Eye
 Place = tuple[float, float]
 
 MOST_RIM_POINTS = 72
-SECTORS = 12
+SECTORS = 16
 HOLE_FROM_RIM_MM = 3.0  # from the rim on the line of the datum, both sides: common practice
 # From memory (facts section 6): one eye's distance 27 to 36, near inset 1.5 to 2.5, DBL 14 to 24.
 _USUAL_MM = {"dbl_mm": Decimal(18), "pd_mm": Decimal(32), "near_pd_mm": Decimal(30)}
