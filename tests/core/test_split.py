@@ -94,7 +94,7 @@ def test_hundreds_of_pairs_keep_their_sum_and_come_out_equal(capsys: pytest.Capt
         orders = [{"sphere": f"{draw.uniform(-5, 3):+.2f}", "cylinder": f"{draw.uniform(-2, 2):+.2f}", "axis": "40"} for _ in EYES]
         job = plain_job(*orders)
         lenses = {eye: framing(job, eye).lens for eye in EYES}
-        for way in shares(ordered, {eye: NO_PRISM for eye in EYES}, lenses):
+        for way in shares(ordered, dict.fromkeys(EYES, NO_PRISM), lenses):
             right, left = (np.array([float(way.prisms[eye].x), float(way.prisms[eye].y)]) for eye in EYES)
             kept = max(kept, float(np.abs(right - left - (x[0] - x[1], y[0] - y[1])).max()))
             if way.kind in ("equal-edges", "equal-weight") and way.reached:
