@@ -7,6 +7,7 @@ import { copyText, download, fileName } from "./files.js";
 import { shopEditions } from "./editions.js";
 import { createForm } from "./form.js";
 import { frame } from "./frame.js";
+import { createImagine } from "./imagine.js";
 import { fromJob, guestJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
@@ -66,12 +67,13 @@ export function startPage(startEngine) {
   const line = orderLine({ engine, state, settings });
   const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
   const demonstrate = invented.load;
+  const imagine = createImagine({ engine, state, refuse, draw, show: () => head?.show("read") });
   const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     layout: layoutView({ form, state, engine, goTo }),
-    read: readView({ form, state, steps }),
-    decide: decideView({ state, sign, print: () => window.print(), copy }),
+    read: readView({ form, state, steps, imagined: imagine.node }),
+    decide: decideView({ form, state, engine, goTo, imagine: imagine.ask, sign, print: () => window.print(), copy }),
     keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
     bench: benchView({ form, settings, settingsChanged, erase, editions }),
   };
@@ -104,7 +106,7 @@ export function startPage(startEngine) {
   /** @param {string} name only what is seen is drawn; the others are when they are shown */
   function drawView(name) {
     const view = views[/** @type {keyof typeof views} */ (name)];
-    if (view && "draw" in view) view.draw(standing);
+    if (view && "draw" in view) view.draw(name === "read" ? imagine.applied(standing) : standing);
   }
 
   /** @returns {Record<string, string>} what was understood, by the page's own places */
@@ -142,7 +144,7 @@ export function startPage(startEngine) {
     if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
     draw();
     editions.listOnce();
-    views.layout.follow(standing, editions.all);
+    for (const view of [views.layout, views.decide]) view.follow(standing, editions.all);
     root.dataset["drawn"] = String(given.sequence ?? "");
     if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
     hash = await hashOf(JSON.stringify(built.job));
@@ -271,7 +273,7 @@ export function startPage(startEngine) {
   }
 
   window.addEventListener("beforeprint", () =>
-    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()), sections: views.layout.sheet() }),
+    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()), sections: [views.decide.sheet(), views.layout.sheet()] }),
   );
   listenToKeys({ state });
   watchDock();

@@ -68,8 +68,9 @@ function pointLines(report) {
  * @param {Form} tools.form
  * @param {State} tools.state
  * @param {ReturnType<typeof import("../steps.js").createSteps>} tools.steps
+ * @param {HTMLElement} tools.imagined says that what the dials show is not read but imagined
  */
-export function readView({ form, state, steps }) {
+export function readView({ form, state, steps, imagined }) {
   const summary = el("div", { class: "order-summary" });
   const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
   const notes = el("div", { class: "reading-notes" });
@@ -79,6 +80,7 @@ export function readView({ form, state, steps }) {
     { class: "view read" },
     el("h2", { class: "hidden" }, say("page.nav.read")),
     summary,
+    imagined,
     pair,
     notes,
     el("div", { class: "pair" }, ...EYES.map((eye) => readingCard(eye, form, state))),
