@@ -269,7 +269,9 @@ def _with_own(
         if not likeliest or reach + math.log(likeliest) < least:
             continue
         others = [fits[one] for one in beside]
-        for one in _weighed(bench, common, eye, owns[eye][1:]):
+        # Nothing happens twice to one lens: it would only undo what it did.
+        mine = [own for own in owns[eye][1:] if own.code != common.code]
+        for one in _weighed(bench, common, eye, mine):
             weight = log_rest + one.log_prior + joined(one.fit, *others)
             yield common, {**none, eye: one.own}, weight
 

@@ -181,7 +181,7 @@ def turned(lens: Lens, angle_deg: float, spread_deg: float) -> Lens:
 def _read_at(lens: Lens, right_mm: float, up_mm: float, *spread_mm: Vector) -> Lens:
     """The lens read at another point, mm from the ordered one; p(r) = p0 - F r."""
     x, y = lens.moved(-right_mm, -up_mm)
-    columns = tuple(lens.moved(*each) for each in spread_mm)
+    columns = tuple(lens.moved(-across, -along) for across, along in spread_mm)
     return lens._replace(sx=lens.sx + x, sy=lens.sy + y, slips=lens.slips + columns)
 
 

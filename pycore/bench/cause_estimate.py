@@ -5,6 +5,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from pycore.bench.cause import Bench, Story
+from pycore.bench.cause_effect import turns
 from pycore.bench.cause_fit import dot, inverse_root
 from pycore.optics.prism import Eye
 
@@ -76,7 +77,7 @@ def _solved(
         return [], [], whole
     pull = [dot(column, misfit) for column in columns]
     rows = [
-        [dot(one, two) + (one is two) for two in columns] for one in columns
+        [dot(one, two) + (i == j) for j, two in enumerate(columns)] for i, one in enumerate(columns)
     ]
     inverse, _ = inverse_root(rows)
     half = [dot(row, pull) for row in inverse]
@@ -87,3 +88,97 @@ def _solved(
         math.sqrt(sum([row[at] ** 2 for row in inverse])) for at in range(len(half))
     ]
     return means, deviations, whole - dot(half, half)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Size:
+    """How large a cause was: `kind` names what, `values` each lens's figures by name, in the unit
+    the name ends with (prism dioptres for x and y)."""
+
+    kind: str
+    values: dict[Eye, dict[str, Found]]
+
+
+MOVED, INWARDS, UP, TURN, ZERO = "moved", "inwards", "up", "turn", "zero"
+KINDS = {
+    "lens-displaced": MOVED,
+    "read-elsewhere": "read-at",
+    "layout-pd-wrong": INWARDS,
+    "layout-height-wrong": UP,
+    "table-moved": UP,
+    "lens-rotated": TURN,
+    "frame-not-square": TURN,
+    "instrument-zero": ZERO,
+    "compensator-left-on": ZERO,
+}
+
+
+def size_of(bench: Bench, code: str, stories: Sequence[Story]) -> Size | None:
+    """How large the one cause of `stories` (its variants) was, or None where it has no size.
+
+    Arguments: `bench`; `code` of the cause; `stories`. Returns means and standard uncertainties.
+    """
+    kind = KINDS.get(code)
+    if kind is None or not stories:
+        return None
+    cause = bench.table.causes[code]
+    if kind == TURN:
+        return Size(kind=kind, values=_turns(bench, code, stories))
+    story = stories[0]
+    found = estimate(bench, story)
+    values: dict[Eye, dict[str, Found]] = {}
+    for eye, own in story.own.items():
+        if own.code != code and story.common.code != code:
+            continue
+        if kind == ZERO:
+            zero = math.hypot(bench.zero, story.common.zero)
+            values[eye] = {"x": _times(found.common[0], zero), "y": _times(found.common[1], zero)}
+            continue
+        mine = [_times(one, cause.of("spread_mm")) for one in found.own[eye]]
+        if not mine:  # one parameter common to both lenses
+            mine = [_times(found.common[-1], cause.of("spread_mm"))]
+        elif kind == INWARDS and eye == "left":
+            mine = [_times(mine[0], -1.0)]
+        values[eye] = _named(kind, mine)
+    return Size(kind=kind, values=values)
+
+
+def _named(kind: str, found: Sequence[Found]) -> dict[str, Found]:
+    if kind in (INWARDS, UP):
+        return {f"{kind}_mm": found[0]}
+    return {"right_mm": found[0], "up_mm": found[1]}
+
+
+def _times(found: Found, factor: float) -> Found:
+    return Found(found.mean * factor, abs(found.uncertainty * factor))
+
+
+def _turns(bench: Bench, code: str, stories: Sequence[Story]) -> dict[Eye, dict[str, Found]]:
+    """The turn in degrees, over the narrower turns it is made of."""
+    spread = bench.table.causes[code].of("turn_deg")
+    middles = [(middle, narrow) for _, (middle, narrow) in turns(spread)]
+    sums: dict[Eye, list[tuple[float, Found]]] = {}
+    for story in stories:
+        found = estimate(bench, story)
+        for eye, own in story.own.items():
+            if own.code == code:
+                middle, narrow = middles[own.variant]
+                turn = found.own[eye][-1]
+            elif story.common.code == code:
+                middle, narrow = middles[story.common.variant]
+                turn = found.own[eye][-1] if found.own[eye] else found.common[-1]
+            else:
+                continue
+            part = Found(middle + turn.mean * narrow, turn.uncertainty * narrow)
+            sums.setdefault(eye, []).append((story.probability, part))
+    return {eye: {"turn_deg": _mixed(parts)} for eye, parts in sums.items()}
+
+
+def _mixed(parts: Sequence[tuple[float, Found]]) -> Found:
+    """Mean and spread of a mixture of normal distributions."""
+    whole = sum([share for share, _ in parts])
+    mean = sum([share * part.mean for share, part in parts]) / whole
+    spread = sum(
+        [share * (part.uncertainty**2 + (part.mean - mean) ** 2) for share, part in parts]
+    )
+    return Found(mean, math.sqrt(spread / whole))

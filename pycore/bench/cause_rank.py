@@ -74,7 +74,7 @@ def rank(bench: Bench, stories: Sequence[Story]) -> Ranking:
         told.setdefault(label_of(story), []).append(story)
     eyes = tuple(bench.held)
     for code in (AS_ORDERED, NONE_OF_THESE):
-        if not any(label == (Named(code, label[0].eyes),) for label in told):
+        if not any(len(label) == 1 and label[0].code == code for label in told):
             told[(Named(code, eyes),)] = []
     groups = _groups(bench, stories)
     ties = _ties(groups, told)
