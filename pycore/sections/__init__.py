@@ -66,6 +66,12 @@ def _colour(case: Case) -> SectionAnswer:
     return colour_section(case)
 
 
+def _remedy(case: Case) -> SectionAnswer:
+    from pycore.sections.remedy import remedy_section
+
+    return remedy_section(case)
+
+
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "layout": _layout,
     "field": _field,
@@ -76,6 +82,7 @@ SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "wear": _wear,
     "surfacing": _surfacing,
     "colour": _colour,
+    "remedy": _remedy,
 }
 
 
