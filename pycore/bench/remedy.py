@@ -126,6 +126,18 @@ def _choice(matter: Matter, plain: Pieces, careful: Pieces, eyes: tuple[Eye, ...
     return Choice(least=least, recommended=_passing(matter, careful, trade, eyes, careful=True))
 
 
+def unrounded(matter: Matter, verdict: Verdict, eyes: Sequence[Eye]) -> Move | None:
+    """The least movement of some lenses that passes, before rounding, whatever their design.
+
+    Arguments: `matter`; its `verdict`; `eyes` to be moved. Returns mm, or None where there is none.
+    """
+    guarded = matter.job.decision_rule == "guarded"
+    choices = tuple(pieces(matter, verdict.checks, careful=guarded))
+    trade = [limit for limits in trade_limits(matter, eyes).values() for limit in limits]
+    found = search(choices, trade, eyes)
+    return found[0][0] if found else None
+
+
 def search(
     choices: Pieces, beside: Sequence[Limit], eyes: Sequence[Eye]
 ) -> list[tuple[Move, Sequence[Limit]]]:
