@@ -1,0 +1,184 @@
+"""What saves a pair that failed: the smallest movement of its lenses, or why only a remake will do.
+
+A movement is in mm, of the lens in the frame, seen from the front; the new dot lies at minus that
+on the lens. Two are sought: the least that passes, and the least whose doubt is at most 0.05.
+Both are rounded outwards to 0.1 mm and judged again in decimals by the edition's own checks.
+"""
+
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, field
+from itertools import islice
+
+from pycore.bench.doubt import ACCEPTED_DOUBT
+from pycore.bench.matter import Matter
+from pycore.bench.remedy_least import Limit, Move, held, length_mm, on_grid, shortest
+from pycore.bench.remedy_limits import pieces
+from pycore.bench.remedy_moved import moved
+from pycore.bench.remedy_reason import Why, is_of_prism, remade_of, why_none
+from pycore.bench.remedy_trade import refusal, trade_limits
+from pycore.bench.verdict import Verdict, groups_of
+from pycore.bench.verdict_prism import prism_checks
+from pycore.optics.prism import EYES, Eye
+
+GRIDS_MM = (0.1, 0.01)  # the finer only where the coarser has no place within the limits
+TRIES = 6  # places on a grid that are judged; the first is nearly always right
+
+Pieces = Sequence[tuple[Limit, ...]]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Shift:
+    """A movement that passes, in mm: `exact` before rounding, `move` as it is to be done.
+
+    `after`: the matter as it would then be read.
+    """
+
+    exact: Move
+    move: Move
+    after: Matter
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Choice:
+    """The least movement and the recommended one of some lenses; None where there is none."""
+
+    least: Shift | None = None
+    recommended: Shift | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Remedy:
+    """`kind` none-needed, shift or remake, and why.
+
+    `shared`: both lenses (or the one that can be moved) by the least sum of squares; `only`: one
+    lens alone; `allowed`: the state lets the lens be moved as it is; `remade`: the lenses to be
+    made again where nothing is moved.
+    """
+
+    kind: str
+    why: Why
+    shared: Choice = Choice()
+    only: Mapping[Eye, Choice] = field(default_factory=dict)
+    allowed: bool = False
+    remade: tuple[Eye, ...] = ()
+
+
+def remedy_of(matter: Matter, verdict: Verdict) -> Remedy | None:
+    """What to do with a pair (or lens) that was judged.
+
+    Arguments: `matter`; its `verdict`. Returns the Remedy, or None where nothing has failed yet
+    that a decision could rest on (not read, or undecided with no movement to decide it).
+    """
+    if verdict.outcome == "within":
+        return Remedy(kind="none-needed", why=Why("within"))
+    if verdict.outcome == "unread":
+        return None
+    failed = [name for name, (outcome, _) in verdict.groups.items() if outcome != "within"]
+    beside = [name for name in failed if not is_of_prism(name)]
+    if not beside:
+        found = _shift(matter, verdict)
+        if found is not None:
+            return found
+    if verdict.outcome == "undecided":
+        return None
+    why = why_none(matter, verdict, beside, search)
+    return Remedy(kind="remake", why=why, remade=remade_of(matter, verdict))
+
+
+def _shift(matter: Matter, verdict: Verdict) -> Remedy | None:
+    """The movement, if there is one: of both lenses, and of each alone."""
+    eyes = movable(matter)
+    guarded = matter.job.decision_rule == "guarded"
+    careful = tuple(pieces(matter, verdict.checks, careful=True))
+    plain = careful if guarded else tuple(pieces(matter, verdict.checks, careful=False))
+    choices = {
+        chosen: _choice(matter, plain, careful, chosen)
+        for chosen in ((eyes,) if len(eyes) < 2 else (eyes, ("right",), ("left",)))
+    }
+    shared = choices[eyes]
+    if shared.least is None:
+        return None
+    only = {eye: choices.get((eye,), Choice()) for eye in EYES}
+    uncut = matter.job.state == "uncut"
+    why = Why("uncut" if uncut else f"cut-{matter.job.state}")
+    return Remedy(
+        kind="shift",
+        why=why,
+        shared=shared,
+        only=only,
+        allowed=uncut,
+        remade=() if uncut else remade_of(matter, verdict),
+    )
+
+
+def movable(matter: Matter) -> tuple[Eye, ...]:
+    """The eyes whose lens may be moved. Arguments: `matter`."""
+    return tuple(eye for eye in matter.dues if not refusal(matter, eye))
+
+
+def _choice(matter: Matter, plain: Pieces, careful: Pieces, eyes: tuple[Eye, ...]) -> Choice:
+    trade = tuple(limit for limits in trade_limits(matter, eyes).values() for limit in limits)
+    least = _passing(matter, plain, trade, eyes, careful=False)
+    if least is None:
+        return Choice()
+    if all(doubt <= ACCEPTED_DOUBT for doubt in _doubts(least.after)):
+        return Choice(least=least, recommended=least)
+    return Choice(least=least, recommended=_passing(matter, careful, trade, eyes, careful=True))
+
+
+def unrounded(matter: Matter, verdict: Verdict, eyes: Sequence[Eye]) -> Move | None:
+    """The least movement of some lenses that passes, before rounding, whatever their design.
+
+    Arguments: `matter`; its `verdict`; `eyes` to be moved. Returns mm, or None where there is none.
+    """
+    guarded = matter.job.decision_rule == "guarded"
+    choices = tuple(pieces(matter, verdict.checks, careful=guarded))
+    trade = [limit for limits in trade_limits(matter, eyes).values() for limit in limits]
+    found = search(choices, trade, eyes)
+    return found[0][0] if found else None
+
+
+def search(
+    choices: Pieces, beside: Sequence[Limit], eyes: Sequence[Eye]
+) -> list[tuple[Move, Sequence[Limit]]]:
+    """The shortest movement of some lenses within each piece, the shortest first, unrounded.
+
+    Arguments: `choices` pieces; `beside` limits that hold with all of them; `eyes` to be moved.
+    Returns movements in mm with their limits; empty where there is none.
+    """
+    still = [
+        index for at, eye in enumerate(EYES) if eye not in eyes for index in (2 * at, 2 * at + 1)
+    ]
+    found = []
+    for piece in choices:
+        limits = [held(limit, still) for limit in (*piece, *beside)]
+        move = shortest(limits)
+        if move is not None:
+            found.append((move, limits))
+    return sorted(found, key=lambda pair: length_mm(pair[0]))
+
+
+def _passing(
+    matter: Matter, choices: Pieces, trade: Sequence[Limit], eyes: Sequence[Eye], *, careful: bool
+) -> Shift | None:
+    """The shortest movement, rounded outwards, that the edition's own checks pass."""
+    solved = search(choices, trade, eyes)
+    for step_mm in GRIDS_MM:
+        for exact, limits in solved:
+            for move in islice(on_grid(limits, exact, step_mm), TRIES):
+                after = moved(matter, move)
+                if _passes(after, careful=careful):
+                    return Shift(exact=solved[0][0], move=move, after=after)
+    return None
+
+
+def _passes(matter: Matter, *, careful: bool) -> bool:
+    groups = groups_of(matter, tuple(prism_checks(matter)))
+    return all(
+        outcome == "within" and (not careful or doubt <= ACCEPTED_DOUBT)
+        for outcome, doubt in groups.values()
+    )
+
+
+def _doubts(matter: Matter) -> list[float]:
+    return [doubt for _, doubt in groups_of(matter, tuple(prism_checks(matter))).values()]
