@@ -21,6 +21,8 @@ import { pointLists, putPoint } from "./points.js";
 const NOTHING = { title: { code: "" }, rows: [], asks: [], notes: [] };
 /** @type {Record<string, (tools: Tools) => {node: HTMLElement, show: (report: SectionReport|null) => void}>} what only one panel has */
 const OWN = { field: pointLists, causes: causeList, look: lookCard };
+/** Rows that the panel shows in its own way; on paper they stand in the table. */
+const SAID_ELSEWHERE = new Set(["field.point", "causes.first", "causes.second", "causes.third", "causes.as-ordered", "look.result", "look.other"]);
 const PLACES = /** @type {const} */ (["right", "left", "pair"]);
 
 /** @param {string} name @param {Tools} tools */
@@ -94,8 +96,7 @@ export function createPanel(name, tools) {
   function drawBody() {
     stale = false;
     const section = report?.sections?.[name] ?? NOTHING;
-    // Each point stands with its own fields; the table need not say it again.
-    const rows = section.rows.filter(({ code }) => code !== "field.point");
+    const rows = section.rows.filter(({ code }) => !SAID_ELSEWHERE.has(code));
     pictures.show(report?.scenes?.[name]);
     own?.show(report);
     redraw(table, tableOf(rows, panelName(name)));
