@@ -18,7 +18,7 @@ LEAST_CYLINDER = 0.25  # dioptres; below, an axis tells nothing
 LEAST_PRISM = 1.0  # prism dioptres; below, an edge tells nothing
 WORTH_COUNTING = 1e-3  # a number's information counts causes from this probability on
 QUARTER_TURN = 90.0
-LEAST_BITS = 0.01  # a look worth less tells nothing
+LEAST_BITS = 0.05  # a look expected to tell less is not worth taking
 
 
 @dataclass(frozen=True, slots=True)
