@@ -19,7 +19,7 @@ from pycore.bench.expected import Due
 from pycore.job.document import Job
 from pycore.optics.prism import Eye
 
-FAINT = 12.0  # hypotheses e^-12 below the best cannot matter
+FAINT = 10.0  # hypotheses below e^-10 of the best are left out: together about 1 in 10,000
 UNLIKELY = 6.5  # a pair of causes is left out that could reach e^-6.5 of the best at most
 
 
