@@ -19,8 +19,8 @@ from pycore.bench.expected import Due
 from pycore.job.document import Job
 from pycore.optics.prism import Eye
 
-FAINT = 12.0  # hypotheses e^-12 below the best cannot matter
-UNLIKELY = 8.0  # combinations of two whose best possible weight is e^-8 of all are left out
+FAINT = 10.0  # hypotheses below e^-10 of the best are left out: together about 1 in 10,000
+UNLIKELY = 6.5  # a pair of causes is left out that could reach e^-6.5 of the best at most
 
 
 class Own(NamedTuple):
@@ -263,17 +263,17 @@ def _with_own(
     none = {eye: owns[eye][0] for eye in owns}
     for eye in owns:
         beside = [other for other in owns if other != eye]
-        log_rest = log_common + sum([math.log(none[other].weight) for other in beside])
-        reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fits[one]) for one in beside])
-        likeliest = max([own.weight for own in owns[eye][1:]], default=0.0)
-        if not likeliest or reach + math.log(likeliest) < least:
-            continue
         others = [fits[one] for one in beside]
-        # Nothing happens twice to one lens: it would only undo what it did.
-        mine = [own for own in owns[eye][1:] if own.code != common.code]
-        for one in _weighed(bench, common, eye, mine):
-            weight = log_rest + one.log_prior + joined(one.fit, *others)
-            yield common, {**none, eye: one.own}, weight
+        log_rest = log_common + sum([math.log(none[other].weight) for other in beside])
+        reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fit) for fit in others])
+        for own in owns[eye][1:]:
+            log_prior = math.log(own.weight)
+            # Nothing happens twice to one lens: it would only undo what it did.
+            if reach + log_prior < least or own.code == common.code:
+                continue
+            fit = bench.fit(common, eye, own)
+            if fit is not None:
+                yield common, {**none, eye: own}, log_rest + log_prior + joined(fit, *others)
 
 
 def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
