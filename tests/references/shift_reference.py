@@ -357,7 +357,7 @@ def _constraints(piece: list[Ball]) -> list[Job]:
     if lines:
         rows = np.vstack([sign * ball.a for ball in lines for sign in (-1.0, 1.0)])
         ends = np.concatenate([ball.r + sign * ball.b for ball in lines for sign in (-1.0, 1.0)])
-        made.append({"type": "ineq", "fun": lambda x: rows @ x + ends, "jac": lambda x: rows})
+        made.append({"type": "ineq", "fun": lambda x: rows @ x + ends, "jac": lambda _: rows})
     if discs:
         a, b, r = np.stack([ball.a for ball in discs]), np.stack([ball.b for ball in discs]), np.array([ball.r for ball in discs])
         made.append(
