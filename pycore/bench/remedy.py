@@ -20,7 +20,7 @@ from pycore.bench.verdict import Verdict, groups_of
 from pycore.bench.verdict_prism import prism_checks
 from pycore.optics.prism import EYES, Eye
 
-GRIDS_MM = (0.1, 0.01)  # the finer only where the coarser has no place within the limits
+GRIDS_MM = (0.1, 0.01, 0.001)  # a finer one only where the coarser has no place within the limits
 TRIES = 6  # places on a grid that are judged; the first is nearly always right
 
 Pieces = Sequence[tuple[Limit, ...]]

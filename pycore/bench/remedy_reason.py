@@ -49,6 +49,8 @@ def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Se
         return Why("uncertain" if guarded else "no-power")
     if eyes:
         trade = trade_limits(matter, eyes)
+        if search(choices, [limit for limits in trade.values() for limit in limits], eyes):
+            return Why("narrow")
         for name in ("blank", "segment", "far"):
             others = [limit for key, limits in trade.items() if key != name for limit in limits]
             found = search(choices, others, eyes)
@@ -57,7 +59,7 @@ def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Se
         found = search(choices, (), eyes)
         if found:
             return _in_the_way(matter, "far", found[0][0])
-    for eye, code in refused.items():
+    for eye, code in sorted(refused.items(), key=lambda item: item[1] == "partner"):
         if not eyes or search(choices, (), (*eyes, eye)):
             return Why(code, {"eye": eye})
     return Why("no-power")

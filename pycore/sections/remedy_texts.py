@@ -42,8 +42,8 @@ def dot_text(shift: Shift, eye: Eye) -> str:
 
 
 def _places(shift: Shift) -> int:
-    """One decimal, or two where no tenth of a millimetre is within the limits."""
-    return 1 if all(round(part, 1) == part for part in shift.move) else 2
+    """One decimal, or more where no tenth of a millimetre is within the limits."""
+    return next((n for n in (1, 2) if all(round(part, n) == part for part in shift.move)), 3)
 
 
 def shift_entry(shift: Shift | None) -> Entry | None:
