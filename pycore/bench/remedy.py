@@ -10,17 +10,17 @@ from dataclasses import dataclass, field
 from itertools import islice
 
 from pycore.bench.doubt import ACCEPTED_DOUBT
-from pycore.bench.matter import Matter
+from pycore.bench.matter import Check, Matter
 from pycore.bench.remedy_least import Limit, Move, held, length_mm, on_grid, shortest
 from pycore.bench.remedy_limits import pieces
-from pycore.bench.remedy_moved import moved
+from pycore.bench.remedy_moved import moved, parts_of
 from pycore.bench.remedy_reason import Why, is_of_prism, remade_of, why_none
 from pycore.bench.remedy_trade import refusal, trade_limits
 from pycore.bench.verdict import Verdict, groups_of
 from pycore.bench.verdict_prism import prism_checks
 from pycore.optics.prism import EYES, Eye
 
-GRIDS_MM = (0.1, 0.01)  # the finer only where the coarser has no place within the limits
+GRIDS_MM = (0.1, 0.01, 0.001)  # a finer one only where the coarser has no place within the limits
 TRIES = 6  # places on a grid that are judged; the first is nearly always right
 
 Pieces = Sequence[tuple[Limit, ...]]
@@ -30,12 +30,24 @@ Pieces = Sequence[tuple[Limit, ...]]
 class Shift:
     """A movement that passes, in mm: `exact` before rounding, `move` as it is to be done.
 
-    `after`: the matter as it would then be read.
+    `after`: the matter as it would then be read, with its `checks` of prism and their `groups`.
     """
 
     exact: Move
     move: Move
     after: Matter
+    checks: tuple[Check, ...]
+    groups: Mapping[str, tuple[str, float]]
+
+    @property
+    def doubt(self) -> float:
+        """The largest doubt of a group that the movement leaves."""
+        return max(doubt for _, doubt in self.groups.values())
+
+    @property
+    def eyes(self) -> tuple[Eye, ...]:
+        """The eyes whose lens moves."""
+        return tuple(eye for eye in EYES if any(parts_of(self.move, eye)))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -73,9 +85,12 @@ def remedy_of(matter: Matter, verdict: Verdict) -> Remedy | None:
         return Remedy(kind="none-needed", why=Why("within"))
     if verdict.outcome == "unread":
         return None
-    failed = [name for name, (outcome, _) in verdict.groups.items() if outcome != "within"]
-    beside = [name for name in failed if not is_of_prism(name)]
-    if not beside:
+    beside = [
+        name
+        for name, (outcome, _) in verdict.groups.items()
+        if outcome == "outside" and not is_of_prism(name)
+    ]
+    if not beside and _prism_failed(verdict):
         found = _shift(matter, verdict)
         if found is not None:
             return found
@@ -85,20 +100,25 @@ def remedy_of(matter: Matter, verdict: Verdict) -> Remedy | None:
     return Remedy(kind="remake", why=why, remade=remade_of(matter, verdict))
 
 
+def _prism_failed(verdict: Verdict) -> bool:
+    return any(
+        is_of_prism(name) and outcome != "within" for name, (outcome, _) in verdict.groups.items()
+    )
+
+
 def _shift(matter: Matter, verdict: Verdict) -> Remedy | None:
     """The movement, if there is one: of both lenses, and of each alone."""
     eyes = movable(matter)
     guarded = matter.job.decision_rule == "guarded"
     careful = tuple(pieces(matter, verdict.checks, careful=True))
     plain = careful if guarded else tuple(pieces(matter, verdict.checks, careful=False))
-    choices = {
-        chosen: _choice(matter, plain, careful, chosen)
-        for chosen in ((eyes,) if len(eyes) < 2 else (eyes, ("right",), ("left",)))
-    }
-    shared = choices[eyes]
+    shared = _choice(matter, plain, careful, eyes)
     if shared.least is None:
         return None
-    only = {eye: choices.get((eye,), Choice()) for eye in EYES}
+    moving = shared.least.eyes
+    only = {
+        eye: shared if moving == (eye,) else _choice(matter, plain, careful, (eye,)) for eye in eyes
+    }
     uncut = matter.job.state == "uncut"
     why = Why("uncut" if uncut else f"cut-{matter.job.state}")
     return Remedy(
@@ -121,7 +141,7 @@ def _choice(matter: Matter, plain: Pieces, careful: Pieces, eyes: tuple[Eye, ...
     least = _passing(matter, plain, trade, eyes, careful=False)
     if least is None:
         return Choice()
-    if all(doubt <= ACCEPTED_DOUBT for doubt in _doubts(least.after)):
+    if least.doubt <= ACCEPTED_DOUBT:
         return Choice(least=least, recommended=least)
     return Choice(least=least, recommended=_passing(matter, careful, trade, eyes, careful=True))
 
@@ -151,7 +171,7 @@ def search(
     ]
     found = []
     for piece in choices:
-        limits = [held(limit, still) for limit in (*piece, *beside)]
+        limits = [held(limit, still) if still else limit for limit in (*piece, *beside)]
         move = shortest(limits)
         if move is not None:
             found.append((move, limits))
@@ -167,18 +187,17 @@ def _passing(
         for exact, limits in solved:
             for move in islice(on_grid(limits, exact, step_mm), TRIES):
                 after = moved(matter, move)
-                if _passes(after, careful=careful):
-                    return Shift(exact=solved[0][0], move=move, after=after)
+                checks = tuple(check for check in prism_checks(after) if check.counts)
+                groups = groups_of(after, checks)
+                if _passes(groups, careful=careful):
+                    return Shift(
+                        exact=solved[0][0], move=move, after=after, checks=checks, groups=groups
+                    )
     return None
 
 
-def _passes(matter: Matter, *, careful: bool) -> bool:
-    groups = groups_of(matter, tuple(prism_checks(matter)))
+def _passes(groups: Mapping[str, tuple[str, float]], *, careful: bool) -> bool:
     return all(
         outcome == "within" and (not careful or doubt <= ACCEPTED_DOUBT)
         for outcome, doubt in groups.values()
     )
-
-
-def _doubts(matter: Matter) -> list[float]:
-    return [doubt for _, doubt in groups_of(matter, tuple(prism_checks(matter))).values()]

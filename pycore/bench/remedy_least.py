@@ -147,12 +147,13 @@ def held(limit: Limit, still: Sequence[int]) -> Limit:
     (1.0, 2.0, 0.0, 0.0)
     """
 
+    keep = [0.0 if index in still else 1.0 for index in range(4)]
+
     def masked(row: Move) -> Move:
-        a, b, c, d = (0.0 if index in still else part for index, part in enumerate(row))
-        return a, b, c, d
+        return row[0] * keep[0], row[1] * keep[1], row[2] * keep[2], row[3] * keep[3]
 
     if isinstance(limit, Strip):
-        return replace(limit, row=masked(limit.row))
+        return Strip(masked(limit.row), limit.offset, limit.limit)
     return replace(limit, across=masked(limit.across), up=masked(limit.up))
 
 

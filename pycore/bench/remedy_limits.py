@@ -220,10 +220,17 @@ def _own_deviation_mm(matter: Matter, eye: Eye, *, vertical: bool) -> float:
 
 
 def _position(matter: Matter, check: Check, half: float) -> tuple[PrismLimit, ...] | None:
-    """Where the expected prism was found on one unmounted lens, in any direction."""
+    """Where the expected prism was found on one unmounted lens, in any direction.
+
+    A length slid of unknown direction grows at worst by the whole movement.
+    """
     eye: Eye = "right" if check.eye == "right" else "left"
-    if matter.job.readings.of(eye).slid_mm is not None:
+    slid_mm = matter.job.readings.of(eye).slid_mm
+    if slid_mm is not None:
         point = slid_point(matter, eye)
-        return (Disc(RIGHTWARDS[eye], UPWARDS[eye], point, half),) if point else None
+        radius = half if point else half - float(slid_mm)
+        if radius < 0.0:
+            return None
+        return (Disc(RIGHTWARDS[eye], UPWARDS[eye], point or (0.0, 0.0), radius),)
     offset = tuple(_own_deviation_mm(matter, eye, vertical=part) for part in (False, True))
     return (Disc(_outwards(eye), UPWARDS[eye], (offset[0], offset[1]), half),)

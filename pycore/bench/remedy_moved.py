@@ -16,7 +16,7 @@ def moved(matter: Matter, move: Move) -> Matter:
     """The matter as it would be read after a movement.
 
     Arguments: `matter`; `move` mm. Returns the Matter: prisms by p + F d / 10, measured places
-    moved along with their lens. A length slid whose direction is not known is dropped.
+    moved along with their lens (a length slid whose direction is not known, by the worst).
     """
     rows = responses(matter)
     reads = {
@@ -58,10 +58,9 @@ def _eye_after(matter: Matter, eye: Eye, move: Move) -> EyeReading:
         height_mm = height_mm + up_mm
     if pd_mm is not None:
         pd_mm = pd_mm - right_mm * Decimal(towards_nose(eye))
-    if slid_mm is not None and (right_mm or up_mm):
-        point = slid_point(matter, eye)
-        slid_mm = None
-        if point:
-            away_mm = math.hypot(point[0] + float(right_mm), point[1] + float(up_mm))
-            slid_mm = from_float(away_mm)
+    if slid_mm is not None:
+        right, up = slid_point(matter, eye) or (0.0, 0.0)
+        away_mm = from_float(math.hypot(right + float(right_mm), up + float(up_mm)))
+        known = bool(right or up)
+        slid_mm = away_mm if known else slid_mm + away_mm  # at worst straight away
     return replace(reading, prp_height_mm=height_mm, pd_mm=pd_mm, slid_mm=slid_mm)

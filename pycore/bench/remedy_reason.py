@@ -46,19 +46,21 @@ def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Se
     guarded = matter.job.decision_rule == "guarded"
     choices = tuple(pieces(matter, verdict.checks, careful=guarded))
     if not choices:
-        return Why("uncertain")
-    trade = trade_limits(matter, eyes)
-    for name in ("blank", "segment", "far"):
-        others = [limit for key, limits in trade.items() if key != name for limit in limits]
-        found = search(choices, others, eyes)
+        return Why("uncertain" if guarded else "no-power")
+    if eyes:
+        trade = trade_limits(matter, eyes)
+        if search(choices, [limit for limits in trade.values() for limit in limits], eyes):
+            return Why("narrow")
+        for name in ("blank", "segment", "far"):
+            others = [limit for key, limits in trade.items() if key != name for limit in limits]
+            found = search(choices, others, eyes)
+            if found:
+                return _in_the_way(matter, name, found[0][0])
+        found = search(choices, (), eyes)
         if found:
-            return _in_the_way(matter, name, found[0][0])
-    found = search(choices, (), eyes)
-    if found:
-        return _in_the_way(matter, "far", found[0][0])
-    with_power = [eye for eye in matter.dues if matter.dues[eye].power is not None]
-    for eye, code in refused.items():
-        if search(choices, (), with_power):
+            return _in_the_way(matter, "far", found[0][0])
+    for eye, code in sorted(refused.items(), key=lambda item: item[1] == "partner"):
+        if not eyes or search(choices, (), (*eyes, eye)):
             return Why(code, {"eye": eye})
     return Why("no-power")
 
@@ -91,7 +93,7 @@ def remade_of(matter: Matter, verdict: Verdict) -> tuple[Eye, ...]:
     Arguments: `matter`; its `verdict`. Returns eyes, the right first. Where the thinning is not
     known no reading says which lens is wrong vertically: then both.
     """
-    failed = {name for name, (outcome, _) in verdict.groups.items() if outcome != "within"}
+    failed = {name for name, (outcome, _) in verdict.groups.items() if outcome == "outside"}
     checks = [check for check in verdict.checks if check.counts and check.group in failed]
     own = matter.own_eyes
     eyes = {eye for eye in own if any(check.eye == eye for check in checks)}

@@ -28,7 +28,6 @@ from pycore.sections.remedy_texts import (
     movement_instruction,
     remake_instruction,
     shift_entry,
-    spot_of,
 )
 from pycore.words import say
 
@@ -100,7 +99,7 @@ def _own(found: Remedy, matter: Matter) -> Entry:
         **{key: first[key] for key in ("right", "left", "after")},
         **shared,
         "shared": shared,
-        **{f"only_{eye}": _choice(choice) for eye, choice in found.only.items()},
+        **{f"only_{eye}": _choice(found.only.get(eye, Choice())) for eye in EYES},
         "instruction": movement_instruction(shift, allowed=found.allowed),
     }
 
@@ -126,15 +125,13 @@ def _rows(found: Remedy, matter: Matter) -> Iterator[Row]:
         movements[f"only-{eye}"] = choice.recommended or choice.least
     for code, shift in movements.items():
         if shift is not None:
-            yield _row(
-                code, {eye: move_text(shift, eye) for eye in EYES}, margins_text(shift.after)
-            )
+            yield _row(code, {eye: move_text(shift, eye) for eye in EYES}, margins_text(shift))
     shift = chosen(found)
     if shift is not None:
         code = "new-dot" if found.allowed else "new-place"
         yield _row(code, {eye: dot_text(shift, eye) for eye in EYES})
         shows = {eye: both_notations(eye, read) for eye, read in shift.after.reads.items()}
-        yield _row("then-shows", {eye: shows[eye] for eye in shows if spot_of(shift, eye)})
+        yield _row("then-shows", {eye: shows[eye] for eye in shift.eyes})
     if found.remade:
         due = {eye: both_notations(eye, matter.dues[eye].expected) for eye in found.remade}
         yield _row("remake", due)
@@ -148,8 +145,7 @@ def _asks(shift: Shift, matter: Matter) -> Iterator[Ask]:
     """What would let the blank be checked, or replace the usual size that was taken."""
     if matter.job.state != "uncut":
         return
-    moving = [eye for eye in EYES if spot_of(shift, eye)]
-    blanks = [blank_of_uncut(matter, eye) for eye in moving]
+    blanks = [blank_of_uncut(matter, eye) for eye in shift.eyes]
     if None in blanks:
         yield from (Ask(field=f"frame.{name}") for name in ("a_mm", "b_mm", "dbl_mm"))
     if any(blank and blank.size_assumed for blank in blanks):
@@ -168,11 +164,10 @@ def _notes(own: Entry, shift: Shift | None, matter: Matter) -> Notes:
         yield "or", {"sentence": say(f"remedies.{remake['code']}", **remake["params"])}
     if own["recommended"] is None:
         yield "none-sure", {}
-    moving = [eye for eye in EYES if spot_of(shift, eye)]
-    if any(has_segment(matter, eye) for eye in moving):
+    if any(has_segment(matter, eye) for eye in shift.eyes):
         yield "segment-moves", {}
     if matter.job.state == "uncut":
-        blanks = [blank_of_uncut(matter, eye) for eye in moving]
+        blanks = [blank_of_uncut(matter, eye) for eye in shift.eyes]
         if None in blanks:
             yield "blank-unchecked", {}
         if any(blank and blank.centre_assumed for blank in blanks):

@@ -6,8 +6,6 @@ from pycore.bench.layout import Spot
 from pycore.bench.matter import PAIR, Check, Matter
 from pycore.bench.remedy import Shift
 from pycore.bench.remedy_moved import parts_of
-from pycore.bench.verdict import groups_of
-from pycore.bench.verdict_prism import prism_checks
 from pycore.decimals import fixed, places_to_tell_apart, signed
 from pycore.names import Entry, number, prism_entry, thinning_text
 from pycore.optics.prism import EYES, NO_PRISM, Eye, Prism
@@ -44,8 +42,8 @@ def dot_text(shift: Shift, eye: Eye) -> str:
 
 
 def _places(shift: Shift) -> int:
-    """One decimal, or two where no tenth of a millimetre is within the limits."""
-    return 1 if all(round(part, 1) == part for part in shift.move) else 2
+    """One decimal, or more where no tenth of a millimetre is within the limits."""
+    return next((n for n in (1, 2) if all(round(part, n) == part for part in shift.move)), 3)
 
 
 def shift_entry(shift: Shift | None) -> Entry | None:
@@ -61,25 +59,23 @@ def shift_entry(shift: Shift | None) -> Entry | None:
             eye: {"right_mm": round(part[0], 6), "up_mm": round(part[1], 6)}
             for eye, part in exact.items()
         },
-        "after": after_entry(shift.after),
+        "after": after_entry(shift),
         "shown": {eye: move_text(shift, eye) for eye in EYES},
     }
 
 
-def after_entry(matter: Matter) -> Entry:
-    """What would then be read, check by check. Arguments: `matter` after the movement.
+def after_entry(shift: Shift) -> Entry:
+    """What a movement leaves, check by check. Arguments: `shift`.
 
-    Returns `right` and `left` PRISM, `checks` of the prism with their margins, the largest
-    `doubt` of a group, and the tightest check as `shown`.
+    Returns `right` and `left` PRISM as then read, `checks` of the prism with their margins, the
+    largest `doubt` of a group, and the margins as `shown`.
     """
-    checks = [check for check in prism_checks(matter) if check.counts]
-    groups = groups_of(matter, checks)
     return {
         **dict.fromkeys(EYES),
-        **{eye: prism_entry(eye, prism) for eye, prism in matter.reads.items()},
-        "checks": [_check_entry(check, groups[check.group][1]) for check in checks],
-        "doubt": round(max(doubt for _, doubt in groups.values()), 9),
-        "shown": margins_text(matter),
+        **{eye: prism_entry(eye, prism) for eye, prism in shift.after.reads.items()},
+        "checks": [_check_entry(check, shift.groups[check.group][1]) for check in shift.checks],
+        "doubt": round(shift.doubt, 9),
+        "shown": margins_text(shift),
     }
 
 
@@ -110,18 +106,18 @@ def _check_texts(check: Check) -> dict[str, str]:
     }
 
 
-def margins_text(matter: Matter) -> str:
-    """The margins a movement leaves in its groups. Arguments: `matter` after the movement."""
+def margins_text(shift: Shift) -> str:
+    """The margins a movement leaves. Arguments: `shift`. A check that an alternative makes up
+    for is left out."""
     return "; ".join(
         say("section_texts.remedy.margin", unit=check.unit, **_check_texts(check))
-        for check in prism_checks(matter)
-        if check.counts and check.within
+        for check in shift.checks
+        if check.within
     )
 
 
 def movement_instruction(shift: Shift, *, allowed: bool) -> Entry:
     """What is to be done with the lenses that move. Arguments: `shift`; `allowed` uncut."""
-    moving = [eye for eye in EYES if spot_of(shift, eye)]
     parts = [
         say(
             "remedies.new-dot" if allowed else "remedies.new-place",
@@ -129,7 +125,7 @@ def movement_instruction(shift: Shift, *, allowed: bool) -> Entry:
             dot=dot_text(shift, eye),
             prism=both_notations(eye, shift.after.reads[eye]),
         )
-        for eye in moving
+        for eye in shift.eyes
     ]
     code = "mark" if allowed else "edge-smaller"
     return {"code": code, "params": {"lenses": "; ".join(parts)}}

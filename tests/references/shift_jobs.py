@@ -86,7 +86,7 @@ def _options(rng: Rng, edition: str) -> dict[str, str]:
 
 
 def _eye(rng: Rng, together: D, design: str) -> Job:
-    sphere = together + step(rng, 1.0, "0.25")
+    sphere = max(D(-20), min(D(20), together + step(rng, 1.0, "0.25")))
     eye: Job = {"sphere": signed(sphere), "pd_mm": "32", "prp_height_mm": "18"}
     if chance(rng, 0.6):
         cylinder = step(rng, 1.5, "0.25")

@@ -279,7 +279,8 @@ def _position(pair: Pair, eye: str) -> tuple[bool, list[Ball] | None]:
         point = None if flat.size else np.linalg.solve(pair.matrix(eye), error)
         size = 0.0 if point is None else float(np.linalg.norm(point))
         if point is None or size == 0.0:
-            return True, [Ball(place * 0.0, np.array([9.0, 0.0]), 1.0)]
+            at_worst = 1.0 - float(seen["slid_mm"])  # the direction is not known
+            return True, [Ball(place, np.zeros(2), at_worst) if at_worst >= 0 else Ball(place * 0.0, np.array([9.0, 0.0]), 1.0)]
         return True, [Ball(place, point / size * float(seen["slid_mm"]), 1.0)]
     if "pd_mm" not in seen:
         return True, None
@@ -357,7 +358,7 @@ def _constraints(piece: list[Ball]) -> list[Job]:
     if lines:
         rows = np.vstack([sign * ball.a for ball in lines for sign in (-1.0, 1.0)])
         ends = np.concatenate([ball.r + sign * ball.b for ball in lines for sign in (-1.0, 1.0)])
-        made.append({"type": "ineq", "fun": lambda x: rows @ x + ends, "jac": lambda x: rows})
+        made.append({"type": "ineq", "fun": lambda x: rows @ x + ends, "jac": lambda _: rows})
     if discs:
         a, b, r = np.stack([ball.a for ball in discs]), np.stack([ball.b for ball in discs]), np.array([ball.r for ball in discs])
         made.append(
@@ -461,7 +462,7 @@ def compare(job: Job) -> Tally | None:
             wrong.append(f"{np.linalg.norm(move):.4f} mm, the optimum is {best:.4f} mm")
     remedy = remedy_of(case.matter, case.verdict)
     if remedy and pair.design != "progressive":
-        if (remedy.kind == "shift") != (ours is not None):
+        if (remedy.kind == "shift" or remedy.why.code == "narrow") != (ours is not None):
             wrong.append(f"{remedy.kind}, {remedy.why}")
         for shift in (remedy.shared.least, remedy.shared.recommended):
             if shift and not passes(pieces, np.array(shift.move), 1e-9):
