@@ -21,6 +21,7 @@ from pycore.optics.prism import NO_PRISM, Eye, Prism
 from pycore.optics.tilt import BeyondError
 from pycore.sections.answer import Ask, Row, SectionAnswer
 from pycore.sections.body_asks import body_asks
+from pycore.sections.wear_picture import wear_pictures
 from pycore.words import say
 
 # The usual figures to offer where nobody measured (facts section 6, from memory).
@@ -101,6 +102,9 @@ def wear_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(lenses, fit, own)),
         asks=tuple(_asks(lenses, fit)),
         notes=(*_notes(lenses, fit), *(("beyond", {"eye": eye}) for eye in beyond)),
+        draw=lambda: wear_pictures(
+            case, fit, [(lens.worn, lens.made, lens.effective) for lens in lenses.values()]
+        ),
     )
 
 

@@ -555,6 +555,7 @@ def test_traced_rims_are_taken_as_they_are() -> None:
         if count % 4 == 0:  # else the box that 25 points span is not the circle's
             assert edge.thickest[1] == pytest.approx(edge.thinnest[1], abs=1e-3)
         volumes.append(edge.volume_mm3)
+    assert edge.at(90.0) == dict(edge.profile)[86.4], "of places 14.4 degrees apart the nearest"
     assert volumes == pytest.approx([volumes[0]] * 3, rel=5e-3)
 
 

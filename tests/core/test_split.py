@@ -7,6 +7,7 @@ scipy's Brent on the edges themselves.
 from __future__ import annotations
 
 import json
+import math
 from decimal import Decimal
 from typing import Any
 
@@ -20,6 +21,7 @@ from pycore.bench.split import shared, shares, together
 from pycore.optics.prism import NO_PRISM, Prism, from_base
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.split import split_section
+from pycore.words import say
 from tests.core.strategies import patched
 from tests.core.test_edge import case_on, codes, example, framing, plain_job
 
@@ -189,3 +191,28 @@ def test_a_lens_alone_in_its_power_gives_no_edges() -> None:
     lens = framing(plain_job({"sphere": "-1.00"})).lens
     found = shares(ordered, {"right": NO_PRISM, "left": NO_PRISM}, {"right": lens})  # type: ignore[arg-type]
     assert [share.kind for share in found] == KINDS[:4]
+
+
+def test_the_picture_has_every_way_to_scale() -> None:
+    """One pair of rims a way; the band is as wide as the edge is thick, and stays within the picture."""
+    found = answer(plain_job(order_of("3BU", "-2.00"), order_of("4BI", "+1.00")))
+    scene = found.scenes["pair"]
+    shapes = scene["shapes"]
+    rims, bands = ([shape["points"] for shape in shapes if shape["role"] == role] for role in ("outline", "profile-back"))
+    assert len(rims) == len(bands) == 2 * len(KINDS)
+    assert [shape["text"] for shape in shapes if shape["role"] == "way"] == [say(f"section_rows.split.{kind}") for kind in KINDS]
+    assert isinstance(found.own, list)
+    thickest = [share["edges"][eye]["thickest_mm"] for share in found.own for eye in ("right", "left")]
+    thinnest = [share["edges"][eye]["thinnest_mm"] for share in found.own for eye in ("right", "left")]
+    for rim, band, most, least in zip(rims, bands, thickest, thinnest, strict=True):
+        widths = [math.dist(inner, outer) for inner, outer in zip(rim, band, strict=True)]
+        assert max(widths) == pytest.approx(most, abs=0.003)
+        assert min(widths) == pytest.approx(least, abs=0.003)
+    left, low, right, high = scene["extent"]
+    assert all(left < x < right and low < y < high for band in bands for x, y in band)
+
+
+def test_no_picture_without_edges() -> None:
+    job = plain_job(order_of("3BU"), order_of("4BI"))
+    del job["frame"]
+    assert answer(job).scenes == {}

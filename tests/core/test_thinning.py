@@ -258,3 +258,39 @@ def test_titles_and_notes() -> None:
     assert unweighed.own["choices"][1]["weight_g"] is None
     assert unweighed.own["choices"][1]["saved_weight_g"] is None
     assert Choice(rule="none", up=Decimal(0), edges={}).weight_g == 0
+
+
+# --- the picture ------------------------------------------------------------------------------------------------------
+
+
+UP: Job = {"sphere": "+1.00", "prism": [{"amount": "2", "base": "up"}]}
+DOWN: Job = {"sphere": "+1.00", "prism": [{"amount": "4", "base": "down"}]}
+
+
+@pytest.mark.parametrize(("rule", "right", "left"), [("fits", {"sphere": "+3.00"}, {"sphere": "+2.50"}), ("two-thirds", UP, DOWN)])
+def test_the_picture_shows_the_edges_before_and_after(rule: str, right: Job, left: Job) -> None:
+    """At both ends of each cut the drawn lens is as thick as the table says; where nothing fits, by the order's rule."""
+    job = progressive(right, left, thinning={"rule": "two-thirds"})
+    found, scene = own(job), answer(job).scenes["pair"]
+    bodies = [shape["points"] for shape in scene["shapes"] if shape["role"] == "outline"]
+    bare = [shape["points"] for shape in scene["shapes"] if shape["role"] == "before"]
+    for number, eye in enumerate(("right", "left")):
+        drawn, half = bodies[number], len(bodies[number]) // 2
+        front, back = drawn[:half], drawn[half:][::-1]
+        for end, at in ((0, "bottom_mm"), (-1, "top_mm")):
+            assert back[end][0] - front[end][0] == pytest.approx(choice(found, rule)[eye][at], abs=0.002)
+            assert bare[number][end][0] - front[end][0] == pytest.approx(choice(found, "none")[eye][at], abs=0.002)
+            assert back[end][1] == front[end][1]
+    named = [shape["text"] for shape in scene["shapes"] if shape["role"] == "way"]
+    assert named[0].startswith({"fits": "fits both", "two-thirds": "two thirds of the add"}[rule])
+    left_mm, low, right_mm, high = scene["extent"]
+    assert all(left_mm < x < right_mm and low < y < high for body in bodies for x, y in body)
+
+
+def test_the_picture_of_one_lens_or_of_a_stated_amount() -> None:
+    one = answer(progressive({"sphere": "+3.00"}))
+    assert one.title == "fits-one"
+    assert [shape["word"] for shape in one.scenes["pair"]["shapes"] if shape["role"] == "eye-label"] == ["letters.right"]
+    stated = {"rule": "amount", "amount": "1.00", "base": "down"}
+    pair = answer(progressive(UP, DOWN, thinning=stated)).scenes["pair"]
+    assert next(shape["text"] for shape in pair["shapes"] if shape["role"] == "way") == "as the paperwork says: 1.00 down"
