@@ -58,7 +58,7 @@ export function startPage(startEngine) {
     onState(code) {
       root.dataset["engine"] = code;
       standing.engine = code;
-      head?.engine(code, engine.mode);
+      head?.engine(code, engine.start.mode);
       foot?.draw(standing);
     },
   });
@@ -80,7 +80,7 @@ export function startPage(startEngine) {
   head = top;
   const strip = verdictStrip({ show: top.show, goTo });
   foot = strip;
-  top.engine(engine.state, engine.mode);
+  top.engine(engine.state, engine.start.mode);
 
   function toggleKeypad() {
     keypad.toggle();
