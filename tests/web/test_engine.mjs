@@ -2,6 +2,8 @@
 import assert from "node:assert/strict";
 import { afterEach, beforeEach, test } from "node:test";
 import { startEngine } from "../../web/app/engine.js";
+import { createKeeper } from "../../web/app/panels/keeper.js";
+import { NAMES } from "../../web/app/section-names.js";
 
 /** Stands in for a browser's worker: keeps what it is sent, answers when the test says so. */
 class FakeWorker {
@@ -214,4 +216,23 @@ test("a question that has not begun can be taken back; one that is being answere
   assert.equal(FakeWorker.last.asked.at(-1).do, "newest", "what was taken back is never sent");
   FakeWorker.last.answer();
   assert.equal((await newest).what, "newest");
+});
+
+test("a keystroke waits behind one section at most", async () => {
+  const engine = await startAsked();
+  const worker = FakeWorker.last;
+  const keeper = createKeeper({ engine, names: NAMES, first: () => [], changed: () => {}, pauseMs: 1 });
+  keeper.follow({ id: "a" }, []);
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, ["layout"]);
+  worker.answer();
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, ["field"], "a section is under way");
+  const keystroke = engine.ask({ do: "report", sections: [] }, { lane: "verdict" });
+  worker.answer();
+  assert.deepEqual(worker.asked.at(-1).sections, [], "it comes next, before the sections that are left");
+  worker.answer();
+  assert.ok(await keystroke);
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, [NAMES[2]], "then they go on");
 });
