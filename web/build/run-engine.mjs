@@ -33,8 +33,8 @@ export async function startBuiltEngine(folder, source) {
   });
   page.wedgewrightEngine(port);
   port.onmessage({ data: { kind: "wasm", text: page.wedgewrightWasm } });
-  const text = source === "snapshot" ? page.wedgewrightSnapshot : page.wedgewrightPython;
-  port.onmessage({ data: { kind: source, text } });
+  const memory = source === "snapshot" ? page.wedgewrightSnapshot : page.wedgewrightPython;
+  port.onmessage({ data: { kind: source, text: memory } });
   await ready;
 
   let id = 0;
