@@ -59,7 +59,7 @@ export function startPage(startEngine) {
     onState(code) {
       root.dataset["engine"] = code;
       standing.engine = code;
-      head?.engine(code, engine.mode);
+      if (head) showStart();
       foot?.draw(standing);
     },
   });
@@ -82,7 +82,12 @@ export function startPage(startEngine) {
   head = top;
   const strip = verdictStrip({ show: top.show, goTo });
   foot = strip;
-  top.engine(engine.state, engine.mode);
+  showStart();
+
+  function showStart() {
+    head?.engine(engine.state, engine.start);
+    if (engine.state === "ready") views.bench.started(engine.start);
+  }
 
   function toggleKeypad() {
     keypad.toggle();

@@ -11,6 +11,7 @@ import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
 import { base64OfGzip, buildPythonZip } from "./python.mjs";
+import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
 
@@ -50,13 +51,16 @@ async function main() {
   const web = resolve(values.web);
   await writeWords(core, web);
   const wasm = base64OfGzip(await readFile(join(pyodideFolder, "pyodide.asm.wasm")));
-  const python = base64OfGzip(await buildPythonZip(pyodideFolder, core));
+  const library = await buildPythonZip(pyodideFolder, core);
+  const python = base64OfGzip(library);
+  const snapshot = base64OfGzip(await buildSnapshot(pyodideFolder, library));
   const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),
     ...(await buildScripts(web)),
     engine,
     wasm,
+    snapshot,
     python,
   };
   await writeFolder(resolve(values.out), {
@@ -66,6 +70,7 @@ async function main() {
     "print.css": page.printStyle,
     "engine/worker.js": engine,
     "engine/wasm.js": `globalThis.wedgewrightWasm = "${wasm}";\n`,
+    "engine/snapshot.js": `globalThis.wedgewrightSnapshot = "${snapshot}";\n`,
     "engine/python.js": `globalThis.wedgewrightPython = "${python}";\n`,
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),

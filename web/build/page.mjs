@@ -12,6 +12,7 @@ import { join } from "node:path";
  * @property {string} printStyle
  * @property {string} engine
  * @property {string} wasm
+ * @property {string} snapshot
  * @property {string} python
  */
 
@@ -80,6 +81,7 @@ export function singlePage(page) {
     `<script>${page.app}</script>`,
     `<script>${page.engine}</script>`,
     `<script type="application/octet-stream" id="wedgewright-wasm">${page.wasm}</script>`,
+    `<script type="application/octet-stream" id="wedgewright-snapshot">${page.snapshot}</script>`,
     `<script type="application/octet-stream" id="wedgewright-python">${page.python}</script>`,
     "</body>",
   ].join("\n");

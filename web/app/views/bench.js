@@ -5,6 +5,7 @@ import { faultText } from "../faults.js";
 import { choiceControl } from "../controls.js";
 import * as fields from "../fields.js";
 import { readFile } from "../job.js";
+import { startSentences } from "../start-words.js";
 import { say } from "../words.js";
 
 /**
@@ -29,6 +30,7 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
     control.show(settings[name]);
     return control.node;
   };
+  const started = el("p", { class: "help", id: "started" });
   const confirm = el(
     "div",
     { class: "confirm", hidden: true },
@@ -45,6 +47,8 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
   );
   return {
     showEditions: shop.show,
+    /** @param {import("../engine.js").Start} start */
+    started: (start) => (started.textContent = startSentences(start).join(" ")),
     node: el(
       "div",
       { class: "view bench" },
@@ -72,6 +76,7 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         setting("date", ["iso", "day", "day-point", "month"]),
         setting("paper", ["any", "a4", "letter"]),
       ),
+      card("bench-start", say("page.bench.start"), started),
       card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),
   };
