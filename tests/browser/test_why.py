@@ -94,8 +94,8 @@ def test_before_anything_is_read_a_cause_is_chosen_and_seen(page_from_disk: Page
 
 
 @pytest.mark.parametrize("theme", ["light", "dark"])
-def test_why_is_legible_and_large_enough(page_from_disk: Page, theme: Any) -> None:
-    page = page_from_disk
+def test_why_is_legible_and_large_enough(page: Page, dist: Path, theme: Any) -> None:
+    page.goto((dist / "index.html").as_uri())
     page.emulate_media(color_scheme=theme)
     page.set_viewport_size({"width": 800, "height": 1280})
     failing(page, "DEMO-1047")

@@ -3,14 +3,15 @@
 import { button, el, redraw, svg } from "../dom.js";
 import { say, shown } from "../words.js";
 
-/** @typedef {{code: string, eyes: string[]}} Name of a cause and the lenses it is in */
+/** @typedef {{code: string, eyes: string[]}} Part a cause and the lenses it is in */
+/** @typedef {Part & {with: Part[]}} Name one cause, or two that came together */
 /**
  * @typedef {object} Cause
  * @property {string} code
  * @property {string[]} eyes
  * @property {number} probability
  * @property {{shown: string}|null} estimate
- * @property {Name[][]} tied_with causes that predict the same readings, each of one part or two
+ * @property {Name[]} tied_with causes that predict the same readings
  * @property {Record<string, string>} shown
  */
 
@@ -27,15 +28,18 @@ function bar(probability) {
   );
 }
 
-/** @param {Name} name */
-export function causeName({ code, eyes }) {
+/** @param {Part} part */
+function partName({ code, eyes }) {
   return say(`causes.${code}`, { eye: say(`eyes.${eyes.length > 1 ? "both" : eyes[0]}`) });
 }
+
+/** @param {Name} name */
+const causeName = (name) => [name, ...name.with].map(partName).join(" + ");
 
 /** @param {Cause} cause @param {(cause: Cause) => void} imagine */
 function causeNode(cause, imagine) {
   const { code, eyes, probability, estimate, tied_with: ties, shown: texts } = cause;
-  const tied = ties.map((parts) => parts.map(causeName).join(" + ")).join("; ");
+  const tied = ties.map(causeName).join("; ");
   return el(
     "li",
     { class: "cause" },
