@@ -38,11 +38,15 @@ def _flipped(lens: Lens, _site: Site, _cause: Cause) -> Variants:
     return [(1.0, _with_prism(lens, lens.px, -lens.py))]
 
 
-def _exchanged(lens: Lens, _site: Site, _cause: Cause) -> Variants:
+def _exchanged(lens: Lens, _site: Site, cause: Cause) -> Variants:
     if not lens.px or not lens.py:
         return []
     across, along = math.copysign(lens.py, lens.px), math.copysign(lens.px, lens.py)
-    return [(1.0, _with_prism(lens, across, along))]
+    signed = cause.of("as_signed_numbers")
+    return [
+        (1.0 - signed, _with_prism(lens, across, along)),
+        (signed, _with_prism(lens, lens.py, lens.px)),
+    ]
 
 
 def _added(lens: Lens, _site: Site, _cause: Cause) -> Variants:
