@@ -14,7 +14,7 @@ from pycore.bench.cause_effect import EFFECTS
 from pycore.bench.cause_fit import Column, Fit, Gauge, Key, joined, turn_column
 from pycore.bench.cause_lens import HEIGHT_SPREAD_MM, Held, Lens, height_is_free, held_lenses
 from pycore.bench.cause_shared import Common, commons, own_causes
-from pycore.bench.cause_table import AS_ORDERED, Cause, CauseTable, cause_table
+from pycore.bench.cause_table import AS_ORDERED, NONE_OF_THESE, Cause, CauseTable, cause_table
 from pycore.bench.expected import Due
 from pycore.job.document import Job
 from pycore.optics.prism import Eye
@@ -58,7 +58,8 @@ NO_CAUSE = Own(None, 0, 1.0)
 class Bench:
     """The lenses of one job with their gauges: all that weighing needs.
 
-    `zero` the standard uncertainty of the instrument's zero, prism dioptres; `free_height` where
+    `held` are the lenses ordered, `gauges` those of which something was read: what is ordered for
+    the other one counts where both were exchanged. `zero` the standard uncertainty of the instrument's zero, prism dioptres; `free_height` where
     the height read at is common but not known.
     """
 
@@ -119,7 +120,10 @@ class Bench:
         none, *others = commons(self.held, self.table)
         kept: dict[str, list[Common]] = {}
         for common in others:
-            if any(self._changes(none, common, eye) for eye in self.held):
+            cause = self.table.causes[common.code]
+            # What can be in one lens alone is in both only if it changes something in both.
+            enough = all if cause.right or cause.left else any
+            if enough([self._changes(none, common, eye) for eye in self.gauges]):
                 kept.setdefault(common.code, []).append(common)
         found = []
         for code, variants in kept.items():
@@ -141,9 +145,10 @@ class Bench:
         )
 
     def owns(self, none: Common, eye: Eye) -> list[Own]:
-        """The causes one lens may have of its own that would change something; first: none."""
+        """The causes one lens may have of its own that would change something: none first, then
+        the likeliest."""
         still, held, gauge = none.lenses[eye], self.held[eye], self.gauges[eye]
-        kept = [NO_CAUSE]
+        kept: list[Own] = []
         for cause, weight in own_causes(held, self.table):
             made = EFFECTS[cause.code](still, held.site, cause)
             variants = [
@@ -153,8 +158,9 @@ class Bench:
             ]
             whole = sum([variant.weight for variant in variants])
             kept += [own._replace(weight=weight * own.weight / whole) for own in variants]
-        rest = 1.0 - sum([own.weight for own in kept[1:]])
-        return [NO_CAUSE._replace(weight=rest), *kept[1:]]
+        rest = 1.0 - sum([own.weight for own in kept])
+        kept.sort(key=lambda own: -own.weight)
+        return [NO_CAUSE._replace(weight=rest), *kept]
 
 
 class _Weighed(NamedTuple):
@@ -172,7 +178,7 @@ def weigh(bench: Bench) -> list[Story]:
     Arguments: `bench`. Returns the hypotheses; their probabilities sum to 1.
     """
     none, *shared = bench.commons()
-    owns = {eye: bench.owns(none, eye) for eye in bench.held}
+    owns = {eye: bench.owns(none, eye) for eye in bench.gauges}
     found = [*_without_shared(bench, none, owns)]
     alone = [(common, _alone(bench, common, owns)) for common in shared]
     found += [(common, own, weight) for common, (own, weight, _) in alone]
@@ -197,9 +203,7 @@ def _normalised(found: list[Found]) -> list[Story]:
     return sorted(stories, key=lambda story: -story.probability)
 
 
-def _without_shared(
-    bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]
-) -> Iterator[Found]:
+def _without_shared(bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]) -> Iterator[Found]:
     log_none = math.log(none.weight)
     lists = [
         sorted(_weighed(bench, none, eye, owns[eye]), key=lambda one: -one.top) for eye in owns
@@ -259,6 +263,8 @@ def _with_own(
     least: float,
 ) -> Iterator[Found]:
     """A shared cause together with one of one lens, where that can reach the weight `least`."""
+    if common.code == NONE_OF_THESE:
+        return
     log_common = math.log(common.weight)
     none = {eye: owns[eye][0] for eye in owns}
     for eye in owns:
@@ -268,9 +274,10 @@ def _with_own(
         reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fit) for fit in others])
         for own in owns[eye][1:]:
             log_prior = math.log(own.weight)
-            # Nothing happens twice to one lens: it would only undo what it did.
-            if reach + log_prior < least or own.code == common.code:
-                continue
+            if reach + log_prior < least:
+                break  # the likelier causes come first
+            if own.code in (common.code, NONE_OF_THESE):
+                continue  # nothing happens twice to one lens, and none of these means none
             fit = bench.fit(common, eye, own)
             if fit is not None:
                 yield common, {**none, eye: own}, log_rest + log_prior + joined(fit, *others)
@@ -283,9 +290,11 @@ def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
     """
     table = cause_table().in_state(job.state)
     held = held_lenses(job, dues)
-    held = {eye: one for eye, one in held.items() if one.seen.count}
-    if not held:
+    seen = {eye: one for eye, one in held.items() if one.seen.size}
+    if not seen:
         return None
-    gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in held.items()}
+    if len(seen) == 1:  # nothing was read before or after it
+        held = {eye: one._replace(site=one.site._replace(second=0.0)) for eye, one in held.items()}
+    gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in seen.items()}
     zero = float(job.instrument.uncertainty.zero)
     return Bench(held, gauges, table, zero, height_is_free(job))

@@ -154,7 +154,7 @@ class Gauge:
         return scaled
 
     def _prism_scaled(self, lens: Lens, column: Column) -> list[float]:
-        key = lens.slips, lens.shifts, column
+        key = lens.slips, lens.shifts, lens.broad, column
         found = self._columns.get(key)
         if found is None:
             part = self._prism_part(column.read, column.made)
@@ -185,9 +185,7 @@ class Gauge:
         parts: list[float] = [log_width, *(part for row in inverse for part in row)]
         if seen.prism is not None:
             parts += (x + lens.sx, y + lens.sy)
-        parts += [
-            made for made, part in zip((x, y), seen.place, strict=True) if part is not None
-        ]
+        parts += [made for made, part in zip((x, y), seen.place, strict=True) if part is not None]
         if seen.power is not None:
             parts += (*lens[4:7], lens.power_spread, float(lens.broad))
         if seen.add is not None:
@@ -199,6 +197,8 @@ class Gauge:
     def changes(self, lens: Lens, still: Lens) -> bool:
         """Tell whether `lens` predicts anything else than `still` does for what was read."""
         seen = self.seen
+        if lens.broad:
+            return True
         if seen.power is not None and (_differ(lens[4:7], still[4:7]) or lens.power_spread):
             return True
         if seen.add is not None and _differ((lens.add,), (still.add,)):
@@ -219,7 +219,7 @@ class Gauge:
 
     def _width(self, lens: Lens) -> tuple[Rows, float]:
         """Scales prism and place to independent standard deviations; kept by the columns."""
-        key = lens.slips, lens.shifts
+        key = lens.slips, lens.shifts, lens.broad
         found = self._widths.get(key)
         if found is None:
             found = self._widths[key] = self._make_width(lens)
@@ -242,6 +242,8 @@ class Gauge:
             for row, one in zip(rows, part, strict=True):
                 for at, two in enumerate(part):
                     row[at] += one * two
+        for at, row in enumerate(rows):
+            row[at] += lens.broad * self.scatter.none_prism**2
         return inverse_root(rows)
 
     def _power_width(self, lens: Lens) -> tuple[Rows, float]:
@@ -291,7 +293,7 @@ def _differ(one: Sequence[float], two: Sequence[float]) -> bool:
 
 def dot(one: Sequence[float], two: Sequence[float]) -> float:
     """The sum of products."""
-    return sum(map(mul, one, two))
+    return sum(map(mul, one, two), 0.0)
 
 
 def _slopes(

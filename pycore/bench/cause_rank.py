@@ -80,7 +80,7 @@ def rank(bench: Bench, stories: Sequence[Story]) -> Ranking:
     told: dict[Label, list[Story]] = {}
     for story in stories:
         told.setdefault(label_of(story), []).append(story)
-    eyes = tuple(bench.held)
+    eyes = tuple(bench.gauges)
     for code in (AS_ORDERED, NONE_OF_THESE):
         if not any(len(label) == 1 and label[0].code == code for label in told):
             told[(Named(code, eyes),)] = []
@@ -124,7 +124,9 @@ def _groups(bench: Bench, stories: Sequence[Story]) -> list[Group]:
     return groups + [Group((label,), (share,)) for label, share in alone.items()]
 
 
-def _ties(groups: Sequence[Group], told: Mapping[Label, Sequence[Story]]) -> dict[Label, tuple[Label, ...]]:
+def _ties(
+    groups: Sequence[Group], told: Mapping[Label, Sequence[Story]]
+) -> dict[Label, tuple[Label, ...]]:
     """For each cause the others of the likeliest group it is in."""
     ties: dict[Label, tuple[Label, ...]] = {}
     for group in sorted(groups, key=lambda group: -group.probability):

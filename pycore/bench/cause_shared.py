@@ -6,6 +6,8 @@ cause, then what was done at the bench.
 
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
+from itertools import product
+from math import prod
 
 from pycore.bench.cause_effect import EFFECTS, turned, turns
 from pycore.bench.cause_lens import OTHER, Held, Lens, Vector
@@ -71,15 +73,14 @@ def _in_both(cause: Cause, held: Mapping[Eye, Held], due: Pair) -> list[Common]:
     effect = EFFECTS[cause.code]
     made = {eye: effect(due[eye], held[eye].site, cause) for eye in held}
     count = min(map(len, made.values()))
-    if cause.place != "bench":
+    shares = [share for share, _ in next(iter(made.values()))]
+    if cause.place == "bench":
         return [
-            _variant(cause, at, made[eye][at][0], {eye: made[eye][at][1] for eye in held})
+            _variant(cause, at, shares[at], due, after=_again(cause, held, at))
             for at in range(count)
-            for eye in list(held)[:1]
         ]
-    return [
-        _variant(cause, at, 1.0 / count, due, after=_again(cause, held, at)) for at in range(count)
-    ]
+    lenses = [{eye: made[eye][at][1] for eye in held} for at in range(count)]
+    return [_variant(cause, at, shares[at], lenses[at]) for at in range(count)]
 
 
 def _again(cause: Cause, held: Mapping[Eye, Held], at: int) -> After:
@@ -162,6 +163,19 @@ def _have_powers(due: Pair) -> bool:
     return all(lens.has_power for lens in due.values())
 
 
+def _both_rotated(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Common]:
+    """Each lens turned by an angle of its own: every part of one with every part of the other."""
+    parts = list(turns(cause.of("turn_deg")))
+    found = []
+    for at, chosen in enumerate(product(parts, repeat=len(due))):
+        lenses = {
+            eye: turned(lens, *turn)
+            for (eye, lens), (_, turn) in zip(due.items(), chosen, strict=True)
+        }
+        found.append(_variant(cause, at, prod([weight for weight, _ in chosen]), lenses))
+    return found
+
+
 def _swapped(due: Pair) -> Pair:
     return {eye: due[OTHER[eye]] for eye in due}
 
@@ -212,6 +226,7 @@ SHARED: Mapping[str, Shared] = {
     "frame-not-square": _not_square,
     "layout-pd-wrong": _pd_wrong,
     "layout-height-wrong": _height_wrong,
+    "lens-rotated": _both_rotated,
     "lenses-swapped": _bodies_swapped,
     "eyes-swapped-in-words": _words_swapped,
     "not-split": _not_split,

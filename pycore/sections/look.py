@@ -10,7 +10,7 @@ anything more.
 from collections.abc import Iterator, Mapping, Sequence
 
 from pycore.bench.cause_rank import Label, Ranking
-from pycore.bench.cause_weighing import Weighing, weighing_of
+from pycore.bench.cause_weighing import weighing_of
 from pycore.bench.look_worth import LEAST_BITS, Offer, Worth, group_bits, worths
 from pycore.case import Case
 from pycore.decimals import fixed, from_float
