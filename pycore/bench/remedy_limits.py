@@ -23,8 +23,7 @@ Rows = Mapping[tuple[Eye, str], Move]
 RIGHTWARDS: Mapping[Eye, Move] = {"right": (1.0, 0.0, 0.0, 0.0), "left": (0.0, 0.0, 1.0, 0.0)}
 UPWARDS: Mapping[Eye, Move] = {"right": (0.0, 1.0, 0.0, 0.0), "left": (0.0, 0.0, 0.0, 1.0)}
 _SAFE = 1e-7  # kept back of an accepted half width, so that its doubt is not above
-_TINY = 1e-6
-_MOST_STEPS = 40
+_TINY, _SOLVED = 1e-6, 1e-8
 
 
 def sum_of(*terms: tuple[float, Move]) -> Move:
@@ -174,7 +173,10 @@ def half_width(check: Check, doubt: float | None) -> float | None:
 
 @lru_cache(maxsize=64)  # the same at every keystroke
 def _accepted(limit: float, uncertainty: float, doubt: float, round_: bool) -> float | None:
-    """The largest deviation whose doubt is accepted, by Newton's rule kept between two ends."""
+    """The largest deviation whose doubt is accepted, by Newton's rule.
+
+    The doubt grows ever faster up to the limit, and the start is beside or beyond the solution.
+    """
     chance_of = chance_within_circle if round_ else chance_within
 
     def excess(deviation: float) -> float:
@@ -182,17 +184,9 @@ def _accepted(limit: float, uncertainty: float, doubt: float, round_: bool) -> f
 
     if excess(0.0) > 0.0:
         return None
-    low, high = 0.0, limit  # accepted, and not: a reading on its limit is doubted by half
-    at = max(0.0, limit - 1.7 * uncertainty)
-    for _ in range(_MOST_STEPS):
-        over = excess(at)
-        low, high = (low, at) if over > 0.0 else (at, high)
-        slope = (excess(at + _TINY) - over) / _TINY
-        at = at - over / slope if slope > 0.0 else high
-        if not low < at < high:
-            at = (low + high) / 2.0
-        if abs(over) < _TINY:
-            break
+    at = limit - 1.7 * uncertainty
+    while abs(over := excess(at)) > _SOLVED:
+        at -= over * _TINY / (excess(at + _TINY) - over)
     return max(0.0, at - _SAFE)
 
 
