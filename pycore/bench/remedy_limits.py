@@ -108,7 +108,8 @@ def pieces(
 
     Arguments: `matter`; `checks` of its verdict; `careful` where a doubt above 0.05 does not
     pass. Yields the limits of each piece. Alternatives of a group (prism or mm) make a piece
-    each; where the option asks for both they hold together and share the doubt evenly.
+    each; where the option asks for both they hold together and share the doubt evenly. Their
+    doubts multiply, so carefully both together are a piece too, each with the root of the doubt.
     """
     groups: dict[str, list[Check]] = {}
     for check in checks:
@@ -124,14 +125,19 @@ def _ways(
     matter: Matter, rows: Rows, members: Sequence[Check], *, careful: bool
 ) -> list[tuple[PrismLimit, ...]]:
     """The ways in which one group can pass."""
-    strict = matter.option("prism-alternatives") == "both"
-    doubt = ACCEPTED_DOUBT / (len(members) if strict else 1) if careful else None
-    ways = [
-        limits for member in members if (limits := _limits(matter, rows, member, doubt)) is not None
-    ]
-    if not strict:
-        return ways
-    return [tuple(limit for way in ways for limit in way)] if len(ways) == len(members) else []
+    if matter.option("prism-alternatives") == "both":
+        doubt = ACCEPTED_DOUBT / len(members) if careful else None
+        sets = [(members, doubt)]
+    else:
+        sets = [((member,), ACCEPTED_DOUBT if careful else None) for member in members]
+        if careful and len(members) > 1:
+            sets.append((members, math.sqrt(ACCEPTED_DOUBT)))
+    ways = []
+    for together, doubt in sets:
+        limits = [_limits(matter, rows, member, doubt) for member in together]
+        if None not in limits:
+            ways.append(tuple(one for part in limits for one in part or ()))
+    return ways
 
 
 def _limits(

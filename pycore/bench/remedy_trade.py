@@ -98,9 +98,7 @@ def _cover(matter: Matter, eye: Eye) -> Limit | None:
         return None
     radius_mm = (float(blank.diameter_mm) - ALLOWANCE_MM) / 2.0
     centre = float(blank.centre.right_mm), float(blank.centre.up_mm)
-    return Cover(
-        RIGHTWARDS[eye], UPWARDS[eye], centre, rim.points(eye), rim.ed_mm / 2.0, radius_mm
-    )
+    return Cover(RIGHTWARDS[eye], UPWARDS[eye], centre, rim.points(eye), rim.ed_mm / 2.0, radius_mm)
 
 
 def blank_of_uncut(matter: Matter, eye: Eye) -> Blank | None:

@@ -168,6 +168,24 @@ def test_recommended_leaves_a_doubt_of_five_per_cent() -> None:
     assert recommended.doubt <= 0.05 < least.doubt
 
 
+def test_prism_and_millimetres_together_leave_less_doubt() -> None:
+    """Their doubts multiply: 22 % each do for 5 %, though neither would alone (0.15 for each lens, 0.45 mm)."""
+    job = patched(PAIR, instrument__uncertainty__prism="0.15", instrument__uncertainty__position_mm="0.45")
+    assert recommended(seen(job, "1 up")) is None
+    job = seen(job, "1 up", readings__right__prp_height_mm="16", readings__left__prp_height_mm="18")
+    alone = patched(job, edition_options={"prism-alternatives": "replace"})
+    assert recommended(alone) is None, "2 × 0.45² under the root, 1.0 mm: 88 % at best"
+    both = recommended(job)
+    assert both
+    assert both.doubt <= 0.05
+
+
+def recommended(job: Job) -> Shift | None:
+    found = remedy(job)
+    assert found
+    return found.shared.recommended
+
+
 def test_nothing_is_recommended_where_no_reading_is_sure() -> None:
     found = remedy(seen(patched(PAIR, instrument__uncertainty__prism="0.2"), "1.00 up"))
     assert found
