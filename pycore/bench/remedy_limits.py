@@ -23,8 +23,7 @@ Rows = Mapping[tuple[Eye, str], Move]
 RIGHTWARDS: Mapping[Eye, Move] = {"right": (1.0, 0.0, 0.0, 0.0), "left": (0.0, 0.0, 1.0, 0.0)}
 UPWARDS: Mapping[Eye, Move] = {"right": (0.0, 1.0, 0.0, 0.0), "left": (0.0, 0.0, 0.0, 1.0)}
 _SAFE = 1e-7  # kept back of an accepted half width, so that its doubt is not above
-_TINY = 1e-6
-_MOST_STEPS = 40
+_TINY, _SOLVED = 1e-6, 1e-8
 
 
 def sum_of(*terms: tuple[float, Move]) -> Move:
@@ -109,7 +108,8 @@ def pieces(
 
     Arguments: `matter`; `checks` of its verdict; `careful` where a doubt above 0.05 does not
     pass. Yields the limits of each piece. Alternatives of a group (prism or mm) make a piece
-    each; where the option asks for both they hold together and share the doubt evenly.
+    each; where the option asks for both they hold together and share the doubt evenly. Their
+    doubts multiply, so carefully both together are a piece too, each with the root of the doubt.
     """
     groups: dict[str, list[Check]] = {}
     for check in checks:
@@ -125,14 +125,19 @@ def _ways(
     matter: Matter, rows: Rows, members: Sequence[Check], *, careful: bool
 ) -> list[tuple[PrismLimit, ...]]:
     """The ways in which one group can pass."""
-    strict = matter.option("prism-alternatives") == "both"
-    doubt = ACCEPTED_DOUBT / (len(members) if strict else 1) if careful else None
-    ways = [
-        limits for member in members if (limits := _limits(matter, rows, member, doubt)) is not None
-    ]
-    if not strict:
-        return ways
-    return [tuple(limit for way in ways for limit in way)] if len(ways) == len(members) else []
+    if matter.option("prism-alternatives") == "both":
+        doubt = ACCEPTED_DOUBT / len(members) if careful else None
+        sets = [(members, doubt)]
+    else:
+        sets = [((member,), ACCEPTED_DOUBT if careful else None) for member in members]
+        if careful and len(members) > 1:
+            sets.append((members, math.sqrt(ACCEPTED_DOUBT)))
+    ways = []
+    for together, doubt in sets:
+        limits = [_limits(matter, rows, member, doubt) for member in together]
+        if None not in limits:
+            ways.append(tuple(one for part in limits for one in part or ()))
+    return ways
 
 
 def _limits(
@@ -174,7 +179,10 @@ def half_width(check: Check, doubt: float | None) -> float | None:
 
 @lru_cache(maxsize=64)  # the same at every keystroke
 def _accepted(limit: float, uncertainty: float, doubt: float, round_: bool) -> float | None:
-    """The largest deviation whose doubt is accepted, by Newton's rule kept between two ends."""
+    """The largest deviation whose doubt is accepted, by Newton's rule.
+
+    The doubt grows ever faster up to the limit, and the start is beside or beyond the solution.
+    """
     chance_of = chance_within_circle if round_ else chance_within
 
     def excess(deviation: float) -> float:
@@ -182,17 +190,9 @@ def _accepted(limit: float, uncertainty: float, doubt: float, round_: bool) -> f
 
     if excess(0.0) > 0.0:
         return None
-    low, high = 0.0, limit  # accepted, and not: a reading on its limit is doubted by half
-    at = max(0.0, limit - 1.7 * uncertainty)
-    for _ in range(_MOST_STEPS):
-        over = excess(at)
-        low, high = (low, at) if over > 0.0 else (at, high)
-        slope = (excess(at + _TINY) - over) / _TINY
-        at = at - over / slope if slope > 0.0 else high
-        if not low < at < high:
-            at = (low + high) / 2.0
-        if abs(over) < _TINY:
-            break
+    at = limit - 1.7 * uncertainty
+    while abs(over := excess(at)) > _SOLVED:
+        at -= over * _TINY / (excess(at + _TINY) - over)
     return max(0.0, at - _SAFE)
 
 

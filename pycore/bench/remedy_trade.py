@@ -11,7 +11,7 @@ from decimal import Decimal
 
 from pycore.bench.decentring import ALLOWANCE_MM, LARGEST_BLANK_MM
 from pycore.bench.layout import Spot
-from pycore.bench.lens_layout import ed_of, lens_layout
+from pycore.bench.lens_layout import lens_layout
 from pycore.bench.matter import Matter
 from pycore.bench.outline import outline_of
 from pycore.bench.remedy_least import Cover, Disc, Limit, Strip
@@ -93,17 +93,12 @@ def has_segment(matter: Matter, eye: Eye) -> bool:
 
 
 def _cover(matter: Matter, eye: Eye) -> Limit | None:
-    blank = blank_of_uncut(matter, eye)
-    if blank is None:
+    blank, rim = blank_of_uncut(matter, eye), outline_of(matter.job.frame)
+    if blank is None or rim is None:
         return None
     radius_mm = (float(blank.diameter_mm) - ALLOWANCE_MM) / 2.0
-    rim, ed_mm = outline_of(matter.job.frame), ed_of(matter.job)
-    points = rim.points(eye) if rim else ((0.0, 0.0),)
-    reach_mm = rim.ed_mm / 2.0 if rim else 0.0
-    if rim is None:
-        radius_mm -= (ed_mm or 0.0) / 2.0  # by the rule: ED + 2 times the distance + 2
     centre = float(blank.centre.right_mm), float(blank.centre.up_mm)
-    return Cover(RIGHTWARDS[eye], UPWARDS[eye], centre, points, reach_mm, max(radius_mm, 0.0))
+    return Cover(RIGHTWARDS[eye], UPWARDS[eye], centre, rim.points(eye), rim.ed_mm / 2.0, radius_mm)
 
 
 def blank_of_uncut(matter: Matter, eye: Eye) -> Blank | None:
@@ -115,7 +110,7 @@ def blank_of_uncut(matter: Matter, eye: Eye) -> Blank | None:
     """
     due = matter.dues[eye]
     lens = lens_layout(matter.job, due) if matter.job.state == "uncut" else None
-    if lens is None or lens.ground is None or lens.ground.by_rule_mm is None:
+    if lens is None or lens.ground is None:
         return None
     size, surfaced = lens.order.lens.blank_diameter_mm, lens.order.surfacing is not None
     centre = None

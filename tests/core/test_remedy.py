@@ -168,6 +168,24 @@ def test_recommended_leaves_a_doubt_of_five_per_cent() -> None:
     assert recommended.doubt <= 0.05 < least.doubt
 
 
+def test_prism_and_millimetres_together_leave_less_doubt() -> None:
+    """Their doubts multiply: 22 % each do for 5 %, though neither would alone (0.15 for each lens, 0.45 mm)."""
+    job = patched(PAIR, instrument__uncertainty__prism="0.15", instrument__uncertainty__position_mm="0.45")
+    assert recommended(seen(job, "1 up")) is None
+    job = seen(job, "1 up", readings__right__prp_height_mm="16", readings__left__prp_height_mm="18")
+    alone = patched(job, edition_options={"prism-alternatives": "replace"})
+    assert recommended(alone) is None, "2 × 0.45² under the root, 1.0 mm: 88 % at best"
+    both = recommended(job)
+    assert both
+    assert both.doubt <= 0.05
+
+
+def recommended(job: Job) -> Shift | None:
+    found = remedy(job)
+    assert found
+    return found.shared.recommended
+
+
 def test_nothing_is_recommended_where_no_reading_is_sure() -> None:
     found = remedy(seen(patched(PAIR, instrument__uncertainty__prism="0.2"), "1.00 up"))
     assert found
@@ -183,6 +201,19 @@ def test_a_grid_too_coarse_is_made_finer() -> None:
     assert found.only["right"].recommended
     up_mm = found.only["right"].recommended.move[1]
     assert round(up_mm, 1) != up_mm == round(up_mm, 2)
+
+
+def test_decimals_decide_on_the_grid() -> None:
+    """1.4 mm would leave 0.33000004 of 0.33: so near the limit that only decimals tell, and 1.5 mm it is."""
+    assert shift(seen(PAIR, "1.03000004 up", left__partner=True)).move == (0, 1.5, 0, 0)
+    assert shift(seen(PAIR, "1.03 up", left__partner=True)).move == (0, 1.4, 0, 0)
+
+
+def test_limits_that_meet_between_the_places_of_the_grid() -> None:
+    """+1.00 D, 1.329999 off in an oblique direction: 9.99999 mm of 10 allowed, and no thousandth of a mm in between."""
+    up = math.sqrt(1.329999**2 - 0.73**2)
+    job = patched(UNCUT, right__sphere="+1.00")
+    assert why(seen(job, f"0.73 in, {up:.9f} up"))[0] == "narrow"
 
 
 # --- millimetres ---------------------------------------------------------------------------------------------------------
@@ -283,7 +314,7 @@ def test_why_nothing_is_moved() -> None:
 def test_a_lens_that_is_not_read_or_not_known_stays() -> None:
     """Uncut: the left lens was not read; without a sphere ordered there is no power to move by."""
     half = seen(UNCUT, "1.5 up")
-    del half["readings"]["left"]
+    half["readings"]["left"] = {"slid_mm": "1"}
     assert shift(half).eyes == ("right",)
     bare = patched(seen(PAIR, "1.5 in"), left={"prism": words("0 up")})
     assert movable(matter_of_job(bare)) == ("right",)
@@ -312,8 +343,9 @@ def test_the_blank_must_cover_the_rim() -> None:
     job = patched(UNCUT, frame=frame, right__prp_height_mm="25", right__blank_diameter_mm="60", right__surfacing=place)
     assert shift(seen(job, "2.33 up")).move == (0, 4.0, 0, 0)
     assert why(seen(job, "2.38 up")) == ("blank", {"eye": "right", "move": "4.1", "blank": "60"})
-    rule = patched(job, frame={"dbl_mm": "12", "a_mm": "50", "ed_mm": "50", "outline_mm": ["25"] * 36})
-    assert why(seen(rule, "2.38 up"))[0] == "blank"
+    traced = patched(job, frame={"dbl_mm": "12", "outline_mm": ["25"] * 36})
+    assert why(seen(traced, "2.38 up"))[0] == "blank"
+    assert why(seen(patched(job, right__sphere="0.00"), "2.38 up"))[0] == "no-power"
 
 
 def test_a_finished_blank_lies_around_its_optical_centre() -> None:
@@ -321,6 +353,7 @@ def test_a_finished_blank_lies_around_its_optical_centre() -> None:
     frame = {"a_mm": "50", "b_mm": "50", "dbl_mm": "12", "shape": "round"}
     job = patched(UNCUT, frame=frame, right__prp_height_mm="25", left__prp_height_mm="25", right__blank_diameter_mm="53.3")
     assert shift(seen(job, "1.0 up")).move == (0, 1.4, 0, 0)
+    assert why(seen(patched(job, right__sphere="0.00"), "1.0 up"))[0] == "no-power", "and no optical centre"
     assert shift(seen(patched(job, right__blank_diameter_mm="53"), "1.0 up")).move == (0, 1.5, 0, 0)
     assert why(seen(patched(job, right__blank_diameter_mm="51"), "1.0 up"))[0] == "blank"
     ground = patched(job, right__prism=words("6 in"), right__blank_diameter_mm="60")
@@ -393,7 +426,7 @@ def test_accepted_deviations_against_scipy(limit: float, share: float, doubt: fl
     if found is None:
         assert doubt_of(0.0) > doubt - 1e-9
     else:
-        assert doubt_of(found) <= doubt + 1e-9
+        assert doubt_of(found) <= doubt + 1e-7
         assert found < 1e-6 or doubt_of(found + 1e-5 * limit) > doubt - 1e-6
 
 
