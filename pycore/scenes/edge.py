@@ -9,7 +9,7 @@ from collections.abc import Iterator, Sequence
 
 from pycore.bench.edge import Edge, FramedLens
 from pycore.optics.prism import Prism
-from pycore.scenes.body import cut_ends, framed_depths, laid_outwards, stations, tidy
+from pycore.scenes.body import Place, cut_ends, framed_depths, laid_outwards, stations, tidy
 from pycore.scenes.dial import Scene, Shape
 
 ROOM_MM = 4.0
@@ -35,7 +35,7 @@ def edge_scene(lens: FramedLens, prism: Prism, edge: Edge, texts: Sequence[str])
         {"role": "prp", "kind": "point", "x": tidy(-centre_x), "y": tidy(-centre_y)},
         {"role": "profile-front", "kind": "polyline", "points": front},
         {"role": "profile-back", "kind": "polyline", "points": back},
-        *_marks(edge, outer, texts),
+        *_marks(edge, around, outer, texts),
     ]
     every_x = [x for x, _ in outer] + [x for x, _ in front]
     top, low = max(y for _, y in outer), min(y for _, y in [*front, *back])
@@ -61,15 +61,16 @@ def _cut(lens: FramedLens, prism: Prism, centre_mm: float, top: float) -> tuple[
 
 
 def _marks(
-    edge: Edge, outer: Sequence[tuple[float, float]], texts: Sequence[str]
+    edge: Edge, around: Sequence[Place], outer: Sequence[Place], texts: Sequence[str]
 ) -> Iterator[Shape]:
     for role, found, text in zip(
         ("thickest", "thinnest"), (edge.thickest, edge.thinnest), texts, strict=True
     ):
-        x, y = outer[edge.profile.index(found)]
+        index = edge.profile.index(found)
+        x, y = outer[index]
         yield {"role": role, "kind": "point", "x": tidy(x), "y": tidy(y)}
         # The text stands inside the rim, where there is room.
-        x, y = tidy(x * LABEL_AT), tidy(y * LABEL_AT)
+        x, y = (tidy(LABEL_AT * part) for part in around[index])
         yield {"role": role, "kind": "label", "x": x, "y": y, "text": text}
 
 

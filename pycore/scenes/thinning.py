@@ -37,6 +37,7 @@ def thinning_scene(
     for number, (eye, lens) in enumerate(lenses.items()):
         shapes += _lens(eye, lens, prescribed[eye], (before, after), number * BETWEEN_MM)
     points = [point for shape in shapes for point in shape.get("points", [])]
+    points.append([BETWEEN_MM, 0.0])  # one lens is drawn no larger than two
     across, along = [x for x, _ in points], [y for _, y in points]
     extent = [
         min(across) - BESIDE_MM,

@@ -109,12 +109,17 @@ def _view(
         "y2": tidy(end[shown[1]]),
     }
     yield {"role": "prp", "kind": "point", **pole}
-    high = max(up for _, up in (*front, *back))
+    # From above the letter stands over the temple side, away from the light.
+    reach, high = (
+        max(back, key=lambda place: abs(place[0]))
+        if shown[0] == 0
+        else max(back, key=lambda place: place[1])
+    )
     yield {
         "role": "eye-label",
         "kind": "label",
-        "x": tidy(middle + (ROOM_MM if shown[0] == 0 else 0.0)),
-        "y": tidy(high),
+        "x": reach,
+        "y": high,
         "word": f"letters.{lens.eye}",
         "text": "",
     }

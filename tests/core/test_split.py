@@ -11,6 +11,7 @@ import math
 from decimal import Decimal
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -18,7 +19,7 @@ from scipy.optimize import brentq
 
 from pycore.bench.edge import COARSE, edge_of
 from pycore.bench.split import shared, shares, together
-from pycore.optics.prism import NO_PRISM, Prism, from_base
+from pycore.optics.prism import EYES, NO_PRISM, Prism, from_base
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.split import split_section
 from pycore.words import say
@@ -82,6 +83,28 @@ def test_every_share_keeps_what_the_pair_sees(right: Prism, left: Prism, thinnin
 def test_any_part_keeps_the_sum(part: int) -> None:
     whole = Prism(Decimal("5.37"), Decimal("-2.11"))
     assert together(shared(whole, Decimal(part) / 100)) == whole
+
+
+def test_hundreds_of_pairs_keep_their_sum_and_come_out_equal(capsys: pytest.CaptureFixture[str]) -> None:
+    """Random pairs: right minus left of every way is the order's (numpy); where a way makes both equal, they are."""
+    draw, kept, apart, reached, count = np.random.default_rng(31), 0.0, 0.0, 0, 300
+    for _ in range(count):
+        x, y = draw.uniform(-5, 5, 2).round(2), draw.uniform(-5, 5, 2).round(2)
+        ordered = {eye: Prism(Decimal(str(x[i])), Decimal(str(y[i]))) for i, eye in enumerate(EYES)}
+        orders = [{"sphere": f"{draw.uniform(-5, 3):+.2f}", "cylinder": f"{draw.uniform(-2, 2):+.2f}", "axis": "40"} for _ in EYES]
+        job = plain_job(*orders)
+        lenses = {eye: framing(job, eye).lens for eye in EYES}
+        for way in shares(ordered, dict.fromkeys(EYES, NO_PRISM), lenses):
+            right, left = (np.array([float(way.prisms[eye].x), float(way.prisms[eye].y)]) for eye in EYES)
+            kept = max(kept, float(np.abs(right - left - (x[0] - x[1], y[0] - y[1])).max()))
+            if way.kind in ("equal-edges", "equal-weight") and way.reached:
+                sizes = [way.edges[eye].thickest[1] if way.kind == "equal-edges" else way.edges[eye].weight_g or 0.0 for eye in EYES]
+                apart, reached = max(apart, abs(sizes[0] - sizes[1])), reached + 1
+    with capsys.disabled():
+        print(f"\nsplit: {count} pairs keep right minus left to {kept:.1e} Δ; {reached} ways equal to {apart:.3f} mm or g")
+    assert kept < 1e-12
+    assert reached > count
+    assert apart < 0.06
 
 
 def test_equal_lenses_are_equal_and_stand_where_brent_finds_them() -> None:
