@@ -11,6 +11,7 @@ import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
 import { packed, wide } from "./payload.mjs";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
+import { withUsedExports } from "./program.mjs";
 import { buildPythonZip } from "./python.mjs";
 import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
@@ -51,18 +52,17 @@ async function main() {
   const core = resolve(values.core);
   const web = resolve(values.web);
   await writeWords(core, web);
-  const wasm = packed(await readFile(join(pyodideFolder, "pyodide.asm.wasm")));
-  const library = await buildPythonZip(pyodideFolder, core);
-  const python = packed(library);
-  const snapshot = packed(await buildSnapshot(pyodideFolder, library));
   const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
+  const maker = await engineSource(pyodideFolder, join(web, "build", "snapshot-entry.js"));
+  const program = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), engine + maker);
+  const library = await buildPythonZip(pyodideFolder, core);
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),
     ...(await buildScripts(web)),
     engine,
-    wasm,
-    snapshot,
-    python,
+    wasm: packed(program),
+    snapshot: packed(await buildSnapshot(maker, program, library)),
+    python: packed(library),
   };
   await writeFolder(resolve(values.out), {
     "index.html": folderPage(page),
@@ -70,9 +70,9 @@ async function main() {
     "app.css": page.style,
     "print.css": page.printStyle,
     "engine/worker.js": engine,
-    "engine/wasm.js": wide(`globalThis.wedgewrightWasm = "${wasm}";\n`),
-    "engine/snapshot.js": wide(`globalThis.wedgewrightSnapshot = "${snapshot}";\n`),
-    "engine/python.js": wide(`globalThis.wedgewrightPython = "${python}";\n`),
+    "engine/wasm.js": wide(`globalThis.wedgewrightWasm = "${page.wasm}";\n`),
+    "engine/snapshot.js": wide(`globalThis.wedgewrightSnapshot = "${page.snapshot}";\n`),
+    "engine/python.js": wide(`globalThis.wedgewrightPython = "${page.python}";\n`),
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),
   });
