@@ -39,6 +39,13 @@ function refusal(code) {
   return { format: "wedgewright.refusal/1", errors: [error] };
 }
 
+/** The engine's own times, by the page's clock, for whoever measures. @param {Record<string, number>} times */
+function markTimes(times) {
+  for (const [name, at] of Object.entries(times)) {
+    performance.mark(`engine-${name}`, { startTime: Math.max(0, at - performance.timeOrigin) });
+  }
+}
+
 /** For measuring and for looking into a fault: the address ending in `#library` starts without the kept memory. */
 const libraryAsked = () => globalThis.location?.hash === "#library";
 
@@ -172,6 +179,7 @@ export function startEngine({
       if (data.kind === "ready") {
         clearTimeout(timer);
         ready = true;
+        markTimes(data.times ?? {});
         enter("ready");
         somebodyAsks();
         warmUp();

@@ -9,8 +9,10 @@ import { mkdir, readFile, rm, writeFile } from "node:fs/promises";
 import { createRequire } from "node:module";
 import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
+import { packed, wide } from "./payload.mjs";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
-import { base64OfGzip, buildPythonZip } from "./python.mjs";
+import { withUsedExports } from "./program.mjs";
+import { buildPythonZip } from "./python.mjs";
 import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
@@ -19,7 +21,7 @@ const pyodideFolder = dirname(createRequire(import.meta.url).resolve("pyodide/pa
 
 /**
  * @param {string} folder
- * @param {Record<string, string>} files path below the folder → text
+ * @param {Record<string, string | Uint8Array>} files path below the folder → contents
  */
 async function writeFolder(folder, files) {
   await rm(folder, { recursive: true, force: true });
@@ -50,18 +52,17 @@ async function main() {
   const core = resolve(values.core);
   const web = resolve(values.web);
   await writeWords(core, web);
-  const wasm = base64OfGzip(await readFile(join(pyodideFolder, "pyodide.asm.wasm")));
-  const library = await buildPythonZip(pyodideFolder, core);
-  const python = base64OfGzip(library);
-  const snapshot = base64OfGzip(await buildSnapshot(pyodideFolder, library));
   const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
+  const maker = await engineSource(pyodideFolder, join(web, "build", "snapshot-entry.js"));
+  const program = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), engine + maker);
+  const library = await buildPythonZip(pyodideFolder, core);
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),
     ...(await buildScripts(web)),
     engine,
-    wasm,
-    snapshot,
-    python,
+    wasm: packed(program),
+    snapshot: packed(await buildSnapshot(maker, program, library)),
+    python: packed(library),
   };
   await writeFolder(resolve(values.out), {
     "index.html": folderPage(page),
@@ -69,13 +70,13 @@ async function main() {
     "app.css": page.style,
     "print.css": page.printStyle,
     "engine/worker.js": engine,
-    "engine/wasm.js": `globalThis.wedgewrightWasm = "${wasm}";\n`,
-    "engine/snapshot.js": `globalThis.wedgewrightSnapshot = "${snapshot}";\n`,
-    "engine/python.js": `globalThis.wedgewrightPython = "${python}";\n`,
+    "engine/wasm.js": wide(`globalThis.wedgewrightWasm = "${page.wasm}";\n`),
+    "engine/snapshot.js": wide(`globalThis.wedgewrightSnapshot = "${page.snapshot}";\n`),
+    "engine/python.js": wide(`globalThis.wedgewrightPython = "${page.python}";\n`),
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),
   });
-  await writeFolder(resolve(values.single), { "wedgewright.html": singlePage(page) });
+  await writeFolder(resolve(values.single), { "wedgewright.html": wide(singlePage(page)) });
 }
 
 try {

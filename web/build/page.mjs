@@ -86,6 +86,7 @@ export function singlePage(page) {
     "</body>",
   ].join("\n");
   let html = replaceOnce(page.html, "<!-- policy -->", policy(scripts, styles));
+  html = replaceOnce(html, '<meta charset="utf-8">', ""); // its first bytes say it
   html = replaceOnce(html, "<html ", "<html data-single ");
   html = replaceOnce(html, '<link rel="stylesheet" href="app.css">', `<style>${page.style}</style>`);
   html = replaceOnce(html, '<link rel="stylesheet" href="print.css" media="print">', `<style media="print">${page.printStyle}</style>`);

@@ -4,6 +4,9 @@ import { join } from "node:path";
 import { runInThisContext } from "node:vm";
 import { dressAsWorker } from "./dress.mjs";
 
+/** A script as a browser reads it, by its first bytes. @param {string} file */
+const scriptText = (file) => new TextDecoder(readFileSync(file)[0] === 0xff ? "utf-16le" : "utf-8").decode(readFileSync(file));
+
 /**
  * @param {string} folder the built folder
  * @param {"snapshot" | "python"} source what it starts from
@@ -11,7 +14,7 @@ import { dressAsWorker } from "./dress.mjs";
  */
 export async function startBuiltEngine(folder, source) {
   for (const name of ["worker", "wasm", source]) {
-    runInThisContext(readFileSync(join(folder, "engine", `${name}.js`), "utf8"), { filename: `${name}.js` });
+    runInThisContext(scriptText(join(folder, "engine", `${name}.js`)), { filename: `${name}.js` });
   }
   const exit = dressAsWorker();
   const page = /** @type {any} */ (globalThis);

@@ -5,23 +5,26 @@ import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { fileURLToPath } from "node:url";
 import { promisify } from "node:util";
-import { engineSource } from "./worker.mjs";
 
 const beside = (/** @type {string} */ name) => fileURLToPath(new URL(name, import.meta.url));
 
 /**
- * @param {string} pyodideFolder
+ * @param {string} engine source of the engine that makes it
+ * @param {Uint8Array} program
  * @param {Uint8Array} library the zip of library and core
  * @returns {Promise<Uint8Array>}
  */
-export async function buildSnapshot(pyodideFolder, library) {
+export async function buildSnapshot(engine, program, library) {
   const folder = await mkdtemp(join(tmpdir(), "wedgewright-"));
   try {
-    const [engine, zip, snapshot] = ["engine.js", "library.zip", "snapshot"].map((name) => join(folder, name));
-    await writeFile(engine, await engineSource(pyodideFolder, beside("snapshot-entry.js")));
-    await writeFile(zip, library);
-    const program = join(pyodideFolder, "pyodide.asm.wasm");
-    await promisify(execFile)(process.execPath, [beside("make-snapshot.mjs"), engine, program, zip, beside("warm.py"), snapshot]);
+    const given = { "engine.js": engine, "program.wasm": program, "library.zip": library };
+    const files = [];
+    for (const [name, contents] of Object.entries(given)) {
+      files.push(join(folder, name));
+      await writeFile(join(folder, name), contents);
+    }
+    const snapshot = join(folder, "snapshot");
+    await promisify(execFile)(process.execPath, [beside("make-snapshot.mjs"), ...files, beside("warm.py"), snapshot]);
     return await readFile(snapshot);
   } finally {
     await rm(folder, { recursive: true });

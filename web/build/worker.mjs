@@ -3,6 +3,9 @@ import { build } from "esbuild";
 import { readFile } from "node:fs/promises";
 import { join } from "node:path";
 
+/** Pyodide's scripts, in the order in which they are run. */
+const SCRIPTS = ["pyodide.asm.js", "pyodide.js"];
+
 /**
  * The only change to Pyodide's scripts. When Python starts, this function makes a helper outside of Python's memory and
  * leaves its number inside: in a snapshot the number would point to nothing. So it leaves none while a snapshot is made,
@@ -47,12 +50,11 @@ export async function engineSource(pyodideFolder, entry) {
     define: { PYODIDE_LOCK_INFO: JSON.stringify(lock.info) },
     logLevel: "warning",
   });
-  const runtime = await readFile(join(pyodideFolder, "pyodide.asm.js"), "utf8");
+  const scripts = await Promise.all(SCRIPTS.map((name) => readFile(join(pyodideFolder, name), "utf8")));
   const source = [
     "globalThis.wedgewrightEngine = function (port) {",
     "function pyodideBehind(fetch, WebAssembly) {",
-    replaceOnce(runtime, TRAMPOLINE.original, TRAMPOLINE.changed),
-    await readFile(join(pyodideFolder, "pyodide.js"), "utf8"),
+    replaceOnce(scripts.join("\n"), TRAMPOLINE.original, TRAMPOLINE.changed),
     "return loadPyodide.loadPyodide;",
     "}",
     glue.outputFiles[0].text,

@@ -3,13 +3,19 @@
  * refused; it knows a port to listen at and nothing of the page.
  *
  * From the page: {kind: "wasm", text} and one of {kind: "snapshot" | "python", text}, then {kind: "ask", id, text}.
- * To the page: {kind: "ready"}, {kind: "answer", id, text}, {kind: "failed", message}.
+ * To the page: {kind: "ready", times}, {kind: "answer", id, text}, {kind: "failed", message}.
  */
 import { startFromLibrary, startFromSnapshot } from "./python.js";
 
 /**
  * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
  */
+
+/** When each part of the start was done, by the clock that all threads share. @returns {Record<string, number>} */
+function times() {
+  const marks = [...performance.getEntriesByType("mark"), { name: "core-ready", startTime: performance.now() }];
+  return Object.fromEntries(marks.map(({ name, startTime }) => [name, performance.timeOrigin + startTime]));
+}
 
 /**
  * @param {Port} port
@@ -27,7 +33,7 @@ export function serve(port, pyodideBehind) {
     payload("python").then((text) => startFromLibrary(pyodideBehind, wasm, text)),
   ]);
   handle.then(
-    () => port.postMessage({ kind: "ready" }),
+    () => port.postMessage({ kind: "ready", times: times() }),
     (error) => port.postMessage({ kind: "failed", message: String(error) }),
   );
   port.onmessage = async ({ data }) => {

@@ -1,5 +1,6 @@
 /** Starts Pyodide out of payloads, with no network: the only file that knows how Pyodide is started. */
 import { bytesOf, inflated, readAll } from "./unpack.js";
+import { addFresh } from "./memory.js";
 
 /**
  * @typedef {(fetch: Function, WebAssembly: object) => (options: object) => Promise<any>} PyodideBehind
@@ -13,11 +14,17 @@ const NOWHERE = "https://offline.invalid/";
  * Pyodide's loadPyodide, for which there is a program, a library and nothing else in the world.
  *
  * @param {PyodideBehind} pyodideBehind
- * @param {Promise<WebAssembly.Module>} program
- * @param {Uint8Array<ArrayBuffer>} library a zip; empty where a snapshot holds all that is imported
+ * @param {object} world
+ * @param {Promise<WebAssembly.Module>} world.program
+ * @param {Uint8Array<ArrayBuffer>} world.library a zip; empty where a snapshot holds all that is imported
+ * @param {(memory: WebAssembly.Memory) => Promise<void>} [world.fresh] sees the memory before the program has run
  * @returns {(options: object) => Promise<any>}
  */
-export function offlinePyodide(pyodideBehind, program, library) {
+export function offlinePyodide(pyodideBehind, { program, library, fresh = async () => {} }) {
+  // Where the program cannot be made, Pyodide waits for ever; so it is said here.
+  /** @type {(error: unknown) => void} */
+  let fail = () => {};
+  const failed = new Promise((_, reject) => (fail = reject));
   // What Pyodide's scripts see under the name `fetch`: the two files it asks for at a start, and nothing else.
   const offlineFetch = async (/** @type {string | URL} */ url) => {
     if (String(url).endsWith("pyodide.asm.wasm")) {
@@ -28,26 +35,35 @@ export function offlinePyodide(pyodideBehind, program, library) {
     }
     throw new TypeError("There is no network here.");
   };
+  const instantiate = async (/** @type {any} */ imports) => {
+    try {
+      const module = await program;
+      const instance = await WebAssembly.instantiate(module, imports);
+      await fresh(imports.env.memory);
+      return { module, instance };
+    } catch (error) {
+      fail(error);
+      throw error;
+    }
+  };
   // The same functions as the real WebAssembly, but the runtime's module is the one compiled already.
   const offlineAssembly = Object.create(WebAssembly, {
-    instantiateStreaming: {
-      value: async (/** @type {unknown} */ _response, /** @type {WebAssembly.Imports} */ imports) => {
-        const module = await program;
-        return { module, instance: await WebAssembly.instantiate(module, imports) };
-      },
-    },
+    instantiateStreaming: { value: (/** @type {unknown} */ _response, /** @type {unknown} */ imports) => instantiate(imports) },
   });
   const loadPyodide = pyodideBehind(offlineFetch, offlineAssembly);
   return (options) =>
-    loadPyodide({
-      indexURL: NOWHERE,
-      packageBaseUrl: NOWHERE,
-      stdLibURL: `${NOWHERE}python_stdlib.zip`,
-      lockFileContents: { info: PYODIDE_LOCK_INFO, packages: {} },
-      env: { HOME: "/home/pyodide", LANG: "C.UTF-8", PYTHONHASHSEED: "0" },
-      stdin: () => null,
-      ...options,
-    });
+    Promise.race([
+      failed,
+      loadPyodide({
+        indexURL: NOWHERE,
+        packageBaseUrl: NOWHERE,
+        stdLibURL: `${NOWHERE}python_stdlib.zip`,
+        lockFileContents: { info: PYODIDE_LOCK_INFO, packages: {} },
+        env: { HOME: "/home/pyodide", LANG: "C.UTF-8", PYTHONHASHSEED: "0" },
+        stdin: () => null,
+        ...options,
+      }),
+    ]);
 }
 
 /**
@@ -56,9 +72,11 @@ export function offlinePyodide(pyodideBehind, program, library) {
  * @param {string} text its payload
  * @returns {Promise<WebAssembly.Module>}
  */
-function compiled(text) {
+async function compiled(text) {
   const headers = { "Content-Type": "application/wasm" };
-  return WebAssembly.compileStreaming(new Response(inflated(bytesOf(text)), { headers }));
+  const program = await WebAssembly.compileStreaming(new Response(inflated(bytesOf(text)), { headers }));
+  performance.mark("program-compiled");
+  return program;
 }
 
 /**
@@ -72,9 +90,20 @@ function compiled(text) {
 export async function startFromSnapshot(pyodideBehind, wasm, snapshot) {
   const program = wasm.then(compiled);
   program.catch(() => {}); // reported where it is awaited
-  const memory = readAll(inflated(bytesOf(snapshot)));
-  memory.catch(() => {});
-  const pyodide = await offlinePyodide(pyodideBehind, program, new Uint8Array())({ _loadSnapshot: memory });
+  const kept = readAll(inflated(bytesOf(snapshot)));
+  kept.then(() => performance.mark("memory-inflated"));
+  const load = offlinePyodide(pyodideBehind, {
+    program,
+    library: new Uint8Array(),
+    fresh: async (memory) => {
+      performance.mark("program-instantiated");
+      addFresh(await kept, memory);
+      performance.mark("memory-whole");
+    },
+  });
+  performance.mark("scripts-run");
+  const pyodide = await load({ _loadSnapshot: kept });
+  performance.mark("pyodide-loaded");
   // The build has left this out, because what it sets is not in the memory (see worker.mjs); without it calls are slower.
   pyodide._module.initTrampoline();
   // What the build's own randomness has left must not be the same on every bench.
@@ -94,7 +123,8 @@ export async function startFromLibrary(pyodideBehind, wasm, python) {
   const program = wasm.then(compiled);
   program.catch(() => {}); // reported where it is awaited
   const library = await readAll(inflated(bytesOf(python)));
-  const pyodide = await offlinePyodide(pyodideBehind, program, library)({});
+  const pyodide = await offlinePyodide(pyodideBehind, { program, library })({});
+  performance.mark("pyodide-loaded");
   // What is loaded now stays; looking it over again and again would only make the start and some keystrokes late.
   const collector = pyodide.pyimport("gc");
   collector.disable();
