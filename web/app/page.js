@@ -72,7 +72,7 @@ export function startPage(startEngine) {
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     layout: layoutView({ form, state, engine, goTo }),
-    read: readView({ form, state, steps, imagined: imagine.node }),
+    read: readView({ form, state, steps, imagine }),
     decide: decideView({ form, state, engine, goTo, imagine: imagine.ask, sign, print: () => window.print(), copy }),
     keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
     bench: benchView({ form, settings, settingsChanged, erase, editions }),

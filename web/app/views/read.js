@@ -68,9 +68,9 @@ function pointLines(report) {
  * @param {Form} tools.form
  * @param {State} tools.state
  * @param {ReturnType<typeof import("../steps.js").createSteps>} tools.steps
- * @param {HTMLElement} tools.imagined says that what the dials show is not read but imagined
+ * @param {{node: HTMLElement, chooser: HTMLElement}} tools.imagine what would be seen if
  */
-export function readView({ form, state, steps, imagined }) {
+export function readView({ form, state, steps, imagine }) {
   const summary = el("div", { class: "order-summary" });
   const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
   const notes = el("div", { class: "reading-notes" });
@@ -80,9 +80,10 @@ export function readView({ form, state, steps, imagined }) {
     { class: "view read" },
     el("h2", { class: "hidden" }, say("page.nav.read")),
     summary,
-    imagined,
+    imagine.node,
     pair,
     notes,
+    imagine.chooser,
     el("div", { class: "pair" }, ...EYES.map((eye) => readingCard(eye, form, state))),
     card(
       "read-how",
