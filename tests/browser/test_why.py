@@ -84,11 +84,14 @@ def test_before_anything_is_read_a_cause_is_chosen_and_seen(page_from_disk: Page
     page = page_from_disk
     page.locator("#f-line").fill("R -2.00 3 BI 1.5 BU L -2.00 3 BI 1.5 BD")
     page.locator("#take-it").click(timeout=60_000)
+    page.locator("label.key:has(#f-state-mounted)").click()
     page.locator("#move-read").click()
     page.locator("#imagine-chooser > summary").click()
-    page.locator("#imagine-chooser").get_by_role("button", name="left lens: base reversed").click()
+    chooser = page.locator("#imagine-chooser")
+    chooser.get_by_role("button", name="left lens", exact=True).click()
+    chooser.get_by_role("button", name="left lens: base reversed").click()
     expect(page.locator(".imagined")).to_contain_text("left lens: base reversed")
-    expect(page.locator("#dial-left .role-target").first).to_be_visible()
+    expect(page.locator("#dial-left .role-target").first).to_be_attached()
     page.locator("#f-readings-left-prism-0-amount").fill("3")
     expect(page.locator(".imagined")).to_be_hidden()
 
