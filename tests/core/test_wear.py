@@ -17,6 +17,7 @@ from pycore.optics.prism import Eye, Prism
 from pycore.optics.tilt import BeyondError, moved, oblique_factor, power_as_worn, power_of, power_to_order, tilt_of
 from pycore.optics.tilt_trace import Glass, prism_as_worn, prism_to_order
 from pycore.sections.answer import SectionAnswer
+from pycore.sections.edge import edge_section
 from pycore.sections.wear import wear_section
 from tests.references import tilt_reference as room
 
@@ -622,6 +623,17 @@ def test_the_light_in_the_picture_turns_by_the_prism_as_worn() -> None:
     above, side = arrows[1], arrows[3]
     assert 100 * (above["x2"] - above["x"]) / (above["y2"] - above["y"]) == pytest.approx(entry["x"], abs=0.01)
     assert 100 * (side["y2"] - side["y"]) / (side["x2"] - side["x"]) == pytest.approx(entry["y"], abs=0.01)
+
+
+def test_the_thickness_is_the_one_that_the_rim_wants() -> None:
+    """As the panel Edge has it, to 0.1 mm; a given one stays, and so does the estimate where no surface reaches."""
+    job = job_of(RIGHT | {"pd_mm": "32"}, frame=FRAME, wear=FULL["wear"], lens={"index": "1.586", "front_curve": "5"})
+    edge = edge_section(case_of(read_job(job), None)).own
+    assert isinstance(edge, dict)
+    asked = {ask.field: ask.usual for ask in section(job).asks}
+    assert asked["lens.centre_thickness_mm"] == f"{edge['right']['centre_mm']:.1f}"
+    given = {**job, "lens": job["lens"] | {"centre_thickness_mm": asked["lens.centre_thickness_mm"]}}
+    assert own(section(given)) == own(section(job))
 
 
 def test_where_there_is_nothing_to_draw() -> None:
