@@ -53,7 +53,7 @@ export async function engineSource(pyodideFolder, entry) {
   const scripts = await Promise.all(SCRIPTS.map((name) => readFile(join(pyodideFolder, name), "utf8")));
   const source = [
     "globalThis.wedgewrightEngine = function (port) {",
-    "function pyodideBehind(fetch, WebAssembly) {",
+    "function pyodideBehind(fetch, WebAssembly, exports) {",
     replaceOnce(scripts.join("\n"), TRAMPOLINE.original, TRAMPOLINE.changed),
     "return loadPyodide.loadPyodide;",
     "}",
