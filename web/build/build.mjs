@@ -11,8 +11,9 @@ import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
 import { packed, wide } from "./payload.mjs";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
-import { withUsedExports } from "./program.mjs";
+import { namesOf, withUsedExports } from "./program.mjs";
 import { buildPythonZip } from "./python.mjs";
+import { usedScripts } from "./scripts.mjs";
 import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
@@ -38,6 +39,24 @@ async function notices(folder) {
   return texts.join(`\n${"=".repeat(120)}\n\n`);
 }
 
+/**
+ * Pyodide's program and scripts, cut to what is used here, and round them the engine of the page and the one that makes
+ * the page's snapshot.
+ *
+ * @param {string} web
+ */
+async function buildEngine(web) {
+  const read = (/** @type {string} */ name) => readFile(join(pyodideFolder, name), "utf8");
+  const { info } = JSON.parse(await read("pyodide-lock.json"));
+  const whole = `${await read("pyodide.asm.js")}\n${await read("pyodide.js")}`;
+  const worker = join(web, "worker", "main.js");
+  const other = join(web, "build", "snapshot-entry.js");
+  const exported = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), whole + (await readFile(other, "utf8")));
+  const scripts = await usedScripts(whole, namesOf(exported));
+  const [engine, maker] = [await engineSource(scripts, info, worker), await engineSource(scripts, info, other)];
+  return { program: withUsedExports(exported, engine + maker), engine, maker };
+}
+
 async function main() {
   const { values } = parseArgs({
     options: {
@@ -52,9 +71,7 @@ async function main() {
   const core = resolve(values.core);
   const web = resolve(values.web);
   await writeWords(core, web);
-  const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
-  const maker = await engineSource(pyodideFolder, join(web, "build", "snapshot-entry.js"));
-  const program = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), engine + maker);
+  const { program, engine, maker } = await buildEngine(web);
   const library = await buildPythonZip(pyodideFolder, core);
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),

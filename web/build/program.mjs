@@ -3,13 +3,12 @@
  * compiled apart and loaded later; there are none here, and each costs time at every start.
  */
 
+import { EXPORT_LIST } from "./scripts.mjs";
+
 const IMPORTS = 2;
 const EXPORTS = 7;
 /** Called by names that are put together from parts. */
 const PUT_TOGETHER = /^dynCall_/;
-/** The scripts' list of all exports, where a name stands without being used. */
-const LISTED = /var [\w$]+=Module\["[\w$]+"\]=wasmExports\["[\w$]+"\];/g;
-
 /** Reads a WebAssembly module's numbers and names, from the front to the back. */
 class Reader {
   /** @param {Uint8Array} bytes @param {number} [at] */
@@ -90,7 +89,7 @@ export function withUsedExports(program, scripts) {
   if (!imports || !exports) {
     throw new Error("Not the program that is expected.");
   }
-  const words = new Set(`${scripts.replace(LISTED, "")} ${wordsOf(imports.contents)}`.match(/[\w$]+/g));
+  const words = new Set(`${scripts.replace(EXPORT_LIST, "")} ${wordsOf(imports.contents)}`.match(/[\w$]+/g));
   const reader = new Reader(exports.contents);
   const kept = [];
   for (let left = reader.number(); left > 0; left -= 1) {
@@ -110,4 +109,15 @@ export function withUsedExports(program, scripts) {
     contents,
     program.subarray(after),
   ]);
+}
+
+/**
+ * The names that a program takes and gives.
+ *
+ * @param {Uint8Array<ArrayBuffer>} program
+ */
+export function namesOf(program) {
+  const module = new WebAssembly.Module(program);
+  const names = (/** @type {{name: string}[]} */ list) => new Set(list.map(({ name }) => name));
+  return { imports: names(WebAssembly.Module.imports(module)), exports: names(WebAssembly.Module.exports(module)) };
 }

@@ -5,7 +5,7 @@
  * From the page: {kind: "wasm", text} and one of {kind: "snapshot" | "python", text}, then {kind: "ask", id, text}.
  * To the page: {kind: "ready", times}, {kind: "answer", id, text}, {kind: "failed", message}.
  */
-import { startFromLibrary, startFromSnapshot } from "./python.js";
+import { compiled, startFromLibrary, startFromSnapshot } from "./python.js";
 
 /**
  * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
@@ -26,11 +26,12 @@ export function serve(port, pyodideBehind) {
   const arrived = {};
   /** @type {(kind: string) => Promise<string>} */
   const payload = (kind) => new Promise((resolve) => (arrived[kind] = resolve));
-  const wasm = payload("wasm");
+  const program = payload("wasm").then(compiled);
+  program.catch(() => {}); // reported where it is awaited
   // Whichever of the two comes says which way to start.
   const handle = Promise.race([
-    payload("snapshot").then((text) => startFromSnapshot(pyodideBehind, wasm, text)),
-    payload("python").then((text) => startFromLibrary(pyodideBehind, wasm, text)),
+    payload("snapshot").then((text) => startFromSnapshot(pyodideBehind, program, text)),
+    payload("python").then((text) => startFromLibrary(pyodideBehind, program, text)),
   ]);
   handle.then(
     () => port.postMessage({ kind: "ready", times: times() }),

@@ -3,12 +3,27 @@ import { bytesOf, inflated, readAll } from "./unpack.js";
 import { addFresh } from "./memory.js";
 
 /**
- * @typedef {(fetch: Function, WebAssembly: object) => (options: object) => Promise<any>} PyodideBehind
- * Pyodide's scripts, seeing these two instead of the real ones; gives loadPyodide.
+ * @typedef {(fetch: Function, WebAssembly: object, exports: object) => (options: object) => Promise<any>} PyodideBehind
+ * Pyodide's scripts, seeing these instead of the real ones; gives loadPyodide.
  */
 /** @typedef {(request: string) => string} Handle the core's door */
 
+/** The canvas's functions, of which the program wants an address each, and which nothing here calls. */
+const GRAPHICS = /^(emscripten_)?gl[A-Z]/;
 const NOWHERE = "https://offline.invalid/";
+
+/**
+ * The table of functions' addresses that the program is given, where those for drawing stay empty: making them takes as
+ * long as all the others together.
+ *
+ * @param {Record<string, unknown>} addresses
+ */
+function withoutGraphics(addresses) {
+  const none = new WebAssembly.Global({ value: "i32", mutable: true }, 0);
+  return new Proxy(addresses, {
+    get: (all, name) => (GRAPHICS.test(String(name)) ? none : Reflect.get(all, name)),
+  });
+}
 
 /**
  * Pyodide's loadPyodide, for which there is a program, a library and nothing else in the world.
@@ -38,7 +53,7 @@ export function offlinePyodide(pyodideBehind, { program, library, fresh = async 
   const instantiate = async (/** @type {any} */ imports) => {
     try {
       const module = await program;
-      const instance = await WebAssembly.instantiate(module, imports);
+      const instance = await WebAssembly.instantiate(module, { ...imports, "GOT.func": withoutGraphics(imports["GOT.func"]) });
       await fresh(imports.env.memory);
       return { module, instance };
     } catch (error) {
@@ -50,7 +65,8 @@ export function offlinePyodide(pyodideBehind, { program, library, fresh = async 
   const offlineAssembly = Object.create(WebAssembly, {
     instantiateStreaming: { value: (/** @type {unknown} */ _response, /** @type {unknown} */ imports) => instantiate(imports) },
   });
-  const loadPyodide = pyodideBehind(offlineFetch, offlineAssembly);
+  // The scripts try for `exports`; where there is none that costs more time than one would think.
+  const loadPyodide = pyodideBehind(offlineFetch, offlineAssembly, {});
   return (options) =>
     Promise.race([
       failed,
@@ -72,7 +88,7 @@ export function offlinePyodide(pyodideBehind, { program, library, fresh = async 
  * @param {string} text its payload
  * @returns {Promise<WebAssembly.Module>}
  */
-async function compiled(text) {
+export async function compiled(text) {
   const headers = { "Content-Type": "application/wasm" };
   const program = await WebAssembly.compileStreaming(new Response(inflated(bytesOf(text)), { headers }));
   performance.mark("program-compiled");
@@ -83,13 +99,11 @@ async function compiled(text) {
  * The core's door, out of the memory that the build has kept: everything imported, the first calls made.
  *
  * @param {PyodideBehind} pyodideBehind
- * @param {Promise<string>} wasm payload
+ * @param {Promise<WebAssembly.Module>} program
  * @param {string} snapshot payload
  * @returns {Promise<Handle>}
  */
-export async function startFromSnapshot(pyodideBehind, wasm, snapshot) {
-  const program = wasm.then(compiled);
-  program.catch(() => {}); // reported where it is awaited
+export async function startFromSnapshot(pyodideBehind, program, snapshot) {
   const kept = readAll(inflated(bytesOf(snapshot)));
   kept.then(() => performance.mark("memory-inflated"));
   const load = offlinePyodide(pyodideBehind, {
@@ -115,13 +129,11 @@ export async function startFromSnapshot(pyodideBehind, wasm, snapshot) {
  * The core's door, imported anew from byte code: slower, by documented means alone.
  *
  * @param {PyodideBehind} pyodideBehind
- * @param {Promise<string>} wasm payload
+ * @param {Promise<WebAssembly.Module>} program
  * @param {string} python payload: the zip with library and core
  * @returns {Promise<Handle>}
  */
-export async function startFromLibrary(pyodideBehind, wasm, python) {
-  const program = wasm.then(compiled);
-  program.catch(() => {}); // reported where it is awaited
+export async function startFromLibrary(pyodideBehind, program, python) {
   const library = await readAll(inflated(bytesOf(python)));
   const pyodide = await offlinePyodide(pyodideBehind, { program, library })({});
   performance.mark("pyodide-loaded");
