@@ -1,22 +1,18 @@
 """Why no movement cures a pair, and which lenses are to be made again."""
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
 from pycore.bench.matter import MERIDIAN, PAIR, Matter
-from pycore.bench.remedy_least import Limit, Move
+from pycore.bench.remedy_least import Move
 from pycore.bench.remedy_limits import pieces
+from pycore.bench.remedy_search import movable, search
 from pycore.bench.remedy_trade import MOST_MM, blank_of_uncut, refusal, trade_limits
 from pycore.bench.verdict import Verdict, groups_of
 from pycore.bench.verdict_prism import prism_checks
 from pycore.decimals import fixed, from_float, signed
 from pycore.job.bench import EyeReading
 from pycore.optics.prism import EYES, Eye
-
-Search = Callable[
-    [Sequence[tuple[Limit, ...]], Sequence[Limit], Sequence[Eye]],
-    list[tuple[Move, Sequence[Limit]]],
-]
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,17 +28,17 @@ def is_of_prism(group: str) -> bool:
     return group.startswith(("prism", "prp"))
 
 
-def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Search) -> Why:
+def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str]) -> Why:
     """Why no movement helps.
 
-    Arguments: `matter`; its `verdict`; `beside` groups that failed beside the prism; `search` for
-    movements. Returns the reason: what stands in the way, as found by leaving it away.
+    Arguments: `matter`; its `verdict`; `beside` groups that failed beside the prism. Returns the
+    reason: what stands in the way, as found by leaving it away.
     """
     if beside:
         check = next(check for check in verdict.checks if check.group == beside[0])
         return Why("not-of-prism", {"check": check.id, "eye": check.eye})
     refused = {eye: code for eye in matter.dues if (code := refusal(matter, eye))}
-    eyes = tuple(eye for eye in matter.dues if eye not in refused)
+    eyes = movable(matter)
     guarded = matter.job.decision_rule == "guarded"
     choices = tuple(pieces(matter, verdict.checks, careful=guarded))
     if not choices:

@@ -17,10 +17,11 @@ from scipy.stats import ncx2, norm
 
 from pycore.bench import remedy_least
 from pycore.bench.matter import Matter
-from pycore.bench.remedy import Remedy, Shift, movable, remedy_of, unrounded
+from pycore.bench.remedy import Remedy, Shift, remedy_of
 from pycore.bench.remedy_least import Disc, Strip, allows, on_grid, shortest
 from pycore.bench.remedy_limits import _accepted, pieces
 from pycore.bench.remedy_moved import moved
+from pycore.bench.remedy_search import movable, unrounded
 from pycore.bench.verdict import judge
 from pycore.case import case_of
 from pycore.editions.reader import built_in
