@@ -81,6 +81,7 @@ def test_a_cut_lens_is_only_edged_smaller_or_made_again(state: str) -> None:
     assert remedy["remake"]["code"] == "remake"
     assert "3.35 Δ at 26.6° (3.00 in 1.50 up), in the 180 notation 3.35 Δ BU&I @027" in text
     assert "only edged smaller" in text
+    assert "for the person who signs" in text
     assert asked(report) == {}
 
 
@@ -129,6 +130,7 @@ def test_nothing_to_do_and_nothing_to_judge() -> None:
     report = report_on(right)
     assert (report["remedy"]["kind"], report["remedy"]["reason"]["code"]) == ("none-needed", "within")
     assert "nothing: within the limits" in said(report)
+    assert "for the person who signs" not in said(report)
     for job, title, fields in (
         (SPHERES, "not-read", {}),
         (patched(right, edition=None), "no-verdict", {"edition": ""}),
