@@ -11,19 +11,18 @@ from itertools import islice
 
 from pycore.bench.doubt import ACCEPTED_DOUBT
 from pycore.bench.matter import Check, Matter
-from pycore.bench.remedy_least import Limit, Move, held, length_mm, on_grid, shortest
+from pycore.bench.remedy_least import Limit, Move, on_grid
 from pycore.bench.remedy_limits import pieces
 from pycore.bench.remedy_moved import moved, parts_of
 from pycore.bench.remedy_reason import Why, is_of_prism, remade_of, why_none
-from pycore.bench.remedy_trade import refusal, trade_limits
+from pycore.bench.remedy_search import Pieces, movable, search
+from pycore.bench.remedy_trade import trade_limits
 from pycore.bench.verdict import Verdict, groups_of
 from pycore.bench.verdict_prism import prism_checks
 from pycore.optics.prism import EYES, Eye
 
 GRIDS_MM = (0.1, 0.01, 0.001)  # a finer one only where the coarser has no place within the limits
 TRIES = 6  # places on a grid that are judged; the first is nearly always right
-
-Pieces = Sequence[tuple[Limit, ...]]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -96,7 +95,7 @@ def remedy_of(matter: Matter, verdict: Verdict) -> Remedy | None:
             return found
     if verdict.outcome == "undecided":
         return None
-    why = why_none(matter, verdict, beside, search)
+    why = why_none(matter, verdict, beside)
     return Remedy(kind="remake", why=why, remade=remade_of(matter, verdict))
 
 
@@ -115,10 +114,7 @@ def _shift(matter: Matter, verdict: Verdict) -> Remedy | None:
     shared = _choice(matter, plain, careful, eyes)
     if shared.least is None:
         return None
-    moving = shared.least.eyes
-    only = {
-        eye: shared if moving == (eye,) else _choice(matter, plain, careful, (eye,)) for eye in eyes
-    }
+    only = {eye: _choice(matter, plain, careful, (eye,), shared) for eye in eyes}
     uncut = matter.job.state == "uncut"
     why = Why("uncut" if uncut else f"cut-{matter.job.state}")
     return Remedy(
@@ -131,51 +127,22 @@ def _shift(matter: Matter, verdict: Verdict) -> Remedy | None:
     )
 
 
-def movable(matter: Matter) -> tuple[Eye, ...]:
-    """The eyes whose lens may be moved. Arguments: `matter`."""
-    return tuple(eye for eye in matter.dues if not refusal(matter, eye))
-
-
-def _choice(matter: Matter, plain: Pieces, careful: Pieces, eyes: tuple[Eye, ...]) -> Choice:
+def _choice(
+    matter: Matter, plain: Pieces, careful: Pieces, eyes: tuple[Eye, ...], shared: Choice = Choice()
+) -> Choice:
+    """Both movements of some lenses; those of `shared` that move no other lens are the same."""
     trade = tuple(limit for limits in trade_limits(matter, eyes).values() for limit in limits)
-    least = _passing(matter, plain, trade, eyes, careful=False)
+    least, recommended = (
+        shift if shift is not None and set(shift.eyes) <= set(eyes) else None
+        for shift in (shared.least, shared.recommended)
+    )
+    least = least or _passing(matter, plain, trade, eyes, careful=False)
     if least is None:
         return Choice()
     if least.doubt <= ACCEPTED_DOUBT:
         return Choice(least=least, recommended=least)
-    return Choice(least=least, recommended=_passing(matter, careful, trade, eyes, careful=True))
-
-
-def unrounded(matter: Matter, verdict: Verdict, eyes: Sequence[Eye]) -> Move | None:
-    """The least movement of some lenses that passes, before rounding, whatever their design.
-
-    Arguments: `matter`; its `verdict`; `eyes` to be moved. Returns mm, or None where there is none.
-    """
-    guarded = matter.job.decision_rule == "guarded"
-    choices = tuple(pieces(matter, verdict.checks, careful=guarded))
-    trade = [limit for limits in trade_limits(matter, eyes).values() for limit in limits]
-    found = search(choices, trade, eyes)
-    return found[0][0] if found else None
-
-
-def search(
-    choices: Pieces, beside: Sequence[Limit], eyes: Sequence[Eye]
-) -> list[tuple[Move, Sequence[Limit]]]:
-    """The shortest movement of some lenses within each piece, the shortest first, unrounded.
-
-    Arguments: `choices` pieces; `beside` limits that hold with all of them; `eyes` to be moved.
-    Returns movements in mm with their limits; empty where there is none.
-    """
-    still = [
-        index for at, eye in enumerate(EYES) if eye not in eyes for index in (2 * at, 2 * at + 1)
-    ]
-    found = []
-    for piece in choices:
-        limits = [held(limit, still) if still else limit for limit in (*piece, *beside)]
-        move = shortest(limits)
-        if move is not None:
-            found.append((move, limits))
-    return sorted(found, key=lambda pair: length_mm(pair[0]))
+    recommended = recommended or _passing(matter, careful, trade, eyes, careful=True)
+    return Choice(least=least, recommended=recommended)
 
 
 def _passing(

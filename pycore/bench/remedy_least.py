@@ -274,13 +274,13 @@ def on_grid(limits: Sequence[Limit], move: Move, step_mm: float) -> Iterator[Mov
     """Movements on a grid that keep within every limit, the shortest first.
 
     Arguments: `limits`; `move` the shortest movement off the grid; `step_mm`. Yields movements
-    next to it first (a part that does not move stays), then up to two steps around it.
+    next to it first (a part that does not move stays), then one step farther around it.
 
     >>> next(on_grid([Strip((0.5, 0.0, 0.0, 0.0), 1.0, 0.23)], (-1.54, 0.0, 0.0, 0.0), 0.1))
     (-1.6, 0.0, 0.0, 0.0)
     """
     tried: set[Move] = set()
-    for reach in (0, 2):
+    for reach in (0, 1):
         places = [_places(part, step_mm, reach) for part in move]
         found: list[Move] = [
             (a, b, c, d)

@@ -1,11 +1,12 @@
 """Why no movement cures a pair, and which lenses are to be made again."""
 
-from collections.abc import Callable, Mapping, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
 from pycore.bench.matter import MERIDIAN, PAIR, Matter
-from pycore.bench.remedy_least import Limit, Move
+from pycore.bench.remedy_least import Limit, Move, allows, held
 from pycore.bench.remedy_limits import pieces
+from pycore.bench.remedy_search import movable, search
 from pycore.bench.remedy_trade import MOST_MM, blank_of_uncut, refusal, trade_limits
 from pycore.bench.verdict import Verdict, groups_of
 from pycore.bench.verdict_prism import prism_checks
@@ -13,10 +14,7 @@ from pycore.decimals import fixed, from_float, signed
 from pycore.job.bench import EyeReading
 from pycore.optics.prism import EYES, Eye
 
-Search = Callable[
-    [Sequence[tuple[Limit, ...]], Sequence[Limit], Sequence[Eye]],
-    list[tuple[Move, Sequence[Limit]]],
-]
+Trade = Mapping[str, tuple[Limit, ...]]
 
 
 @dataclass(frozen=True, slots=True)
@@ -32,17 +30,17 @@ def is_of_prism(group: str) -> bool:
     return group.startswith(("prism", "prp"))
 
 
-def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Search) -> Why:
+def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str]) -> Why:
     """Why no movement helps.
 
-    Arguments: `matter`; its `verdict`; `beside` groups that failed beside the prism; `search` for
-    movements. Returns the reason: what stands in the way, as found by leaving it away.
+    Arguments: `matter`; its `verdict`; `beside` groups that failed beside the prism. Returns the
+    reason: what stands in the way, as found by leaving it away.
     """
     if beside:
         check = next(check for check in verdict.checks if check.group == beside[0])
         return Why("not-of-prism", {"check": check.id, "eye": check.eye})
     refused = {eye: code for eye in matter.dues if (code := refusal(matter, eye))}
-    eyes = tuple(eye for eye in matter.dues if eye not in refused)
+    eyes = movable(matter)
     guarded = matter.job.decision_rule == "guarded"
     choices = tuple(pieces(matter, verdict.checks, careful=guarded))
     if not choices:
@@ -55,22 +53,21 @@ def why_none(matter: Matter, verdict: Verdict, beside: Sequence[str], search: Se
             others = [limit for key, limits in trade.items() if key != name for limit in limits]
             found = search(choices, others, eyes)
             if found:
-                return _in_the_way(matter, name, found[0][0])
+                return _in_the_way(matter, trade, name, found[0][0])
         found = search(choices, (), eyes)
         if found:
-            return _in_the_way(matter, "far", found[0][0])
+            return _in_the_way(matter, trade, "far", found[0][0])
     for eye, code in sorted(refused.items(), key=lambda item: item[1] == "partner"):
         if not eyes or search(choices, (), (*eyes, eye)):
             return Why(code, {"eye": eye})
     return Why("no-power")
 
 
-def _in_the_way(matter: Matter, name: str, move: Move) -> Why:
+def _in_the_way(matter: Matter, trade: Trade, name: str, move: Move) -> Why:
     """The reason for one thing left away, with the movement that would then do."""
-    eye: Eye = max(EYES, key=lambda eye: _length(move, eye))
+    eye = _eye_in_the_way(trade[name], move)
     start = 2 * EYES.index(eye)
-    right_mm, up_mm = move[start], move[start + 1]
-    word = "vertical" if abs(up_mm) > abs(right_mm) else "horizontal"
+    word = "vertical" if abs(move[start + 1]) > abs(move[start]) else "horizontal"
     params = {"eye": eye, "move": fixed(from_float(_length(move, eye)), 1)}
     if name == "segment":
         return Why("segment", params)
@@ -80,6 +77,14 @@ def _in_the_way(matter: Matter, name: str, move: Move) -> Why:
     power = matter.dues[eye].power
     along = signed(power.along(MERIDIAN[word])) if power else ""
     return Why("far", params | {"word": word, "power": along, "most": f"{MOST_MM:.0f}"})
+
+
+def _eye_in_the_way(limits: Sequence[Limit], move: Move) -> Eye:
+    """The lens whose own limit is broken; where it is the pair's, the one that moves farther."""
+    broken = [limit for limit in limits if not allows((limit,), move)]
+    still: Mapping[Eye, tuple[int, int]] = {"right": (0, 1), "left": (2, 3)}
+    own = [eye for eye in EYES if allows([held(limit, still[eye]) for limit in broken], move)]
+    return max(own or EYES, key=lambda eye: _length(move, eye))
 
 
 def _length(move: Move, eye: Eye) -> float:

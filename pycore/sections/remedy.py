@@ -157,6 +157,8 @@ def _notes(own: Entry, shift: Shift | None, matter: Matter) -> Notes:
         said = own[key]
         if said:
             yield "sentence", {"sentence": say(f"remedies.{said['code']}", **said["params"])}
+    if own["kind"] != "none-needed":
+        yield "decision", {}
     if shift is None:
         return
     if own["remake"]:

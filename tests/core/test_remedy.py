@@ -17,10 +17,11 @@ from scipy.stats import ncx2, norm
 
 from pycore.bench import remedy_least
 from pycore.bench.matter import Matter
-from pycore.bench.remedy import Remedy, Shift, movable, remedy_of, unrounded
+from pycore.bench.remedy import Remedy, Shift, remedy_of
 from pycore.bench.remedy_least import Disc, Strip, allows, on_grid, shortest
 from pycore.bench.remedy_limits import _accepted, pieces
 from pycore.bench.remedy_moved import moved
+from pycore.bench.remedy_search import movable, unrounded
 from pycore.bench.verdict import judge
 from pycore.case import case_of
 from pycore.editions.reader import built_in
@@ -343,6 +344,8 @@ def test_the_blank_must_cover_the_rim() -> None:
     job = patched(UNCUT, frame=frame, right__prp_height_mm="25", right__blank_diameter_mm="60", right__surfacing=place)
     assert shift(seen(job, "2.33 up")).move == (0, 4.0, 0, 0)
     assert why(seen(job, "2.38 up")) == ("blank", {"eye": "right", "move": "4.1", "blank": "60"})
+    other = patched(job, right__blank_diameter_mm="80", left__prp_height_mm="25", left__blank_diameter_mm="57", left__surfacing=place)
+    assert why(seen(other, "2.33 up", "1.83 up")) == ("blank", {"eye": "left", "move": "3.0", "blank": "57"})
     traced = patched(job, frame={"dbl_mm": "12", "outline_mm": ["25"] * 36})
     assert why(seen(traced, "2.38 up"))[0] == "blank"
     assert why(seen(patched(job, right__sphere="0.00"), "2.38 up"))[0] == "no-power"

@@ -427,7 +427,8 @@ class Tally:
 
 def compare(job: Job) -> Tally | None:
     """Compare one job; None where it does not fail on prism."""
-    from pycore.bench.remedy import remedy_of, unrounded
+    from pycore.bench.remedy import remedy_of
+    from pycore.bench.remedy_search import unrounded
     from pycore.case import case_of
     from pycore.editions.reader import built_in
     from pycore.job.document import read_job
