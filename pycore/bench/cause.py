@@ -137,13 +137,12 @@ class Bench:
     def _changes(self, none: Common, common: Common, eye: Eye) -> bool:
         lens = common.after(common.lenses[eye], eye)
         gauge = self.gauges[eye]
-        if gauge.changes(lens, none.lenses[eye]) or common.zero:
+        if gauge.changes(lens, none.lenses[eye]):
             return True
-        if common.moved:
-            return any(lens.moved(*common.moved[eye]))
-        return bool(common.turn_deg) and gauge.changes(
-            lens._replace(turn_rad=common.turn_deg), none.lenses[eye]
-        )
+        columns = self.columns(common, eye, lens)
+        known = 0 if common.zero else len(self.columns(none, eye, lens))
+        added = columns[known:]  # a zero off widens the columns that its uncertainty has
+        return any(gauge.feels(lens, column) for column in added)
 
     def owns(self, none: Common, eye: Eye) -> list[Own]:
         """The causes one lens may have of its own that would change something: none first, then
