@@ -14,32 +14,36 @@ from pycore.bench.verdict_prism import prism_checks
 from pycore.optics.prism import EYES
 from pycore.scenes.dial import Scene, Shape
 
-MARGIN = 1.6  # of the movement: room around it
+MARGIN = 1.1  # room around what is drawn
+FARTHEST = 3.0  # of the movement: a region that has no end is drawn so far
 LEAST_MM = 1.0
 CORNERS = 48
 
 
 def remedy_scene(matter: Matter, move: Move) -> Mapping[str, Scene]:
     """Both lenses' dots. Arguments: `matter`; `move` of the lenses, mm. Returns scenes by eye."""
-    half = max(LEAST_MM, *(abs(part) for part in move)) * MARGIN
+    reach = max(LEAST_MM, *(abs(part) for part in move))
     checks = tuple(prism_checks(matter))
     choices = pieces(matter, checks, careful=matter.job.decision_rule == "guarded")
     limits = next((piece for piece in choices if allows(piece, move)), ())
-    return {
-        eye: {
-            "unit": "mm",
-            "extent": [-half, -half, half, half],
-            "shapes": list(_shapes(limits, move, 2 * at, half)),
-        }
+    shapes = {
+        eye: list(_shapes(limits, move, 2 * at, FARTHEST * reach))
         for at, eye in enumerate(EYES)
         if eye in matter.dues
     }
+    # Both pictures to one scale, wide enough for the movement and the region round the new dot.
+    regions = [point for drawn in shapes.values() for point in drawn[0]["points"]]
+    half = MARGIN * max(reach, *(abs(part) for point in regions for part in point))
+    extent = [-half, -half, half, half]
+    return {eye: {"unit": "mm", "extent": extent, "shapes": drawn} for eye, drawn in shapes.items()}
 
 
-def _shapes(limits: Sequence[PrismLimit], move: Move, start: int, half: float) -> Iterator[Shape]:
-    """One lens; `start` is the place of its part in the movement, `half` the picture's reach."""
+def _shapes(
+    limits: Sequence[PrismLimit], move: Move, start: int, farthest_mm: float
+) -> Iterator[Shape]:
+    """One lens; `start` is the place of its part in the movement, `farthest_mm` how far a region is drawn."""
     x, y = 0.0 - move[start], 0.0 - move[start + 1]
-    region = _region(limits, move, start, 3.0 * half)
+    region = _region(limits, move, start, farthest_mm)
     yield {"role": "region", "kind": "polygon", "points": region}
     yield {"role": "old-dot", "kind": "point", "x": 0.0, "y": 0.0}
     if x or y:
