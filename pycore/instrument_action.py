@@ -45,7 +45,10 @@ def answer(fields: Fields) -> Entry:
         "format": FORMAT,
         "suggested": suggested,
         "next": found.next,
-        "count": len(looks.seen),
+        "places": {
+            "zero": None if looks.zero is None else _place_text(looks.zero),
+            "seen": [_place_text(place) for place in looks.seen],
+        },
         "enough": ENOUGH,
         "settled": found.settled,
         "findings": [*_findings(found, looks)],

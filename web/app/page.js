@@ -70,10 +70,10 @@ export function startPage(startEngine) {
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     layout: layoutView({ form, state, engine, goTo }),
-    read: readView({ form, state, steps }),
+    read: readView({ form, state, steps, settings }),
     decide: decideView({ state, sign, print: () => window.print(), copy }),
     keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
-    bench: benchView({ form, settings, settingsChanged, erase, editions }),
+    bench: benchView({ form, state, engine, settings, settingsChanged, erase, editions }),
   };
   const keypad = createKeypad({ settings, next: moveOn, setBase });
   const top = frame({ state, views, settings, toggleKeypad, drawView });
@@ -258,6 +258,7 @@ export function startPage(startEngine) {
     if (!control) return;
     const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
     if (name) top.show(name);
+    views.read.reveal(control.node);
     for (let node = control.node.parentElement; node; node = node.parentElement)
       {if (node instanceof HTMLDetailsElement) node.open = true;}
     control.node.scrollIntoView({ block: "center" });
@@ -282,6 +283,7 @@ export function startPage(startEngine) {
       await editions.open(opened);
       showJobs();
       await keepDraft(state, opened, top.saved);
+      await views.bench.openStore(opened);
     })
     .catch(() => top.saved("off"));
 
