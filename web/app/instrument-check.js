@@ -219,19 +219,16 @@ export function instrumentCheck({ form, state, engine, taken }) {
   function showLooks({ places: { zero, seen }, enough }) {
     const { entries } = state;
     const none = entries[`${PLACE}.compensator`];
-    const texts = {
-      zero: zero ?? "",
-      known: seen[0] ?? "",
-      scale: none ? say("page.values.check_compensator.none") : "",
-      again: say("page.check_bench.count", { count: seen.length, enough }),
-    };
-    const looked = { zero, known: seen[0], scale: none || entries[`${PLACE}.scale.amount`], again: seen[1] };
-    for (const look of LOOKS) {
-      const name = /** @type {keyof texts} */ (look);
-      const line = lines[look];
-      if (line) line.textContent = shown(texts[name]);
-      const key = redo[look];
-      if (key) key.hidden = !looked[name];
+    const looked = [
+      { look: "zero", text: zero ?? "", done: zero },
+      { look: "known", text: seen[0] ?? "", done: seen[0] },
+      { look: "scale", text: none ? say("page.values.check_compensator.none") : "", done: none ?? entries[`${PLACE}.scale.amount`] },
+      { look: "again", text: say("page.check_bench.count", { count: seen.length, enough }), done: seen[1] },
+    ];
+    for (const { look, text, done } of looked) {
+      const [line, key] = [lines[look], redo[look]];
+      if (line) line.textContent = shown(text);
+      if (key) key.hidden = !done;
     }
   }
 
