@@ -3,12 +3,13 @@
 import { demonstration } from "./demonstration.js";
 import { watchDock } from "./dock.js";
 import { byId, el, redraw } from "./dom.js";
-import { copyText, download, fileName } from "./files.js";
+import { copyText } from "./files.js";
 import { shopEditions } from "./editions.js";
 import { createForm } from "./form.js";
 import { frame } from "./frame.js";
 import { createImagine } from "./imagine.js";
-import { fromJob, guestJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
+import { guestJob, hasOrder, nextJob, toJob } from "./job.js";
+import { jobFiles } from "./job-files.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
@@ -72,10 +73,10 @@ export function startPage(startEngine) {
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     layout: layoutView({ form, state, engine, goTo }),
-    read: readView({ form, state, steps, imagine }),
+    read: readView({ form, state, steps, settings, imagine }),
     decide: decideView({ form, state, engine, goTo, imagine: imagine.ask, sign, print: () => window.print(), copy }),
-    keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
-    bench: benchView({ form, settings, settingsChanged, erase, editions }),
+    keep: keepView({ newJob, demonstrate, ...jobFiles(state), copy, print: () => window.print(), reopen }),
+    bench: benchView({ form, state, engine, settings, settingsChanged, erase, editions }),
   };
   const keypad = createKeypad({ settings, next: moveOn, setBase });
   const top = frame({ state, views, settings, toggleKeypad, drawView });
@@ -173,23 +174,6 @@ export function startPage(startEngine) {
     byId("f-id").focus();
   }
 
-  function exportFile() {
-    download(fileName(state.entries["id"]), `${JSON.stringify(toJob(state.entries).job, null, 1)}\n`);
-  }
-
-  /** @param {string} text @returns {string} "" or what was wrong with it */
-  function importText(text) {
-    let job;
-    try {
-      job = readJobFile(text);
-    } catch {
-      return "not_json";
-    }
-    if (!job || typeof job !== "object" || /** @type {any} */ (job).format !== "wedgewright.job/1") return "not_a_job";
-    state.replace(guestJob(state.entries, fromJob(job)));
-    return "";
-  }
-
   async function copy() {
     const given = await engine.ask(
       { do: "report", job: toJob(state.entries).job, sections: [], text: true, editions: editions.all },
@@ -265,6 +249,7 @@ export function startPage(startEngine) {
     if (!control) return;
     const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
     if (name) top.show(name);
+    views.read.reveal(control.node);
     for (let node = control.node.parentElement; node; node = node.parentElement)
       {if (node instanceof HTMLDetailsElement) node.open = true;}
     control.node.scrollIntoView({ block: "center" });
@@ -289,6 +274,7 @@ export function startPage(startEngine) {
       await editions.open(opened);
       showJobs();
       await keepDraft(state, opened, top.saved);
+      await views.bench.openStore(opened);
     })
     .catch(() => top.saved("off"));
 
