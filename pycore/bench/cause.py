@@ -10,7 +10,7 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, replace
 from typing import NamedTuple
 
-from pycore.bench.cause_effect import EFFECTS
+from pycore.bench.cause_effect import EFFECTS, Variants
 from pycore.bench.cause_fit import Column, Fit, Gauge, Key, joined, turn_column
 from pycore.bench.cause_lens import HEIGHT_SPREAD_MM, Held, Lens, height_is_free, held_lenses
 from pycore.bench.cause_shared import Common, commons, own_causes
@@ -20,6 +20,9 @@ from pycore.job.document import Job
 from pycore.optics.prism import Eye
 
 FAINT = 10.0  # hypotheses below e^-10 of the best are left out: together about 1 in 10,000
+# Beside these in both lenses nothing else is thought of: none of these means none, and two turns
+# of their own are two things at once already.
+ALONE = (NONE_OF_THESE, "lens-rotated")
 UNLIKELY = 6.5  # a pair of causes is left out that could reach e^-6.5 of the best at most
 
 
@@ -34,13 +37,6 @@ class Own(NamedTuple):
     def code(self) -> str:
         """The cause's code; `as-ordered` for none."""
         return self.cause.code if self.cause else AS_ORDERED
-
-    def lens(self, lens: Lens, held: Held) -> Lens | None:
-        """The lens as this leaves it, or None where it cannot happen to it."""
-        if self.cause is None:
-            return lens
-        made = EFFECTS[self.cause.code](lens, held.site, self.cause)
-        return made[self.variant][1] if self.variant < len(made) else None
 
 
 class Story(NamedTuple):
@@ -69,11 +65,24 @@ class Bench:
     table: CauseTable
     zero: float
     free_height: bool
+    _last: tuple[object, Variants] = (None, [])
 
     def lens(self, common: Common, eye: Eye, own: Own) -> Lens | None:
         """The lens as both causes leave it, or None where they cannot meet."""
-        lens = own.lens(common.lenses[eye], self.held[eye])
-        return None if lens is None else common.after(lens, eye)
+        lens = common.lenses[eye]
+        if own.cause is not None:
+            made = self._made(own.cause, lens, eye)
+            if own.variant >= len(made):
+                return None
+            lens = made[own.variant][1]
+        return common.after(lens, eye)
+
+    def _made(self, cause: Cause, lens: Lens, eye: Eye) -> Variants:
+        """All variants of a cause at once, kept for the next of them."""
+        key = cause.code, eye, lens
+        if self._last[0] != key:
+            self._last = key, EFFECTS[cause.code](lens, self.held[eye].site, cause)
+        return self._last[1]
 
     def columns(self, common: Common, eye: Eye, lens: Lens) -> list[Column]:
         """The columns of what is common to both lenses and not known."""
@@ -266,7 +275,7 @@ def _with_own(
     least: float,
 ) -> Iterator[Found]:
     """A shared cause together with one of one lens, where that can reach the weight `least`."""
-    if common.code == NONE_OF_THESE:
+    if common.code in ALONE:
         return
     log_common = math.log(common.weight)
     none = {eye: owns[eye][0] for eye in owns}

@@ -356,9 +356,20 @@ def joined(one: Fit, two: Fit | None = None) -> float:
                 for row, other in zip(grip, two.grip, strict=True)
             ]
         )
-    if not pull:
-        return density
-    rows = [[part + (at == one_) for at, part in enumerate(row)] for one_, row in enumerate(grip)]
+    return density + _gain(pull, grip) if pull else density
+
+
+def _gain(pull: Numbers, grip: tuple[Numbers, ...]) -> float:
+    """What integrating the common parameters adds: p' (1 + G)^-1 p / 2 - log det (1 + G) / 2."""
+    if len(pull) == 1:
+        whole = 1.0 + grip[0][0]
+        return 0.5 * (pull[0] ** 2 / whole - math.log(whole))
+    if len(pull) == 2:  # written out, since it is the usual case: the zero
+        (p, q), (a, b), c = pull, grip[0], 1.0 + grip[1][1]
+        a += 1.0
+        whole = a * c - b * b
+        return 0.5 * ((c * p * p - 2.0 * b * p * q + a * q * q) / whole - math.log(whole))
+    rows = [[part + (i == j) for j, part in enumerate(row)] for i, row in enumerate(grip)]
     inverse, log_root = inverse_root(rows)
     moved = _times(inverse, pull)
-    return density + 0.5 * dot(moved, moved) - log_root
+    return 0.5 * dot(moved, moved) - log_root
