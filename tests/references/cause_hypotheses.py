@@ -1,0 +1,198 @@
+"""All that can be wrong with one job: which faults it allows, their priors, and what each of their combinations predicts."""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from tests.references.cause_faults import CAUSES, COARSE, FINE, Fault, angles, lens_faults
+from tests.references.cause_lenses import (
+    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, joined, made, measured, not_square, shown, turned, with_zero,
+)  # fmt: skip
+from tests.references.cause_orders import EYES, PairOrder
+from tests.references.cause_pair_faults import PairFault, pair_faults
+
+Places = NDArray[np.int64]
+OTHER = {"right": "left", "left": "right"}
+
+
+def what_is_read(pair: PairOrder) -> NDArray[np.bool_]:
+    """Which of a lens's measurable values this job has."""
+    read = np.zeros(MEASURED, dtype=bool)
+    read[PRISM] = True
+    read[MEAN], read[CYLINDER] = pair.plan.powers, pair.plan.powers
+    read[ADD] = pair.plan.powers and pair.right.add > 0
+    read[PLACE] = pair.plan.distances, pair.plan.heights
+    return read
+
+
+@dataclass(frozen=True)
+class Hypotheses:
+    """All that one job allows: faults and the prior of each code, for each lens and for the pair."""
+
+    lens: dict[str, list[Fault]]
+    pair: list[PairFault]
+    prior: dict[str, dict[str, float]]  # "right", "left", "shared" → code → prior
+
+
+def hypotheses_of(pair: PairOrder) -> Hypotheses:
+    """Faults that this job allows and that change something in what is read, and their priors."""
+    lens = {eye: noticeable(pair, eye, list(lens_faults(pair, eye))) for eye in EYES}
+    shared = noticeable_pair(pair, list(pair_faults(pair)))
+    codes = {eye: {fault.code for fault in lens[eye]} for eye in EYES}
+    prior: dict[str, dict[str, float]] = {"shared": {}}
+    for eye in EYES:
+        prior[eye] = {code: CAUSES[code]["prior"] * share_of(code, eye, codes) for code in codes[eye] - {"as-ordered"}}
+    for code in {fault.code for fault in shared} - {"as-ordered"}:
+        prior["shared"][code] = CAUSES[code]["prior"] * CAUSES[code]["both"]
+    for code in (codes["right"] & codes["left"]) - {"as-ordered"} - prior["shared"].keys():
+        if CAUSES[code]["both"]:
+            prior["shared"][code] = CAUSES[code]["prior"] * CAUSES[code]["both"]
+    for of_one in prior.values():
+        of_one["as-ordered"] = 1 - sum(of_one.values())
+    return Hypotheses(lens, shared, prior)
+
+
+def share_of(code: str, eye: str, codes: dict[str, set[str]]) -> float:
+    """The share of one lens; a moved table concerns the lens read second, wherever it is known which."""
+    entry = CAUSES[code]
+    if code == "table-moved" and code not in codes[OTHER[eye]]:
+        return float(entry["right"] + entry["left"])
+    return float(entry[eye])
+
+
+def differs(pair: PairOrder, place: str, lenses: Lenses) -> bool:
+    """Tell whether any of what is read of a lens would differ from what is due."""
+    read = what_is_read(pair)
+    means, loads = measured(lenses, pair.due(place))
+    due_means, due_loads = measured(with_zero(shown(start(pair, place))), pair.due(place))
+    free = np.concatenate([loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2)
+    far = [np.abs(part[:, read]).max() > 1e-9 for part in (means - due_means, free)]
+    return bool(far[0] or far[1] or lenses.broad.any())
+
+
+def noticeable(pair: PairOrder, eye: str, faults: list[Fault]) -> list[Fault]:
+    """The faults whose code changes something (with one of its variants), as ordered first."""
+    changing = set()
+    for fault in faults[1:]:
+        lens = fault.make(start(pair, eye))
+        if fault.turns:
+            lens = turned(lens, np.array([3.0]))
+        if differs(pair, eye, with_zero(fault.read(shown(lens)))):
+            changing.add(fault.code)
+    return [fault for fault in faults if fault.code in changing or fault.code == "as-ordered"]
+
+
+def noticeable_pair(pair: PairOrder, faults: list[PairFault]) -> list[PairFault]:
+    """The same for the faults of the pair."""
+    lenses = {eye: start(pair, eye) for eye in EYES}
+    changing = set()
+    for fault in faults[1:]:
+        for place in EYES:
+            source = OTHER[place] if fault.crossed else place
+            lens = shown(fault.made_as[place](lenses[source], lenses[OTHER[source]]))
+            lens = not_square(lens, np.array([3.0])) if fault.turns else fault.read[place](lens)
+            if fault.zero_variance or differs(pair, place, with_zero(lens)):
+                changing.add(fault.code)
+    return [fault for fault in faults if fault.code in changing or fault.code == "as-ordered"]
+
+
+# --- laid out -------------------------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True)
+class Rows:
+    """The hypotheses of the lens that lies at one place: index of the context (the pair's fault, its angle) and of the
+    lens's own fault, log weight, what is predicted."""
+
+    context: Places
+    fault: Places
+    weight: Floats
+    lenses: Lenses
+
+
+@dataclass(frozen=True)
+class Context:
+    """One fault of the pair, at one angle where it turns both lenses. `alone`: only without a fault of a lens beside it."""
+
+    fault: PairFault
+    weight: float
+    alone: bool = False
+    beside: bool = False  # only with a fault of a lens beside it
+
+
+def start(pair: PairOrder, eye: str) -> Lenses:
+    """One lens exactly as ordered."""
+    lens = pair.lens(eye)
+    unknown = np.array([0.0, 1.0]) * (pair.thinning_amount is None)
+    return made(lens.prism, pair.thinning(), unknown, lens.power, lens.add)
+
+
+def rows_of(pair: PairOrder, source: str, faults: list[Fault], shared: list[PairFault]) -> Rows:
+    """Every fault of one lens within every fault of the pair, before the pair's turns on the table."""
+    place_of = [OTHER[source] if fault.crossed else source for fault in shared]
+    lens, other = start(pair, source), start(pair, OTHER[source])
+    base = joined([fault.made_as[place](lens, other) for fault, place in zip(shared, place_of, strict=True)])
+    every = np.arange(len(shared))
+    parts: list[Lenses] = []
+    labels: list[tuple[Places, int, Floats]] = []
+    for number, fault in enumerate(faults):
+        for take, count in ((every[:1], FINE), (every[1:], COARSE)) if fault.turns else ((every, 1),):
+            lenses, weights = fault.make(base.take(take)), np.array([fault.share])
+            if fault.turns:
+                turns, weights = angles(fault.code, count)
+                lenses = turned(lenses, turns)
+            parts.append(fault.read(shown(lenses)))
+            labels.append((np.repeat(take, len(weights)), number, np.tile(np.log(weights), len(take))))
+    context = np.concatenate([label[0] for label in labels])
+    fault_number = np.concatenate([np.full(len(label[0]), label[1]) for label in labels])
+    return Rows(context, fault_number, np.concatenate([label[2] for label in labels]), joined(parts))
+
+
+def contexts_of(shared: list[PairFault]) -> list[list[Context]]:
+    """Each fault of the pair with its angles."""
+    found = []
+    for fault in shared:
+        if fault.turns:
+            fine, coarse = angles(fault.code, FINE), angles(fault.code, COARSE)
+            found.append(
+                [Context(fault, math.log(weight), alone=True) for weight in fine[1]]
+                + [Context(fault, math.log(weight), beside=True) for weight in coarse[1]]
+            )
+        else:
+            found.append([Context(fault, math.log(fault.share))])
+    return found
+
+
+def read_at_places(sources: dict[str, Rows], shared: list[PairFault], contexts: list[list[Context]]) -> dict[str, Rows]:
+    """The lenses on the lens meter, under the faults of the pair: rows of the right and of the left place."""
+    parts: dict[str, list[tuple[Places, Places, Floats, Lenses]]] = {eye: [] for eye in EYES}
+    first = 0
+    for number, fault in enumerate(shared):
+        for source, rows in sources.items():
+            place = OTHER[source] if fault.crossed else source
+            here = np.flatnonzero(rows.context == number)
+            if fault.turns:
+                parts[place] += turned_on_table(rows, here, fault.code, first)
+            else:
+                lenses = with_zero(fault.read[place](rows.lenses.take(here)))
+                parts[place].append((np.full(len(here), first), rows.fault[here], rows.weight[here], lenses))
+        first += len(contexts[number])
+    return {
+        place: Rows(*(np.concatenate([part[field] for part in of_place]) for field in range(3)), joined([part[3] for part in of_place]))  # type: ignore[misc]
+        for place, of_place in parts.items()
+    }
+
+
+def turned_on_table(rows: Rows, here: Places, code: str, first: int) -> list[tuple[Places, Places, Floats, Lenses]]:
+    """A lens in a frame that is not square: finely by itself, coarsely with faults of its own."""
+    alone = here[rows.fault[here] == 0]
+    found = []
+    for take, count, offset in ((alone, FINE, 0), (here, COARSE, FINE)):
+        lenses = with_zero(not_square(rows.lenses.take(take), angles(code, count)[0]))
+        which, angle = np.repeat(take, count), np.tile(np.arange(count), len(take))
+        found.append((first + offset + angle, rows.fault[which], rows.weight[which], lenses))
+    return found

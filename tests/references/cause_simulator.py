@@ -1,0 +1,253 @@
+"""Jobs of which it is known what went wrong: a cause drawn from the table's priors, the lenses made and read so, as a document.
+
+Noise is drawn as physics, not as the posterior's algebra: principal powers and axis scatter, a turn is any angle, every
+reading is rounded to the instrument's steps. One standard uncertainty of a power or an axis is taken to contain the
+drum's step; that of a prism is not (the table adds step²/12).
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from tests.references import bench_reference as bench
+from tests.references.cause_faults import CAUSES, NOISE, Fault, parameter
+from tests.references.cause_hypotheses import OTHER, Hypotheses, hypotheses_of, start
+from tests.references.cause_lenses import (
+    ADD, COMMON, CYLINDER, LATENTS, MEAN, MEASURED, PLACE, PRISM, Floats, Lenses, cylinder_parts, inverse, measured, not_square, shown,
+    turned, with_zero,
+)  # fmt: skip
+from tests.references.cause_orders import EYES, Job, LensOrder, PairOrder, Rng, document, draw_pair, signed
+from tests.references.cause_pair_faults import PairFault
+from tests.references.cause_posterior import AS_ORDERED, Entry, common_variance, entries_of, prism_variances
+
+POWER_STEP = {"manual": 0.125, "automatic": 0.01}
+
+
+@dataclass(frozen=True)
+class Truth:
+    """What went wrong: codes of the pair's fault and of each lens's; `both` where both lenses have it for the same reason."""
+
+    shared: str
+    right: str
+    left: str
+    both: bool = False
+
+    @property
+    def entries(self) -> tuple[Entry, ...]:
+        """The entries it counts for."""
+        return ((self.right, EYES),) if self.both else entries_of(self.shared, self.right, self.left)
+
+
+@dataclass(frozen=True)
+class Case:
+    """One simulated job: the order, what went wrong, the values read (as the document's digits say them), the document."""
+
+    pair: PairOrder
+    hypotheses: Hypotheses
+    truth: Truth
+    data: dict[str, Floats]
+    job: Job
+
+
+# --- what went wrong ----------------------------------------------------------------------------------------------------------
+
+
+def truth_of(hypotheses: Hypotheses, shared: str, right: str, left: str) -> Truth:
+    """The drawn codes; a code of the shared list that is a lens's fault concerns both lenses."""
+    if shared not in {fault.code for fault in hypotheses.pair}:
+        return Truth("as-ordered", shared, shared, both=True)
+    return Truth(shared, right, left)
+
+
+def draw_truth(rng: Rng, hypotheses: Hypotheses, *, faulty: bool = False) -> Truth:
+    """From the priors; never three faults at once. `faulty`: given that something is wrong."""
+    while True:
+        drawn = [draw_code(rng, hypotheses.prior[part]) for part in ("shared", "right", "left")]
+        wrong = sum(code != "as-ordered" for code in drawn)
+        own_beside_both = drawn[0] not in {fault.code for fault in hypotheses.pair} and wrong > 1
+        if wrong <= 2 and not own_beside_both and (wrong or not faulty):
+            return truth_of(hypotheses, *drawn)
+
+
+def draw_code(rng: Rng, prior: dict[str, float]) -> str:
+    """One code by its prior."""
+    return sorted(prior)[int(rng.choice(len(prior), p=[prior[code] for code in sorted(prior)]))]
+
+
+def entries_allowed(hypotheses: Hypotheses) -> dict[Entry, Truth]:
+    """Every single cause of this job."""
+    none = "as-ordered"
+    found = {AS_ORDERED: Truth(none, none, none)}
+    for code in hypotheses.prior["shared"]:
+        found[code, EYES] = truth_of(hypotheses, code, none, none)
+    for eye in EYES:
+        for code in hypotheses.prior[eye].keys() - {none}:
+            if CAUSES[code][eye] or code == "table-moved":
+                found[code, (eye,)] = Truth(none, *((code, none) if eye == "right" else (none, code)))
+    return found
+
+
+# --- making and reading -----------------------------------------------------------------------------------------------------
+
+
+def draw_variant(rng: Rng, faults: Any, code: str) -> Any:
+    """One variant of a fault by its share."""
+    variants = [fault for fault in faults if fault.code == code]
+    return variants[int(rng.choice(len(variants), p=[fault.share for fault in variants]))]
+
+
+def draw_turn(rng: Rng, code: str) -> Floats:
+    """One angle in degrees."""
+    return np.array([rng.normal(0, parameter(code, "turn_deg"))])
+
+
+def lens_on_table(pair: PairOrder, place: str, shared: PairFault, own: dict[str, Fault], table_turn: Floats, rng: Rng) -> Lenses:
+    """The lens that lies at one place, with all that went wrong with it."""
+    source = OTHER[place] if shared.crossed else place
+    fault = own[source]
+    lens = fault.make(shared.made_as[place](start(pair, source), start(pair, OTHER[source])))
+    if fault.turns:
+        lens = turned(lens, draw_turn(rng, fault.code))
+    lens = fault.read(shown(lens))
+    lens = not_square(lens, table_turn) if shared.turns else shared.read[place](lens)
+    return with_zero(lens)
+
+
+def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) -> Case:
+    """Make the pair with that fault, read it, write the readings down."""
+    shared = draw_variant(rng, hypotheses.pair, truth.shared)
+    own = {eye: draw_variant(rng, hypotheses.lens[eye], getattr(truth, eye)) for eye in EYES}
+    if truth.both:
+        which = [fault for fault in hypotheses.lens["right"] if fault.code == truth.right].index(own["right"])
+        own["left"] = [fault for fault in hypotheses.lens["left"] if fault.code == truth.left][which]
+    table_turn = draw_turn(rng, shared.code) if shared.turns else np.zeros(1)
+    common = rng.normal(0, np.sqrt(common_variance(pair, shared)))
+    data, readings = {}, {}
+    for eye in EYES:
+        lenses = lens_on_table(pair, eye, shared, own, table_turn, rng)
+        data[eye], readings[eye] = read_lens(rng, pair, eye, lenses, common)
+    job = document(pair) | {"readings": {"at": "marked-point", **readings}}
+    return Case(pair, hypotheses, truth, data, job)
+
+
+def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Floats) -> tuple[Floats, Job]:
+    """One lens read: its values as the digits say them, and the digits."""
+    latents = np.concatenate([common, rng.normal(0, np.sqrt(lenses.own_variance[0]))])
+    assert len(latents) == LATENTS
+    assert len(common) == COMMON
+    means, loads = measured(lenses, pair.due(eye))
+    true = means[0] + loads[0] @ latents
+    broad = lenses.broad[0]
+    true[:6] += rng.normal(0, np.sqrt(broad[:6]))
+    laboratory, _, settling = prism_variances(pair)
+    made_so = rng.normal(0, math.sqrt(laboratory), 2)
+    values, typed = np.zeros(MEASURED), read_prism(rng, pair, eye, true[PRISM] + made_so)
+    values[PRISM] = typed.pop("vector")
+    if pair.plan.powers:
+        values[MEAN], values[CYLINDER] = read_power(rng, pair, true, broad[3] > 0 and pair.lens(eye) or None, typed)
+        if pair.right.add:
+            scatter = math.hypot(NOISE["laboratory_power_d"], without_step(pair.bench.power_d, POWER_STEP[pair.bench.kind]))
+            values[ADD] = round_to(max(true[ADD] + rng.normal(0, scatter), 0.0), POWER_STEP[pair.bench.kind])
+            typed["add"] = f"{values[ADD]:.3f}"
+    settled = made_so + rng.normal(0, math.sqrt(settling), 2) + rng.normal(0, 1, 2) * np.sqrt(broad[PLACE])
+    place = true[PLACE] + 10 * inverse(lenses.power)[0] @ settled + rng.normal(0, pair.bench.position_mm, 2)
+    values[PLACE] = read_place(pair, pair.lens(eye), place, typed)
+    return values, typed
+
+
+def round_to(value: float, step: float) -> float:
+    """To the nearest step."""
+    return round(float(value) / step) * step
+
+
+def without_step(uncertainty: float, step: float) -> float:
+    """What is left of a standard uncertainty without the rounding to a step."""
+    return math.sqrt(max(uncertainty**2 - step**2 / 12, 0.0))
+
+
+def read_prism(rng: Rng, pair: PairOrder, eye: str, prism: Floats) -> Job:
+    """The prism read once or several times, with what stands on the compensator's scale taken out beforehand."""
+    step, scale = pair.bench.prism_step, pair.plan.scales.get(eye)
+    taken = complex(bench.vector(*scale)) if scale else 0j
+    sightings, seen = [], []
+    for _ in range(pair.plan.times):
+        x, y = (round_to(part, step) for part in prism + rng.normal(0, pair.bench.prism, 2) - [taken.real, taken.imag])
+        seen.append([x + taken.real, y + taken.imag])
+        sighting: Job = {"prism": in_words(eye, x, y)}
+        if scale:
+            sighting["compensator"] = {"amount": str(scale[0]), "base": str(scale[1])}
+        sightings.append(sighting)
+    return sightings[0] | {"vector": np.mean(seen, axis=0)} | ({"repeats": sightings[1:]} if sightings[1:] else {})
+
+
+def in_words(eye: str, x: float, y: float) -> list[Job]:
+    """Components by words."""
+    words = ((x, bench.horizontal_word(eye, x)), (y, bench.vertical_word(y)))
+    return [{"amount": f"{abs(amount):.2f}", "base": word} for amount, word in words if word] or [{"amount": "0", "base": "0"}]
+
+
+def read_power(rng: Rng, pair: PairOrder, true: Floats, unknown: LensOrder | None, typed: Job) -> tuple[float, Floats]:
+    """Sphere, cylinder and axis read off the drums: mean power and parts of the cylinder as the digits say them."""
+    meter, step = pair.bench, POWER_STEP[pair.bench.kind]
+    scatter = math.hypot(NOISE["laboratory_power_d"], without_step(meter.power_d, step))
+    turn_deg = math.hypot(NOISE["laboratory_axis_deg"], without_step(meter.axis_deg, 1.0))
+    mean = true[MEAN] + rng.normal(0, scatter / math.sqrt(2))
+    parts = true[CYLINDER] + rng.normal(0, scatter / math.sqrt(2), 2)
+    turn = np.deg2rad(rng.normal(0, turn_deg))
+    moved_by = unknown.power if unknown else matrix_of(0.0, true[CYLINDER])
+    across = cylinder_parts(moved_by)[::-1] * [2.0, -2.0]
+    sphere, cylinder, axis = bench.spherocylinder(matrix_of(mean, parts + turn * across), -1)
+    sphere, cylinder, axis = round_to(sphere, step), round_to(cylinder, step), round(float(axis)) % 180 or 180
+    typed |= {"sphere": with_sign(sphere), "cylinder": with_sign(cylinder)} | ({"axis": str(axis)} if cylinder else {})
+    read = bench.power_matrix(sphere, cylinder, axis)
+    return float(np.trace(read)) / 2, cylinder_parts(read)
+
+
+def matrix_of(mean: float, parts: Floats) -> Floats:
+    """The power matrix of a mean power and the cylinder's parts."""
+    return mean * np.eye(2) + np.array([[-parts[0], parts[1]], [parts[1], parts[0]]])
+
+
+def with_sign(power: float) -> str:
+    """Three decimals, signed."""
+    return f"{power:+.3f}" if round(power, 3) else "0.00"
+
+
+def read_place(pair: PairOrder, lens: LensOrder, place_mm: Floats, typed: Job) -> Floats:
+    """Where the ordered prism was found, as height and distance to the tenth of a millimetre."""
+    inwards = bench.vector_of_word(lens.eye, 1, "in").real
+    height, distance = round(lens.height_mm + place_mm[1], 1), round(lens.pd_mm - inwards * place_mm[0], 1)
+    if pair.plan.heights:
+        typed["prp_height_mm"] = f"{height:.1f}"
+    if pair.plan.distances:
+        typed["pd_mm"] = f"{distance:.1f}"
+    return np.array([inwards * (lens.pd_mm - distance), height - lens.height_mm])
+
+
+# --- draws --------------------------------------------------------------------------------------------------------------------
+
+
+def draw_case(rng: Rng, *, faulty: bool = False) -> Case:
+    """A job and what went wrong with it, from the priors (`faulty`: given that something is wrong)."""
+    pair = draw_pair(rng)
+    hypotheses = hypotheses_of(pair)
+    return simulate(rng, pair, hypotheses, draw_truth(rng, hypotheses, faulty=faulty))
+
+
+def draw_with(rng: Rng, code: str) -> Case:
+    """A job with that cause in it alone: jobs are drawn until one allows it, the eyes then by their shares."""
+    while True:
+        pair = draw_pair(rng)
+        hypotheses = hypotheses_of(pair)
+        allowed = {entry: truth for entry, truth in entries_allowed(hypotheses).items() if entry[0] == code}
+        if allowed:
+            shares = [CAUSES[code]["both" if len(eyes) == 2 else eyes[0]] if code in CAUSES else 1.0 for _, eyes in allowed]
+            truths = list(allowed.values())
+            return simulate(rng, pair, hypotheses, truths[int(rng.choice(len(truths), p=np.array(shares) / sum(shares)))])
+
+
+__all__ = ["Case", "Truth", "draw_case", "draw_with", "entries_allowed", "signed"]

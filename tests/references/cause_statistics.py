@@ -1,0 +1,173 @@
+"""How good a list of causes is over many simulated jobs: confusion, rank of the injected cause, reliability.
+
+Half of the jobs drawn for the reliability have something wrong, and every job carries the weight that makes the whole
+again a draw from the priors: the curve then stands on faults as well as on the many good pairs.
+"""
+
+from __future__ import annotations
+
+import json
+from collections.abc import Iterable
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from pycore.api import handle
+from tests.references.cause_orders import EYES, draw_pair
+from tests.references.cause_hypotheses import hypotheses_of
+from tests.references.cause_posterior import AS_ORDERED, Entry, Posterior, posterior
+from tests.references.cause_simulator import Case, draw_truth, draw_with, simulate
+
+BINS = np.array([0.0, 0.02, 0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.95, 0.98, 1.0])
+
+
+@dataclass(frozen=True)
+class Judged:
+    """One job: its weight, what went wrong, the simulator's own posterior, the list that is tested."""
+
+    weight: float
+    truth: tuple[Entry, ...]
+    own: Posterior
+    tested: dict[Entry, float]
+
+    def share(self, group: frozenset[Entry]) -> float:
+        """How much of what went wrong the group holds."""
+        return sum(entry in group for entry in self.truth) / len(self.truth)
+
+    def groups(self) -> list[tuple[float, frozenset[Entry]]]:
+        """The tested list by the simulator's groups of equal predictions, likeliest first; what it has beyond them singly."""
+        left, found = dict(self.tested), []
+        for entry in self.own.likelihood:
+            if not any(entry in group for _, group in found):
+                group = self.own.group(entry)
+                found.append((sum(left.pop(member, 0.0) for member in group), group))
+        found += [(value, frozenset([entry])) for entry, value in left.items()]
+        return sorted(found, key=lambda item: -item[0])
+
+
+# --- the program's list ---------------------------------------------------------------------------------------------------
+
+
+def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
+    """The program's causes of one job, through its door."""
+    request = {"format": "wedgewright.request/1", "do": "report", "job": job, "sections": ["causes"]}
+    report = json.loads(handle(json.dumps(request)))
+    found: dict[Entry, float] = {}
+    for entry in report["causes"]:
+        key = entry["code"], named(entry["code"], entry["eyes"])
+        assert key not in found, key
+        found[key] = entry["probability"]
+    return found
+
+
+def named(code: str, eyes: list[str]) -> tuple[str, ...]:
+    """The eyes of an entry in our order; as ordered concerns both."""
+    return EYES if code == "as-ordered" else tuple(eye for eye in EYES if eye in eyes)
+
+
+# --- jobs -----------------------------------------------------------------------------------------------------------------
+
+
+def judge(case: Case, weight: float, *, program: bool) -> Judged:
+    """One job judged by the simulator and by the program (or by the simulator alone, to prove itself)."""
+    own = posterior(case.pair, case.hypotheses, case.data)
+    return Judged(weight, case.truth.entries, own, causes_of(case.job) if program else own.entries)
+
+
+def from_priors(count: int, seed: int, *, program: bool) -> list[Judged]:
+    """Jobs by the priors, the faulty ones oversampled and weighted."""
+    rng, judged = np.random.default_rng(seed), []
+    for number in range(count):
+        pair = draw_pair(rng)
+        hypotheses = hypotheses_of(pair)
+        good = float(np.prod([prior["as-ordered"] for prior in hypotheses.prior.values()]))
+        faulty = number % 2 == 1
+        truth = draw_truth(rng, hypotheses, faulty=faulty)
+        while not faulty and truth.entries != (AS_ORDERED,):
+            truth = draw_truth(rng, hypotheses)
+        judged.append(judge(simulate(rng, pair, hypotheses, truth), 1 - good if faulty else good, program=program))
+    return judged
+
+
+def by_cause(codes: Iterable[str], each: int, seed: int, *, program: bool) -> list[Judged]:
+    """The same number of jobs for each cause."""
+    rng = np.random.default_rng(seed)
+    return [judge(draw_with(rng, code), 1.0, program=program) for code in codes for _ in range(each)]
+
+
+# --- figures --------------------------------------------------------------------------------------------------------------
+
+
+@dataclass(frozen=True)
+class Reliability:
+    """Per bin of the stated probability: weight, mean stated, how often true; the expected calibration error."""
+
+    rows: list[tuple[float, float, float]]
+    error: float
+
+
+def reliability(judged: list[Judged], *, top_only: bool) -> Reliability:
+    """Stated probability against frequency, of the first group of each job or of all groups."""
+    told, true, weight = [], [], []
+    for job in judged:
+        groups = job.groups()
+        for value, group in groups[:1] if top_only else groups:
+            told.append(value)
+            true.append(job.share(group))
+            weight.append(job.weight)
+    return curve(np.array(told), np.array(true), np.array(weight))
+
+
+def curve(told: Any, true: Any, weight: Any) -> Reliability:
+    """The reliability curve of weighted statements."""
+    place = np.clip(np.digitize(told, BINS) - 1, 0, len(BINS) - 2)
+    rows, error = [], 0.0
+    for number in range(len(BINS) - 1):
+        here = place == number
+        if weight[here].sum() > 0:
+            mean, often = (float(np.average(part[here], weights=weight[here])) for part in (told, true))
+            rows.append((float(weight[here].sum() / weight.sum()), mean, often))
+            error += rows[-1][0] * abs(mean - often)
+    return Reliability(rows, error)
+
+
+@dataclass(frozen=True)
+class Ranks:
+    """Where the simulator is sure (0.9) of the injected cause's group: how many, how often first, among the first three."""
+
+    sure: int
+    first: float
+    among_three: float
+
+
+def ranks(judged: list[Judged], sure: float = 0.9) -> Ranks:
+    """Rank of the injected group in the tested list, for jobs with a single cause."""
+    places = []
+    for job in judged:
+        if len(job.truth) > 1 or job.truth[0] not in job.own.likelihood:
+            continue
+        group = job.own.group(job.truth[0])
+        if sum(job.own.entries.get(entry, 0.0) for entry in group) >= sure:
+            places.append([group for _, group in job.groups()].index(group))
+    found = np.array(places)
+    return Ranks(len(found), float((found == 0).mean()), float((found < 3).mean()))
+
+
+def falsely_accused(judged: list[Judged]) -> float:
+    """Share of correct pairs for which some cause stands above one half."""
+    good = [job for job in judged if job.truth == (AS_ORDERED,)]
+    return sum(any(value > 0.5 for entry, value in job.tested.items() if entry[0] != "as-ordered") for job in good) / len(good)
+
+
+def confusion(judged: list[Judged]) -> dict[str, dict[str, float]]:
+    """Injected code → mean probability of each stated code."""
+    table: dict[str, dict[str, float]] = {}
+    count: dict[str, int] = {}
+    for job in judged:
+        injected = " + ".join(code for code, _ in job.truth)
+        row = table.setdefault(injected, {})
+        count[injected] = count.get(injected, 0) + 1
+        for (code, _), value in job.tested.items():
+            row[code] = row.get(code, 0.0) + value
+    return {code: {stated: value / count[code] for stated, value in row.items()} for code, row in table.items()}
