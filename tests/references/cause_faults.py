@@ -52,22 +52,23 @@ class Fault:
     make: Act = lambda lenses: lenses
     read: Act = lambda lenses: lenses
     turns: bool = False
+    variant: int = 0  # the same number is the same variant in either lens
 
 
-def prism_fault(code: str, change: Callable[[Floats], Floats], share: float = 1.0) -> Fault:
+def prism_fault(code: str, change: Callable[[Floats], Floats], share: float = 1.0, variant: int = 0) -> Fault:
     """A fault that changes the prescribed prism and nothing else."""
-    return Fault(code, share, lambda lenses: replace(lenses, prism=change(lenses.prism)))
+    return Fault(code, share, lambda lenses: replace(lenses, prism=change(lenses.prism)), variant=variant)
 
 
-def thinning_fault(code: str, amount_down: float, share: float = 1.0) -> Fault:
+def thinning_fault(code: str, amount_down: float) -> Fault:
     """Another thinning than due, Δ base down."""
-    return Fault(code, share, lambda lenses: replace(lenses, thinning=np.broadcast_to([0.0, -amount_down], lenses.thinning.shape)))
+    return Fault(code, 1.0, lambda lenses: replace(lenses, thinning=np.broadcast_to([0.0, -amount_down], lenses.thinning.shape)))
 
 
-def power_fault(code: str, sphere: float, cylinder: float, axis_deg: float, share: float) -> Fault:
-    """Another power than ordered."""
-    power = bench.power_matrix(sphere, cylinder, axis_deg)
-    return Fault(code, share, lambda lenses: replace(lenses, power=np.broadcast_to(power, lenses.power.shape)))
+def power_fault(code: str, power: tuple[float, float, float], share: float = 1.0, variant: int = 0) -> Fault:
+    """Another power than ordered: sphere, cylinder, axis."""
+    matrix = bench.power_matrix(*power)
+    return Fault(code, share, lambda lenses: replace(lenses, power=np.broadcast_to(matrix, lenses.power.shape)), variant=variant)
 
 
 # --- one lens -----------------------------------------------------------------------------------------------------------
@@ -117,7 +118,7 @@ def point_faults(pair: PairOrder, eye: str) -> Iterator[Fault]:
 
     if pair.design == "progressive":
         yield at("read-at-fitting-cross", (0.0, lens.cross_mm))
-    if pair.state == "mounted":
+    if pair.state != "uncut":
         across, upright, bridge = pair.box_mm
         # The eye is pd from the middle of the bridge, the boxing centre half of A and of the bridge.
         yield at("read-at-boxing-centre", (inwards * (lens.pd_mm - (across + bridge) / 2), upright / 2 - lens.height_mm))
@@ -192,8 +193,8 @@ def base_faults(lens: LensOrder) -> Iterator[Fault]:
     yield prism_fault("side-word-wrong", lambda prism: -prism)
     yield prism_fault("base-mirrored", lambda prism: prism * MIRROR)
     yield prism_fault("base-flipped", lambda prism: prism * FLIP)
-    for change in (MIRROR, -np.ones(2), FLIP):
-        yield prism_fault("angle-not-carried", lambda prism, change=change: prism * change, 1 / 3)
+    for variant, change in enumerate((MIRROR, -np.ones(2), FLIP)):
+        yield prism_fault("angle-not-carried", lambda prism, change=change: prism * change, 1 / 3, variant)
     yield Fault(
         "wearers-view-angle", 1.0,
         lambda lenses: replace(lenses, prism=lenses.prism * MIRROR, power=lenses.power * np.outer(MIRROR, MIRROR)),
@@ -210,8 +211,8 @@ def amount_faults(lens: LensOrder) -> Iterator[Fault]:
             "added-arithmetically",
             lambda prism: prism * (np.abs(prism).sum(1) / np.maximum(np.hypot(prism[:, 0], prism[:, 1]), 1e-12))[:, None],
         )
-        for kept in (np.array([1.0, 0.0]), np.array([0.0, 1.0])):
-            yield prism_fault("component-missing", lambda prism, kept=kept: prism * kept, 1 / 2)
+        for variant, kept in enumerate(np.eye(2)):
+            yield prism_fault("component-missing", lambda prism, kept=kept: prism * kept, 1 / 2, variant)
     yield prism_fault("prism-missing", lambda prism: 0 * prism)
     yield prism_fault("prism-doubled", lambda prism: 2 * prism)
 
@@ -219,7 +220,7 @@ def amount_faults(lens: LensOrder) -> Iterator[Fault]:
 def cylinder_faults(lens: LensOrder) -> Iterator[Fault]:
     """A step of the transposition forgotten, or the sign."""
     sphere, cylinder, axis_deg = lens.sphere, lens.cylinder, lens.axis_deg
-    yield power_fault("cylinder-transposition", sphere, -cylinder, axis_deg + 90, 1 / 3)
-    yield power_fault("cylinder-transposition", sphere + cylinder, cylinder, axis_deg + 90, 1 / 3)
-    yield power_fault("cylinder-transposition", sphere + cylinder, -cylinder, axis_deg, 1 / 3)
-    yield power_fault("cylinder-sign", sphere, -cylinder, axis_deg, 1.0)
+    steps = ((sphere, -cylinder, axis_deg + 90), (sphere + cylinder, cylinder, axis_deg + 90), (sphere + cylinder, -cylinder, axis_deg))
+    for variant, power in enumerate(steps):
+        yield power_fault("cylinder-transposition", power, 1 / 3, variant)
+    yield power_fault("cylinder-sign", (sphere, -cylinder, axis_deg))

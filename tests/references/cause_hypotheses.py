@@ -3,18 +3,20 @@
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
+from typing import TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
 
 from tests.references.cause_faults import CAUSES, COARSE, FINE, Fault, angles, lens_faults
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, joined, made, measured, not_square, shown, turned, with_zero,
+    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, joined, made, measured, not_square, shown, slid_by, turned, with_zero,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault, pair_faults
 
+AnyFault = TypeVar("AnyFault", Fault, PairFault)
 Places = NDArray[np.int64]
 OTHER = {"right": "left", "left": "right"}
 
@@ -37,6 +39,13 @@ class Hypotheses:
     pair: list[PairFault]
     prior: dict[str, dict[str, float]]  # "right", "left", "shared" → code → prior
 
+    def same_variant(self, code: str) -> list[tuple[int, int, float]]:
+        """Places, among the code's variants of the right and of the left lens, of the variants that both allow; shares."""
+        right, left = ([fault for fault in self.lens[eye] if fault.code == code] for eye in EYES)
+        found = [(i, j, one.share) for i, one in enumerate(right) for j, other in enumerate(left) if one.variant == other.variant]
+        whole = sum(share for _, _, share in found)
+        return [(i, j, share / whole) for i, j, share in found]
+
 
 def hypotheses_of(pair: PairOrder) -> Hypotheses:
     """Faults that this job allows and that change something in what is read, and their priors."""
@@ -56,6 +65,11 @@ def hypotheses_of(pair: PairOrder) -> Hypotheses:
     return Hypotheses(lens, shared, prior)
 
 
+def predicted(pair: PairOrder, place: str, lenses: Lenses) -> tuple[Floats, Floats]:
+    """Means and loadings of what this job's order has measured at one place."""
+    return measured(lenses, pair.due(place), slid_by(lenses.power, pair.plan.distances))
+
+
 def share_of(code: str, eye: str, codes: dict[str, set[str]]) -> float:
     """The share of one lens; a moved table concerns the lens read second, wherever it is known which."""
     entry = CAUSES[code]
@@ -67,37 +81,47 @@ def share_of(code: str, eye: str, codes: dict[str, set[str]]) -> float:
 def differs(pair: PairOrder, place: str, lenses: Lenses) -> bool:
     """Tell whether any of what is read of a lens would differ from what is due."""
     read = what_is_read(pair)
-    means, loads = measured(lenses, pair.due(place))
-    due_means, due_loads = measured(with_zero(shown(start(pair, place))), pair.due(place))
+    means, loads = predicted(pair, place, lenses)
+    due_means, due_loads = predicted(pair, place, with_zero(shown(start(pair, place))))
     free = np.concatenate([loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2)
     far = [np.abs(part[:, read]).max() > 1e-9 for part in (means - due_means, free)]
     return bool(far[0] or far[1] or lenses.broad.any())
 
 
 def noticeable(pair: PairOrder, eye: str, faults: list[Fault]) -> list[Fault]:
-    """The faults whose code changes something (with one of its variants), as ordered first."""
-    changing = set()
+    """The faults that change something, as ordered first; what does not leaves its share to the other variants."""
+    changing = []
     for fault in faults[1:]:
         lens = fault.make(start(pair, eye))
         if fault.turns:
             lens = turned(lens, np.array([3.0]))
         if differs(pair, eye, with_zero(fault.read(shown(lens)))):
-            changing.add(fault.code)
-    return [fault for fault in faults if fault.code in changing or fault.code == "as-ordered"]
+            changing.append(fault)
+    return [faults[0], *shared_out(changing)]
+
+
+def shared_out(faults: list[AnyFault]) -> list[AnyFault]:
+    """The shares of each code's variants made up to 1."""
+    whole: dict[str, float] = {}
+    for fault in faults:
+        whole[fault.code] = whole.get(fault.code, 0.0) + fault.share
+    return [replace(fault, share=fault.share / whole[fault.code]) for fault in faults]
 
 
 def noticeable_pair(pair: PairOrder, faults: list[PairFault]) -> list[PairFault]:
     """The same for the faults of the pair."""
     lenses = {eye: start(pair, eye) for eye in EYES}
-    changing = set()
+    changing = []
     for fault in faults[1:]:
+        noticed = False
         for place in EYES:
             source = OTHER[place] if fault.crossed else place
             lens = shown(fault.made_as[place](lenses[source], lenses[OTHER[source]]))
             lens = not_square(lens, np.array([3.0])) if fault.turns else fault.read[place](lens)
-            if fault.zero_variance or differs(pair, place, with_zero(lens)):
-                changing.add(fault.code)
-    return [fault for fault in faults if fault.code in changing or fault.code == "as-ordered"]
+            noticed = noticed or bool(fault.zero_variance) or differs(pair, place, with_zero(lens))
+        if noticed:
+            changing.append(fault)
+    return [faults[0], *shared_out(changing)]
 
 
 # --- laid out -------------------------------------------------------------------------------------------------------------

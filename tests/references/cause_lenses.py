@@ -186,13 +186,12 @@ def cylinder_parts(power: Floats) -> Floats:
     return np.stack([(power[..., 1, 1] - power[..., 0, 0]) / 2, power[..., 0, 1]], -1)
 
 
-def measured(lenses: Lenses, due: Floats) -> tuple[Floats, Floats]:
+def measured(lenses: Lenses, due: Floats, to_mm: Floats) -> tuple[Floats, Floats]:
     """Means (N × measured) and loadings (N × measured × latents) of all that can be read of the lens.
 
-    Place: where the lens shows what is due, r = 10 F⁻¹ (q0 − e).
+    `due`: Δ at the ordered point; `to_mm`: see `slid_by`. Place: where the lens shows what is due.
     """
     means, loads = np.zeros((len(lenses), MEASURED)), np.zeros((len(lenses), MEASURED, LATENTS))
-    to_mm = 10 * inverse(lenses.power)
     means[:, PRISM], loads[:, PRISM] = lenses.read, lenses.read_load
     means[:, MEAN] = np.trace(lenses.seen, axis1=1, axis2=2) / 2 + lenses.mean_shift
     loads[:, MEAN, POWER] = 1
@@ -206,8 +205,14 @@ def measured(lenses: Lenses, due: Floats) -> tuple[Floats, Floats]:
 WEAKEST_D = 0.5
 
 
-def inverse(power: Floats) -> Floats:
-    """F⁻¹; where a principal power is weaker than WEAKEST_D (no place is read there) nothing."""
+def slid_by(power: Floats, both: bool) -> Floats:
+    """Matrices from a missing prism (Δ) to the way to where it is found (mm): r = 10 F⁻¹ Δp, slid both ways; or slid up and
+    down only, until the vertical part is right: r = 10 Δp / Fyy. Nothing where that power is weaker than WEAKEST_D."""
+    if not both:
+        weak = np.abs(power[:, 1, 1]) < WEAKEST_D
+        found = np.zeros_like(power)
+        found[:, 1, 1] = np.where(weak, 0.0, 10 / np.where(weak, 1.0, power[:, 1, 1]))
+        return found
     weak = np.abs(np.linalg.eigvalsh(power)).min(-1) < WEAKEST_D
     inverted: Floats = np.linalg.inv(np.where(weak[:, None, None], np.eye(2), power))
-    return np.where(weak[:, None, None], 0.0, inverted)
+    return np.where(weak[:, None, None], 0.0, 10 * inverted)

@@ -14,15 +14,16 @@ from dataclasses import dataclass
 import numpy as np
 
 from tests.references.cause_faults import NOISE
-from tests.references.cause_hypotheses import Hypotheses, Places, Rows, contexts_of, read_at_places, rows_of, what_is_read
+from tests.references.cause_hypotheses import Hypotheses, Places, Rows, contexts_of, predicted, read_at_places, rows_of, what_is_read
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, THINNING, WEAKEST_D, ZERO, Floats, Lenses, cylinder_parts, inverse, measured,
+    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, THINNING, ZERO, Floats, Lenses, cylinder_parts, slid_by,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault
 
-Entry = tuple[str, tuple[str, ...]]  # a cause and the eyes it concerns
-AS_ORDERED: Entry = ("as-ordered", EYES)
+Member = tuple[str, tuple[str, ...]]  # one cause and the eyes it concerns
+Entry = tuple[Member, ...]  # a joint hypothesis: what is wrong
+AS_ORDERED: Entry = (("as-ordered", EYES),)
 
 
 # --- noise ----------------------------------------------------------------------------------------------------------------
@@ -41,14 +42,14 @@ def noise_of(pair: PairOrder, lenses: Lenses) -> Floats:
     power = NOISE["laboratory_power_d"] ** 2 + pair.bench.power_d**2
     turn = np.deg2rad(NOISE["laboratory_axis_deg"]) ** 2 + np.deg2rad(pair.bench.axis_deg) ** 2
     noise = np.zeros((len(lenses), MEASURED, MEASURED))
-    to_mm, both = 10 * inverse(lenses.power), np.eye(2)
+    to_mm, both = slid_by(lenses.power, pair.plan.distances), np.eye(2)
     noise[:, PRISM, PRISM] = (laboratory + reading) * both
     noise[:, MEAN, MEAN] = power / 2
     cylinder = cylinder_parts(lenses.seen)
     across = cylinder[:, ::-1] * [-2.0, 2.0]  # a turn by δ moves the cylinder's parts by 2 δ across themselves
     noise[:, CYLINDER, CYLINDER] = power / 2 * both + turn * across[:, :, None] * across[:, None, :]
     noise[:, ADD, ADD] = power
-    unplaced = np.abs(np.linalg.eigvalsh(lenses.power)).min(-1) < WEAKEST_D
+    unplaced = ~to_mm.any((1, 2))
     noise[:, PLACE, PLACE] = (laboratory + settling) * to_mm @ np.swapaxes(to_mm, 1, 2)
     noise[:, PLACE, PLACE] += (pair.bench.position_mm**2 + 900 * unplaced)[:, None, None] * both
     noise[:, PLACE, PRISM] = laboratory * to_mm
@@ -74,7 +75,7 @@ class Evidence:
 def evidence_of(pair: PairOrder, place: str, rows: Rows, data: Floats) -> Evidence:
     """The likelihood of one lens's readings under each row, its own latent values integrated out."""
     read = what_is_read(pair)
-    means, loads = measured(rows.lenses, pair.due(place))
+    means, loads = predicted(pair, place, rows.lenses)
     noise = noise_of(pair, rows.lenses)
     means, loads, noise = means[:, read], loads[:, read], noise[:, read][:, :, read]
     own, common = loads[:, :, COMMON:], loads[:, :, :COMMON]
@@ -116,7 +117,7 @@ def joint(right: Evidence, left: Evidence, i: Places, j: Places, variance: Float
 
 @dataclass(frozen=True)
 class Posterior:
-    """What the simulator holds of a job's readings. `likelihood`: ln p(readings | the entry alone)."""
+    """What the simulator holds of a job's readings. `likelihood`: ln p(readings | entry)."""
 
     entries: dict[Entry, float]
     likelihood: dict[Entry, float]
@@ -124,7 +125,8 @@ class Posterior:
     def group(self, entry: Entry) -> frozenset[Entry]:
         """All entries that predict the same as this one: equal likelihoods of readings that are as good as continuous."""
         own = self.likelihood[entry]
-        return frozenset(other for other, value in self.likelihood.items() if abs(value - own) < 1e-7 * max(1.0, abs(own)))
+        within = 1e-7 * max(1.0, abs(own))
+        return frozenset(other for other, value in self.likelihood.items() if other == entry or abs(value - own) < within)
 
 
 def posterior(pair: PairOrder, hypotheses: Hypotheses, data: dict[str, Floats]) -> Posterior:
@@ -143,7 +145,7 @@ def posterior(pair: PairOrder, hypotheses: Hypotheses, data: dict[str, Floats]) 
     return gathered(parts)
 
 
-Part = tuple[tuple[Entry, ...], float, float]  # the faults in it, ln prior, ln likelihood
+Part = tuple[Entry, float, float]  # with ln prior, ln likelihood
 
 
 def lens_by_lens(pair: PairOrder, hypotheses: Hypotheses, rows: dict[str, Rows], evidence: dict[str, Evidence]) -> list[Part]:
@@ -165,15 +167,14 @@ def lens_by_lens(pair: PairOrder, hypotheses: Hypotheses, rows: dict[str, Rows],
     for a, right_code in enumerate(names["right"]):
         for b, left_code in enumerate(names["left"]):
             before = math.log(none * prior["right"][right_code] * prior["left"][left_code])
-            parts.append((entries_of("as-ordered", right_code, left_code), before, log_of(blocks[a, b]) + peak))
+            parts.append((entry_of("as-ordered", right_code, left_code), before, log_of(blocks[a, b]) + peak))
     alone = prior["right"]["as-ordered"] * prior["left"]["as-ordered"]
     for code in prior["shared"].keys() - {fault.code for fault in hypotheses.pair}:
         a, b = names["right"].index(code), names["left"].index(code)
-        variants = [fault for fault in hypotheses.lens["right"] if fault.code == code]
-        found = blocks[a, b]
-        if len(variants) > 1:  # the same variant in both lenses, its share counted once
+        pairs, found = hypotheses.same_variant(code), blocks[a, b]
+        if len(pairs) > 1:  # the same variant in both lenses, its share counted once
             rows_a, rows_b = np.flatnonzero(member["right"][a]), np.flatnonzero(member["left"][b])
-            found = (shares[rows_a, rows_b] * np.exp(weight["right"][rows_a])).sum()
+            found = sum(shares[rows_a[i_], rows_b[j_]] * share for i_, j_, share in pairs)
         parts.append((((code, EYES),), math.log(prior["shared"][code] * alone), log_of(found) + peak))
     return parts
 
@@ -209,16 +210,16 @@ def within_pair_fault(
             place, code = label.split()
             own[at[place]] = code
         before = prior["shared"][fault.code] * prior["right"][own["right"]] * prior["left"][own["left"]]
-        parts.append((entries_of(fault.code, own["right"], own["left"]), math.log(before), float(np.logaddexp.reduce(found))))
+        parts.append((entry_of(fault.code, own["right"], own["left"]), math.log(before), float(np.logaddexp.reduce(found))))
     return parts
 
 
-def entries_of(shared: str, right: str, left: str) -> tuple[Entry, ...]:
-    """The entries that a joint hypothesis consists of."""
+def entry_of(shared: str, right: str, left: str) -> Entry:
+    """The entry of a joint hypothesis; the same cause in both lenses is one that concerns both."""
     if shared == "as-ordered" and right == left:
         return ((right, EYES),)
-    parts = ((shared, EYES), (right, ("right",)), (left, ("left",)))
-    return tuple(part for part in parts if part[0] != "as-ordered")
+    members = ((shared, EYES), (right, ("right",)), (left, ("left",)))
+    return tuple(sorted(member for member in members if member[0] != "as-ordered"))
 
 
 def log_of(value: float) -> float:
@@ -227,18 +228,15 @@ def log_of(value: float) -> float:
 
 
 def gathered(parts: list[Part]) -> Posterior:
-    """The posterior by entry; two faults at once count half for each."""
+    """The posterior by entry."""
     peak = max(before + found for _, before, found in parts)
-    total: dict[Entry, float] = {}
-    likelihood: dict[Entry, list[tuple[float, float]]] = {}
-    for entries, before, found in parts:
-        for entry in entries:
-            total[entry] = total.get(entry, 0.0) + math.exp(before + found - peak) / len(entries)
-        if len(entries) == 1:
-            likelihood.setdefault(entries[0], []).append((before, found))
+    by_entry: dict[Entry, list[tuple[float, float]]] = {}
+    for entry, before, found in parts:
+        by_entry.setdefault(entry, []).append((before, found))
+    total, likelihood = {}, {}
+    for entry, its in by_entry.items():
+        total[entry] = sum(math.exp(before + found - peak) for before, found in its)
+        befores, founds = np.array(its).T
+        likelihood[entry] = float(np.logaddexp.reduce(founds + befores) - np.logaddexp.reduce(befores))
     whole = sum(total.values())
-    alone = {}
-    for entry, found_parts in likelihood.items():
-        befores, founds = np.array(found_parts).T
-        alone[entry] = float(np.logaddexp.reduce(founds + befores) - np.logaddexp.reduce(befores))
-    return Posterior({entry: value / whole for entry, value in total.items()}, alone)
+    return Posterior({entry: value / whole for entry, value in total.items()}, likelihood)

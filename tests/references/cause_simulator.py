@@ -15,14 +15,14 @@ import numpy as np
 
 from tests.references import bench_reference as bench
 from tests.references.cause_faults import CAUSES, NOISE, Fault, parameter
-from tests.references.cause_hypotheses import OTHER, Hypotheses, hypotheses_of, start
+from tests.references.cause_hypotheses import OTHER, Hypotheses, hypotheses_of, predicted, start
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, LATENTS, MEAN, MEASURED, PLACE, PRISM, Floats, Lenses, cylinder_parts, inverse, measured, not_square, shown,
+    ADD, COMMON, CYLINDER, LATENTS, MEAN, MEASURED, PLACE, PRISM, Floats, Lenses, cylinder_parts, not_square, shown, slid_by,
     turned, with_zero,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, Job, LensOrder, PairOrder, Rng, document, draw_pair, signed
 from tests.references.cause_pair_faults import PairFault
-from tests.references.cause_posterior import AS_ORDERED, Entry, common_variance, entries_of, prism_variances
+from tests.references.cause_posterior import AS_ORDERED, Entry, common_variance, entry_of, prism_variances
 
 POWER_STEP = {"manual": 0.125, "automatic": 0.01}
 
@@ -37,9 +37,9 @@ class Truth:
     both: bool = False
 
     @property
-    def entries(self) -> tuple[Entry, ...]:
-        """The entries it counts for."""
-        return ((self.right, EYES),) if self.both else entries_of(self.shared, self.right, self.left)
+    def entry(self) -> Entry:
+        """The same as an entry."""
+        return ((self.right, EYES),) if self.both else entry_of(self.shared, self.right, self.left)
 
 
 @dataclass(frozen=True)
@@ -79,15 +79,15 @@ def draw_code(rng: Rng, prior: dict[str, float]) -> str:
 
 
 def entries_allowed(hypotheses: Hypotheses) -> dict[Entry, Truth]:
-    """Every single cause of this job."""
+    """Every single cause that this job allows."""
     none = "as-ordered"
     found = {AS_ORDERED: Truth(none, none, none)}
     for code in hypotheses.prior["shared"]:
-        found[code, EYES] = truth_of(hypotheses, code, none, none)
+        found[((code, EYES),)] = truth_of(hypotheses, code, none, none)
     for eye in EYES:
         for code in hypotheses.prior[eye].keys() - {none}:
             if CAUSES[code][eye] or code == "table-moved":
-                found[code, (eye,)] = Truth(none, *((code, none) if eye == "right" else (none, code)))
+                found[((code, (eye,)),)] = Truth(none, *((code, none) if eye == "right" else (none, code)))
     return found
 
 
@@ -122,8 +122,10 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
     shared = draw_variant(rng, hypotheses.pair, truth.shared)
     own = {eye: draw_variant(rng, hypotheses.lens[eye], getattr(truth, eye)) for eye in EYES}
     if truth.both:
-        which = [fault for fault in hypotheses.lens["right"] if fault.code == truth.right].index(own["right"])
-        own["left"] = [fault for fault in hypotheses.lens["left"] if fault.code == truth.left][which]
+        variants = [[fault for fault in hypotheses.lens[eye] if fault.code == truth.right] for eye in EYES]
+        pairs = hypotheses.same_variant(truth.right)
+        right, left, _ = pairs[int(rng.choice(len(pairs), p=[share for _, _, share in pairs]))]
+        own = {"right": variants[0][right], "left": variants[1][left]}
     table_turn = draw_turn(rng, shared.code) if shared.turns else np.zeros(1)
     common = rng.normal(0, np.sqrt(common_variance(pair, shared)))
     data, readings = {}, {}
@@ -139,7 +141,7 @@ def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Float
     latents = np.concatenate([common, rng.normal(0, np.sqrt(lenses.own_variance[0]))])
     assert len(latents) == LATENTS
     assert len(common) == COMMON
-    means, loads = measured(lenses, pair.due(eye))
+    means, loads = predicted(pair, eye, lenses)
     true = means[0] + loads[0] @ latents
     broad = lenses.broad[0]
     true[:6] += rng.normal(0, np.sqrt(broad[:6]))
@@ -154,7 +156,7 @@ def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Float
             values[ADD] = round_to(max(true[ADD] + rng.normal(0, scatter), 0.0), POWER_STEP[pair.bench.kind])
             typed["add"] = f"{values[ADD]:.3f}"
     settled = made_so + rng.normal(0, math.sqrt(settling), 2) + rng.normal(0, 1, 2) * np.sqrt(broad[PLACE])
-    place = true[PLACE] + 10 * inverse(lenses.power)[0] @ settled + rng.normal(0, pair.bench.position_mm, 2)
+    place = true[PLACE] + slid_by(lenses.power, pair.plan.distances)[0] @ settled + rng.normal(0, pair.bench.position_mm, 2)
     values[PLACE] = read_place(pair, pair.lens(eye), place, typed)
     return values, typed
 
@@ -243,9 +245,9 @@ def draw_with(rng: Rng, code: str) -> Case:
     while True:
         pair = draw_pair(rng)
         hypotheses = hypotheses_of(pair)
-        allowed = {entry: truth for entry, truth in entries_allowed(hypotheses).items() if entry[0] == code}
+        allowed = {entry: truth for entry, truth in entries_allowed(hypotheses).items() if entry[0][0] == code}
         if allowed:
-            shares = [CAUSES[code]["both" if len(eyes) == 2 else eyes[0]] if code in CAUSES else 1.0 for _, eyes in allowed]
+            shares = [CAUSES[code]["both" if len(eyes) == 2 else eyes[0]] if code in CAUSES else 1.0 for ((_, eyes),) in allowed]
             truths = list(allowed.values())
             return simulate(rng, pair, hypotheses, truths[int(rng.choice(len(truths), p=np.array(shares) / sum(shares)))])
 

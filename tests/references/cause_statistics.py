@@ -16,9 +16,10 @@ import numpy as np
 from pycore.api import handle
 from tests.references.cause_orders import EYES, draw_pair
 from tests.references.cause_hypotheses import hypotheses_of
-from tests.references.cause_posterior import AS_ORDERED, Entry, Posterior, posterior
+from tests.references.cause_posterior import AS_ORDERED, Entry, Member, Posterior, posterior
 from tests.references.cause_simulator import Case, draw_truth, draw_with, simulate
 
+ALL_OTHERS: Entry = (("all-others", EYES),)
 BINS = np.array([0.0, 0.02, 0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.95, 0.98, 1.0])
 
 
@@ -27,23 +28,22 @@ class Judged:
     """One job: its weight, what went wrong, the simulator's own posterior, the list that is tested."""
 
     weight: float
-    truth: tuple[Entry, ...]
+    truth: Entry
     own: Posterior
     tested: dict[Entry, float]
 
-    def share(self, group: frozenset[Entry]) -> float:
-        """How much of what went wrong the group holds."""
-        return sum(entry in group for entry in self.truth) / len(self.truth)
-
     def groups(self) -> list[tuple[float, frozenset[Entry]]]:
-        """The tested list by the simulator's groups of equal predictions, likeliest first; what it has beyond them singly."""
+        """The tested list by the simulator's groups of equal predictions, likeliest first."""
         left, found = dict(self.tested), []
-        for entry in self.own.likelihood:
-            if not any(entry in group for _, group in found):
-                group = self.own.group(entry)
-                found.append((sum(left.pop(member, 0.0) for member in group), group))
-        found += [(value, frozenset([entry])) for entry, value in left.items()]
+        while left:
+            entry = next(iter(left))
+            group = self.own.group(entry) if entry in self.own.likelihood else frozenset([entry])
+            found.append((sum(left.pop(member, 0.0) for member in group), group))
         return sorted(found, key=lambda item: -item[0])
+
+    def holds(self, group: frozenset[Entry]) -> bool:
+        """Tell whether a group of the tested list holds what went wrong; the rest of the list holds what is not in it."""
+        return self.truth in group or (group == {ALL_OTHERS} and self.truth not in self.tested)
 
 
 # --- the program's list ---------------------------------------------------------------------------------------------------
@@ -55,15 +55,16 @@ def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
     report = json.loads(handle(json.dumps(request)))
     found: dict[Entry, float] = {}
     for entry in report["causes"]:
-        key = entry["code"], named(entry["code"], entry["eyes"])
+        key = tuple(sorted(member_of(part) for part in (entry, *entry.get("with", []))))
         assert key not in found, key
         found[key] = entry["probability"]
     return found
 
 
-def named(code: str, eyes: list[str]) -> tuple[str, ...]:
-    """The eyes of an entry in our order; as ordered concerns both."""
-    return EYES if code == "as-ordered" else tuple(eye for eye in EYES if eye in eyes)
+def member_of(part: dict[str, Any]) -> Member:
+    """One cause of an entry with its eyes, right first; what is no cause concerns both."""
+    both = part["code"] in ("as-ordered", "all-others")
+    return part["code"], EYES if both else tuple(eye for eye in EYES if eye in part["eyes"])
 
 
 # --- jobs -----------------------------------------------------------------------------------------------------------------
@@ -72,7 +73,7 @@ def named(code: str, eyes: list[str]) -> tuple[str, ...]:
 def judge(case: Case, weight: float, *, program: bool) -> Judged:
     """One job judged by the simulator and by the program (or by the simulator alone, to prove itself)."""
     own = posterior(case.pair, case.hypotheses, case.data)
-    return Judged(weight, case.truth.entries, own, causes_of(case.job) if program else own.entries)
+    return Judged(weight, case.truth.entry, own, causes_of(case.job) if program else own.entries)
 
 
 def from_priors(count: int, seed: int, *, program: bool) -> list[Judged]:
@@ -84,7 +85,7 @@ def from_priors(count: int, seed: int, *, program: bool) -> list[Judged]:
         good = float(np.prod([prior["as-ordered"] for prior in hypotheses.prior.values()]))
         faulty = number % 2 == 1
         truth = draw_truth(rng, hypotheses, faulty=faulty)
-        while not faulty and truth.entries != (AS_ORDERED,):
+        while not faulty and truth.entry != AS_ORDERED:
             truth = draw_truth(rng, hypotheses)
         judged.append(judge(simulate(rng, pair, hypotheses, truth), 1 - good if faulty else good, program=program))
     return judged
@@ -114,7 +115,7 @@ def reliability(judged: list[Judged], *, top_only: bool) -> Reliability:
         groups = job.groups()
         for value, group in groups[:1] if top_only else groups:
             told.append(value)
-            true.append(job.share(group))
+            true.append(job.holds(group))
             weight.append(job.weight)
     return curve(np.array(told), np.array(true), np.array(weight))
 
@@ -142,22 +143,21 @@ class Ranks:
 
 
 def ranks(judged: list[Judged], sure: float = 0.9) -> Ranks:
-    """Rank of the injected group in the tested list, for jobs with a single cause."""
+    """Rank of the injected group in the tested list."""
     places = []
     for job in judged:
-        if len(job.truth) > 1 or job.truth[0] not in job.own.likelihood:
-            continue
-        group = job.own.group(job.truth[0])
-        if sum(job.own.entries.get(entry, 0.0) for entry in group) >= sure:
-            places.append([group for _, group in job.groups()].index(group))
+        group = job.own.group(job.truth)
+        if sum(job.own.entries[entry] for entry in group) >= sure:
+            ranked = [job.truth in tested for _, tested in job.groups()]
+            places.append(ranked.index(True) if any(ranked) else len(ranked))
     found = np.array(places)
     return Ranks(len(found), float((found == 0).mean()), float((found < 3).mean()))
 
 
 def falsely_accused(judged: list[Judged]) -> float:
     """Share of correct pairs for which some cause stands above one half."""
-    good = [job for job in judged if job.truth == (AS_ORDERED,)]
-    return sum(any(value > 0.5 for entry, value in job.tested.items() if entry[0] != "as-ordered") for job in good) / len(good)
+    good = [job for job in judged if job.truth == AS_ORDERED]
+    return sum(any(value > 0.5 for entry, value in job.tested.items() if entry not in (AS_ORDERED, ALL_OTHERS)) for job in good) / len(good)
 
 
 def confusion(judged: list[Judged]) -> dict[str, dict[str, float]]:
@@ -168,6 +168,7 @@ def confusion(judged: list[Judged]) -> dict[str, dict[str, float]]:
         injected = " + ".join(code for code, _ in job.truth)
         row = table.setdefault(injected, {})
         count[injected] = count.get(injected, 0) + 1
-        for (code, _), value in job.tested.items():
-            row[code] = row.get(code, 0.0) + value
+        for entry, value in job.tested.items():
+            stated = " + ".join(code for code, _ in entry)
+            row[stated] = row.get(stated, 0.0) + value
     return {code: {stated: value / count[code] for stated, value in row.items()} for code, row in table.items()}
