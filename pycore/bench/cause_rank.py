@@ -38,10 +38,18 @@ class Ranked:
 
 @dataclass(frozen=True, slots=True)
 class Group:
-    """Causes that predict the same for this job: only priors and looks speak between them."""
+    """Causes that predict the same for this job: only priors and looks speak between them.
+
+    `shares` are the parts of the group's probability that its causes have.
+    """
 
     labels: tuple[Label, ...]
-    probability: float
+    shares: tuple[float, ...]
+
+    @property
+    def probability(self) -> float:
+        """The probability of the whole group."""
+        return sum(self.shares)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -108,12 +116,12 @@ def _groups(bench: Bench, stories: Sequence[Story]) -> list[Group]:
     groups = []
     for shares in keyed.values():
         if len(shares) > 1:
-            labels = sorted(shares, key=lambda label: -shares[label])
-            groups.append(Group(tuple(labels), sum(shares.values())))
+            items = sorted(shares.items(), key=lambda item: -item[1])
+            groups.append(Group(*map(tuple, zip(*items, strict=True))))
         else:
             for label, share in shares.items():
                 alone[label] = alone.get(label, 0.0) + share
-    return groups + [Group((label,), share) for label, share in alone.items()]
+    return groups + [Group((label,), (share,)) for label, share in alone.items()]
 
 
 def _ties(groups: Sequence[Group], told: Mapping[Label, Sequence[Story]]) -> dict[Label, tuple[Label, ...]]:

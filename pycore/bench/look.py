@@ -13,6 +13,7 @@ from dataclasses import dataclass
 from functools import cache
 
 from pycore.bench.cause import Story
+from pycore.bench.cause_rank import Label, label_of
 from pycore.bench.cause_table import AS_ORDERED
 from pycore.data import package_text
 from pycore.job.looks import OF_THE_PAIR, Look
@@ -60,28 +61,32 @@ def look_tables() -> Mapping[str, LookTable]:
     }
 
 
-def codes_of(story: Story, eye: Eye | None) -> tuple[str, ...]:
-    """The causes at work in one lens (or in the pair, `eye` None) by a hypothesis."""
-    codes = [own.code for each, own in story.own.items() if eye in (None, each)]
-    codes.append(story.common.code)
-    return tuple(dict.fromkeys(code for code in codes if code != AS_ORDERED))
+def codes_of(label: Label, eye: Eye | None) -> tuple[str, ...]:
+    """The causes at work in one lens (in the pair: `eye` None); none for as ordered."""
+    return tuple(
+        [
+            named.code
+            for named in label
+            if named.code != AS_ORDERED and (eye is None or eye in named.eyes)
+        ]
+    )
 
 
 def looked(stories: Sequence[Story], looks: Sequence[Look]) -> list[Story]:
     """The hypotheses after the results of further looks, the most probable first.
 
-    Arguments: `stories` with probabilities; `looks` taken. Bayes' theorem.
+    Arguments: `stories` with probabilities; `looks` taken. Source: Bayes' theorem.
     """
     if not looks:
         return list(stories)
     tables = look_tables()
     shares = []
     for story in stories:
-        share = story.probability
+        share, label = story.probability, label_of(story)
         for look in looks:
             table = tables[look.look]
             eye = None if look.look in OF_THE_PAIR else look.eye
-            share *= table.row(codes_of(story, eye))[table.results.index(look.result)]
+            share *= table.row(codes_of(label, eye))[table.results.index(look.result)]
         shares.append(share)
     whole = sum(shares)
     after = [

@@ -22,7 +22,7 @@ LOOKS: Mapping[str, tuple[str, ...]] = {
     "meter-key": ("right", "wrong"),
     "compensator-scale": ("as-entered", "opposite"),
 }
-OF_THE_PAIR = ("lens-out", "engraving", "meter-key", "compensator-scale")
+OF_THE_PAIR = ("lens-out", "order-slip", "engraving", "meter-key", "compensator-scale")
 
 
 @dataclass(frozen=True, slots=True)

@@ -39,6 +39,16 @@ def cause_text(label: Label) -> str:
     return text
 
 
+def named_entry(label: Label) -> Entry:
+    """A cause, with a second that came along, as the report writes it. Arguments: `label`."""
+    first, *others = label
+    return {
+        "code": first.code,
+        "eyes": list(first.eyes),
+        "with": [{"code": other.code, "eyes": list(other.eyes)} for other in others],
+    }
+
+
 def size_entry(size: Size) -> Entry:
     """How large a cause was, as the report writes it. Arguments: `size`."""
     entry: Entry = {"kind": size.kind}

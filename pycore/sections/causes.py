@@ -7,19 +7,26 @@ of the count of readings; null where not worked out), `estimate` (null or {`kind
 or {`look`, `eye`, `expect`: [{`result`, `probability_this`, `probability_other`}]}), `sentence`,
 `shown`}, the greatest probability first; what is left of 1 is one entry `all-others`. Further
 `cause_places` [{`place`, `probability`, `shown`}], `cause_groups` [{`members`, `probability`,
-`shown`}] (a member is the list of causes it consists of) and `cause_priors`.
+`shown`}] (as they stand in `causes`) and `cause_priors`.
 """
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterator, Mapping, Sequence
 
 from pycore.bench.cause_estimate import estimate, size_of
-from pycore.bench.cause_rank import Label, Named, Ranked, Ranking
+from pycore.bench.cause_rank import Ranked, Ranking
 from pycore.bench.cause_table import AS_ORDERED, NONE_OF_THESE
 from pycore.bench.cause_weighing import Weighing, weighing_of
+from pycore.bench.look_worth import Offer, offers, tell_apart
 from pycore.case import Case
 from pycore.names import Entry
 from pycore.sections.answer import Ask, Row, SectionAnswer
-from pycore.sections.cause_texts import cause_text, eyes_code, percent, size_entry
+from pycore.sections.cause_texts import (
+    cause_text,
+    eyes_code,
+    named_entry,
+    percent,
+    size_entry,
+)
 from pycore.words import say
 
 LEAST_ALONE, LEAST_TOGETHER = 1e-4, 5e-3  # below, a cause is counted among all others
@@ -33,7 +40,7 @@ def causes_section(case: Case) -> SectionAnswer:
         fields = tuple(Ask(field=f"readings.{eye}.prism") for eye in case.dues)
         return SectionAnswer(title="nothing-read", own=[], asks=fields)
     ranking = weighing.ranking
-    entries = list(_entries(weighing))
+    entries = list(_entries(weighing, offers(case.job, weighing.bench)))
     title, params = _title(ranking)
     return SectionAnswer(
         title=title,
@@ -46,7 +53,7 @@ def causes_section(case: Case) -> SectionAnswer:
             ],
             "cause_groups": [
                 {
-                    "members": [[_named(one) for one in label] for label in group.labels],
+                    "members": [named_entry(label) for label in group.labels],
                     "probability": group.probability,
                     "shown": percent(group.probability),
                 }
@@ -73,12 +80,12 @@ def _title(ranking: Ranking) -> tuple[str, Mapping[str, str]]:
     return "likely", {"cause": cause_text(first.label), "probability": percent(first.probability)}
 
 
-def _entries(weighing: Weighing) -> Iterator[Entry]:
+def _entries(weighing: Weighing, offered: Sequence[Offer]) -> Iterator[Entry]:
     """The causes worth a line, then all others together."""
     ranking = weighing.ranking
     shown = [one for one in ranking.causes if _is_worth(one)]
     for one in shown:
-        yield _entry(weighing, one, ranking)
+        yield _entry(weighing, one, offered)
     rest = 1.0 - sum([one.probability for one in shown])
     if rest > 0.0:
         yield {
@@ -102,28 +109,41 @@ def _is_worth(one: Ranked) -> bool:
     return one.probability >= (LEAST_ALONE if len(one.label) == 1 else LEAST_TOGETHER)
 
 
-def _entry(weighing: Weighing, one: Ranked, ranking: Ranking) -> Entry:
+def _entry(weighing: Weighing, one: Ranked, offered: Sequence[Offer]) -> Entry:
     first, *others = one.label
     table = weighing.bench.table
     sized = one.probability >= SIZED and one.stories
     size = size_of(weighing.bench, first.code, one.stories) if sized and not others else None
     place = AS_ORDERED if first.code == AS_ORDERED else table.causes[first.code].place
     return {
-        **_named(first),
-        "with": [_named(other) for other in others],
+        **named_entry(one.label),
         "probability": one.probability,
         "residual": estimate(weighing.bench, one.stories[0]).residual if sized else None,
         "estimate": size_entry(size) if size else None,
-        "tied_with": [[_named(part) for part in label] for label in one.tied_with],
+        "tied_with": [named_entry(label) for label in one.tied_with],
         "place": place,
-        "tell_apart": None,
+        "tell_apart": _tell_apart(one, weighing.ranking, offered) if sized else None,
         "sentence": {"code": first.code, "params": {"eye": say(f"eyes.{eyes_code(first)}")}},
         "shown": {"probability": percent(one.probability), "text": cause_text(one.label)},
     }
 
 
-def _named(one: Named) -> Entry:
-    return {"code": one.code, "eyes": list(one.eyes)}
+def _tell_apart(one: Ranked, ranking: Ranking, offered: Sequence[Offer]) -> Entry | None:
+    """The look that tells a cause from the most probable other one."""
+    other = next(each for each in ranking.causes if each.label != one.label)
+    offer = tell_apart(one.label, other.label, offered)
+    if offer is None:
+        return None
+    rows = zip(offer.table.results, offer.row(one.label), offer.row(other.label), strict=True)
+    return {
+        "look": offer.table.code,
+        "eye": offer.eye,
+        "other": named_entry(other.label),
+        "expect": [
+            {"result": result, "probability_this": this, "probability_other": that}
+            for result, this, that in rows
+        ],
+    }
 
 
 def _rows(ranking: Ranking) -> Iterator[Row]:
