@@ -78,11 +78,16 @@ def share_of(code: str, eye: str, codes: dict[str, set[str]]) -> float:
     return float(entry[eye])
 
 
-def differs(pair: PairOrder, place: str, lenses: Lenses) -> bool:
-    """Tell whether any of what is read of a lens would differ from what is due."""
+def as_due(pair: PairOrder, place: str) -> tuple[Floats, Floats]:
+    """What is predicted where nothing is wrong."""
+    return predicted(pair, place, with_zero(shown(start(pair, place))))
+
+
+def differs(pair: PairOrder, place: str, lenses: Lenses, due: tuple[Floats, Floats]) -> bool:
+    """Tell whether any of what is read of a lens would differ from what is due (see `as_due`)."""
     read = what_is_read(pair)
     means, loads = predicted(pair, place, lenses)
-    due_means, due_loads = predicted(pair, place, with_zero(shown(start(pair, place))))
+    due_means, due_loads = due
     free = np.concatenate([loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2)
     far = [np.abs(part[:, read]).max() > 1e-9 for part in (means - due_means, free)]
     return bool(far[0] or far[1] or lenses.broad.any())
@@ -90,12 +95,12 @@ def differs(pair: PairOrder, place: str, lenses: Lenses) -> bool:
 
 def noticeable(pair: PairOrder, eye: str, faults: list[Fault]) -> list[Fault]:
     """The faults that change something, as ordered first; what does not leaves its share to the other variants."""
-    changing = []
+    changing, ordered, due = [], start(pair, eye), as_due(pair, eye)
     for fault in faults[1:]:
-        lens = fault.make(start(pair, eye))
+        lens = fault.make(ordered)
         if fault.turns:
             lens = turned(lens, np.array([3.0]))
-        if differs(pair, eye, with_zero(fault.read(shown(lens)))):
+        if differs(pair, eye, with_zero(fault.read(shown(lens))), due):
             changing.append(fault)
     return [faults[0], *shared_out(changing)]
 
@@ -110,7 +115,7 @@ def shared_out(faults: list[AnyFault]) -> list[AnyFault]:
 
 def noticeable_pair(pair: PairOrder, faults: list[PairFault]) -> list[PairFault]:
     """The same for the faults of the pair."""
-    lenses = {eye: start(pair, eye) for eye in EYES}
+    lenses, due = {eye: start(pair, eye) for eye in EYES}, {eye: as_due(pair, eye) for eye in EYES}
     changing = []
     for fault in faults[1:]:
         noticed = False
@@ -118,7 +123,7 @@ def noticeable_pair(pair: PairOrder, faults: list[PairFault]) -> list[PairFault]
             source = OTHER[place] if fault.crossed else place
             lens = shown(fault.made_as[place](lenses[source], lenses[OTHER[source]]))
             lens = not_square(lens, np.array([3.0])) if fault.turns else fault.read[place](lens)
-            noticed = noticed or bool(fault.zero_variance) or differs(pair, place, with_zero(lens))
+            noticed = noticed or bool(fault.zero_variance) or differs(pair, place, with_zero(lens), due[place])
         if noticed:
             changing.append(fault)
     return [faults[0], *shared_out(changing)]

@@ -8,20 +8,20 @@ drum's step; that of a prism is not (the table adds step²/12).
 from __future__ import annotations
 
 import math
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
 
 from tests.references import bench_reference as bench
-from tests.references.cause_faults import CAUSES, NOISE, Fault, parameter
+from tests.references.cause_faults import CAUSES, NOISE, Fault, lens_faults, parameter
 from tests.references.cause_hypotheses import OTHER, Hypotheses, hypotheses_of, predicted, start
 from tests.references.cause_lenses import (
     ADD, COMMON, CYLINDER, LATENTS, MEAN, MEASURED, PLACE, PRISM, Floats, Lenses, cylinder_parts, not_square, shown, slid_by,
     turned, with_zero,
 )  # fmt: skip
-from tests.references.cause_orders import EYES, Job, LensOrder, PairOrder, Rng, document, draw_pair, signed
-from tests.references.cause_pair_faults import PairFault
+from tests.references.cause_orders import EYES, Job, LensOrder, PairOrder, Rng, document, draw_pair
+from tests.references.cause_pair_faults import PairFault, pair_faults
 from tests.references.cause_posterior import AS_ORDERED, Entry, common_variance, entry_of, prism_variances
 
 POWER_STEP = {"manual": 0.125, "automatic": 0.01}
@@ -132,8 +132,22 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
     for eye in EYES:
         lenses = lens_on_table(pair, eye, shared, own, table_turn, rng)
         data[eye], readings[eye] = read_lens(rng, pair, eye, lenses, common)
+    if pair.plan.heights and max(far_off(pair, eye, data[eye]) for eye in EYES) > FARTHEST_SLID_MM:
+        pair = replace(pair, plan=replace(pair.plan, heights=False, distances=False))
+        hypotheses = hypotheses_of(pair)
+        readings = {eye: {name: typed for name, typed in its.items() if not name.endswith("_mm")} for eye, its in readings.items()}
     job = document(pair) | {"readings": {"at": "marked-point", **readings}}
     return Case(pair, hypotheses, truth, data, job)
+
+
+FARTHEST_SLID_MM = 10.0
+
+
+def far_off(pair: PairOrder, eye: str, values: Floats) -> float:
+    """How far one would have to slide, as the prism read has it; too far and nobody does. (Decided by what was read alone,
+    so that the posterior need not know of it.)"""
+    way = slid_by(pair.lens(eye).power[None], both=True)[0] @ (values[PRISM] - pair.due(eye))
+    return float(np.abs(way).max())
 
 
 def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Floats) -> tuple[Floats, Job]:
@@ -240,16 +254,21 @@ def draw_case(rng: Rng, *, faulty: bool = False) -> Case:
     return simulate(rng, pair, hypotheses, draw_truth(rng, hypotheses, faulty=faulty))
 
 
+def may_happen(pair: PairOrder, code: str) -> bool:
+    """Tell whether a job allows a cause, without asking whether it would be noticed."""
+    of_lens = (fault for eye in EYES for fault in lens_faults(pair, eye))
+    return any(fault.code == code for faults in (of_lens, pair_faults(pair)) for fault in faults)
+
+
 def draw_with(rng: Rng, code: str) -> Case:
     """A job with that cause in it alone: jobs are drawn until one allows it, the eyes then by their shares."""
     while True:
         pair = draw_pair(rng)
+        if not may_happen(pair, code):
+            continue
         hypotheses = hypotheses_of(pair)
         allowed = {entry: truth for entry, truth in entries_allowed(hypotheses).items() if entry[0][0] == code}
         if allowed:
             shares = [CAUSES[code]["both" if len(eyes) == 2 else eyes[0]] if code in CAUSES else 1.0 for ((_, eyes),) in allowed]
             truths = list(allowed.values())
             return simulate(rng, pair, hypotheses, truths[int(rng.choice(len(truths), p=np.array(shares) / sum(shares)))])
-
-
-__all__ = ["Case", "Truth", "draw_case", "draw_with", "entries_allowed", "signed"]

@@ -54,6 +54,7 @@ def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
     request = {"format": "wedgewright.request/1", "do": "report", "job": job, "sections": ["causes"]}
     report = json.loads(handle(json.dumps(request)))
     found: dict[Entry, float] = {}
+    assert "causes" in report, (report, job)
     for entry in report["causes"]:
         key = tuple(sorted(member_of(part) for part in (entry, *entry.get("with", []))))
         assert key not in found, key
@@ -102,10 +103,12 @@ def by_cause(codes: Iterable[str], each: int, seed: int, *, program: bool) -> li
 
 @dataclass(frozen=True)
 class Reliability:
-    """Per bin of the stated probability: weight, mean stated, how often true; the expected calibration error."""
+    """Per bin of the stated probability: weight, mean stated, how often true; the expected calibration error; and what that
+    error would be on average by chance alone, were the statements perfectly calibrated."""
 
     rows: list[tuple[float, float, float]]
     error: float
+    by_chance: float
 
 
 def reliability(judged: list[Judged], *, top_only: bool) -> Reliability:
@@ -123,14 +126,16 @@ def reliability(judged: list[Judged], *, top_only: bool) -> Reliability:
 def curve(told: Any, true: Any, weight: Any) -> Reliability:
     """The reliability curve of weighted statements."""
     place = np.clip(np.digitize(told, BINS) - 1, 0, len(BINS) - 2)
-    rows, error = [], 0.0
+    rows, error, chance = [], 0.0, 0.0
     for number in range(len(BINS) - 1):
         here = place == number
         if weight[here].sum() > 0:
             mean, often = (float(np.average(part[here], weights=weight[here])) for part in (told, true))
             rows.append((float(weight[here].sum() / weight.sum()), mean, often))
             error += rows[-1][0] * abs(mean - often)
-    return Reliability(rows, error)
+            spread = np.sqrt((weight[here] ** 2 * told[here] * (1 - told[here])).sum())
+            chance += float(np.sqrt(2 / np.pi) * spread / weight.sum())  # mean of the absolute value of a normal deviate
+    return Reliability(rows, error, chance)
 
 
 @dataclass(frozen=True)
@@ -160,15 +165,18 @@ def falsely_accused(judged: list[Judged]) -> float:
     return sum(any(value > 0.5 for entry, value in job.tested.items() if entry not in (AS_ORDERED, ALL_OTHERS)) for job in good) / len(good)
 
 
-def confusion(judged: list[Judged]) -> dict[str, dict[str, float]]:
-    """Injected code → mean probability of each stated code."""
-    table: dict[str, dict[str, float]] = {}
-    count: dict[str, int] = {}
+def confusion(judged: list[Judged]) -> dict[str, dict[str, int]]:
+    """Injected cause → what stands first → in how many jobs. A first group that holds the injected cause counts as it."""
+    table: dict[str, dict[str, int]] = {}
     for job in judged:
-        injected = " + ".join(code for code, _ in job.truth)
+        _, first = job.groups()[0]
+        injected = code_of(job.truth)
+        stated = injected if job.holds(first) else code_of(max(first, key=lambda entry: job.tested.get(entry, 0.0)))
         row = table.setdefault(injected, {})
-        count[injected] = count.get(injected, 0) + 1
-        for entry, value in job.tested.items():
-            stated = " + ".join(code for code, _ in entry)
-            row[stated] = row.get(stated, 0.0) + value
-    return {code: {stated: value / count[code] for stated, value in row.items()} for code, row in table.items()}
+        row[stated] = row.get(stated, 0) + 1
+    return table
+
+
+def code_of(entry: Entry) -> str:
+    """The causes of an entry without their eyes."""
+    return " + ".join(code for code, _ in entry)

@@ -1,0 +1,90 @@
+"""The causes against a simulator that knows what went wrong (tests/references/cause_*.py, written apart from the core).
+
+Physics: p(r) = p0 − F r ("A matrix formalism for decentration problems", AJOPO 1976;53:27-33) and the signatures of wrong
+readings of shop practice. The same figures over more jobs: `python -m tests.references.cause_confusion 10000 1`.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+from scipy.stats import multivariate_normal
+
+from tests.references.cause_confusion import CODES, LARGEST_ACCUSED, LARGEST_ERROR, LEAST_AMONG_THREE, LEAST_FIRST, Figures, measure
+from tests.references.cause_faults import NOISE
+from tests.references.cause_posterior import AS_ORDERED, posterior
+from tests.references.cause_simulator import Case, draw_case
+from tests.references.cause_statistics import causes_of
+
+pytestmark = pytest.mark.slow
+COUNT = 1800
+
+
+@pytest.fixture(scope="module")
+def figures() -> Figures:
+    return measure(COUNT, 7)
+
+
+def test_every_cause_was_injected(figures: Figures) -> None:
+    assert {code for job in figures.stratified for code, _ in job.truth} == set(CODES)
+
+
+def test_what_can_be_known_is_named_first(figures: Figures) -> None:
+    """Where the simulator's own posterior holds the injected cause's group for at least 0.9."""
+    assert figures.ranks.sure > COUNT / 5
+    assert figures.ranks.first >= LEAST_FIRST
+    assert figures.ranks.among_three >= LEAST_AMONG_THREE
+
+
+def test_probabilities_are_calibrated(figures: Figures) -> None:
+    assert figures.first.error <= LARGEST_ERROR
+    assert figures.accusing.error <= LARGEST_ERROR + 2 * figures.accusing.by_chance
+
+
+def test_correct_pairs_are_not_accused(figures: Figures) -> None:
+    assert figures.accused <= LARGEST_ACCUSED
+
+
+def test_probabilities_sum_to_one(figures: Figures) -> None:
+    for job in figures.drawn:
+        assert sum(job.tested.values()) == pytest.approx(1, abs=1e-6)
+
+
+# --- the simulator itself ---------------------------------------------------------------------------------------------------
+
+
+def test_the_simulator_is_calibrated_on_its_own_jobs() -> None:
+    """Its exact posterior, put in the program's place, keeps what is promised of the program."""
+    found = measure(600, 11, program=False)
+    assert found.first.error <= LARGEST_ERROR / 2 + 2 * found.first.by_chance
+    assert found.every.error <= 2 * found.every.by_chance + 1e-3
+    assert found.ranks.first == 1
+    assert found.accused <= LARGEST_ACCUSED
+
+
+def test_the_simulators_evidence_is_a_normal_density() -> None:
+    """"As ordered" without zero uncertainty, powers or heights: prism of both lenses, against scipy's density."""
+    rng, checked = np.random.default_rng(3), 0
+    while checked < 5:
+        case: Case = draw_case(rng)
+        plan, meter = case.pair.plan, case.pair.bench
+        if plan.powers or plan.heights or meter.zero or case.pair.thinning_amount is None:
+            continue
+        checked += 1
+        variance = NOISE["laboratory_prism"] ** 2 + meter.prism**2 / plan.times + meter.prism_step**2 / 12
+        read = np.concatenate([case.data[eye][:2] for eye in ("right", "left")])
+        due = np.concatenate([case.pair.due(eye) for eye in ("right", "left")])
+        expected = multivariate_normal(due, variance * np.eye(4)).logpdf(read)
+        found = posterior(case.pair, case.hypotheses, case.data)
+        assert found.likelihood[AS_ORDERED] == pytest.approx(expected, abs=1e-9)
+
+
+def test_program_and_simulator_agree_job_by_job() -> None:
+    """Two ways to the same posterior: half the sum of absolute differences, of jobs of which every other one is faulty."""
+    rng, apart = np.random.default_rng(5), []
+    for number in range(120):
+        case = draw_case(rng, faulty=number % 2 == 0)
+        own, program = posterior(case.pair, case.hypotheses, case.data).entries, causes_of(case.job)
+        apart.append(sum(abs(own.get(entry, 0.0) - program.get(entry, 0.0)) for entry in own.keys() | program.keys()) / 2)
+    assert np.median(apart) < 0.02
+    assert np.quantile(apart, 0.9) < 0.08
