@@ -11,6 +11,7 @@ import os
 import sys
 from concurrent.futures import ProcessPoolExecutor
 from dataclasses import dataclass
+from multiprocessing import get_context
 
 from tests.references.cause_faults import CAUSES
 from tests.references.cause_statistics import (
@@ -74,12 +75,12 @@ def piece(task: tuple[str, int, int, bool]) -> tuple[bool, list[Judged]]:
 
 def measure(count: int, seed: int, *, program: bool = True) -> Figures:
     """Simulate about `count` jobs in all and judge them, in as many processes as there are processors."""
-    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # small matrices: threads only get in one another's way
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # small matrices: threads get in one another's way; read at a process's start
     each = max(1, round(count / 2 / len(CODES)))
     pieces = max(1, round(count / 2 / PIECE))
     tasks = [("", PIECE, 1000 * seed + number, program) for number in range(pieces)]
     tasks += [(code, each, 1000 * seed + pieces + number, program) for number, code in enumerate(CODES)]
-    with ProcessPoolExecutor() as pool:
+    with ProcessPoolExecutor(mp_context=get_context("spawn")) as pool:
         done = list(pool.map(piece, tasks))
     return figures_of(*([job for kind, jobs in done if kind is wanted for job in jobs] for wanted in (False, True)))
 

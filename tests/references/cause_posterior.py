@@ -10,6 +10,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 
@@ -197,23 +198,27 @@ def within_pair_fault(
     # A lens that lies at the other place brings its own faults with it.
     at = {"left": "right", "right": "left"} if fault.crossed else {"right": "right", "left": "left"}
     codes = {eye: [one.code for one in hypotheses.lens[at[eye]]] for eye in EYES}
-    labels = ["as-ordered"] * len(single) + [f"right {codes['right'][row]}" for row in rows["right"].fault[right]]
-    labels += [f"left {codes['left'][row]}" for row in rows["left"].fault[left]]
+    number = {eye: np.array([codes[eye].index(code) for code in codes[eye]]) for eye in EYES}  # variants: that of their first
+    beyond = len(codes["right"])
+    labels = np.concatenate([
+        np.zeros(len(single), int), number["right"][rows["right"].fault[right]], beyond + number["left"][rows["left"].fault[left]]
+    ])  # fmt: skip
     logs = joint(evidence["right"], evidence["left"], i, j, common_variance(pair, fault))
     logs += log_weights[rows["right"].context[i] - first] + rows["right"].weight[i] + rows["left"].weight[j]
     parts: list[Part] = []
-    prior = hypotheses.prior
-    for label in dict.fromkeys(labels):
-        found = logs[np.array([other == label for other in labels])]
-        own = {eye: "as-ordered" for eye in EYES}
-        if label != "as-ordered":
-            place, code = label.split()
-            own[at[place]] = code
+    prior, order = hypotheses.prior, np.argsort(labels, kind="stable")
+    firsts = np.flatnonzero(np.diff(labels[order], prepend=-1))
+    for label, found in zip(labels[order][firsts], np.logaddexp.reduceat(logs[order], firsts), strict=True):
+        own = dict.fromkeys(EYES, "as-ordered")
+        if label:
+            place = "right" if label < beyond else "left"
+            own[at[place]] = codes[place][label - beyond * (place == "left")]
         before = prior["shared"][fault.code] * prior["right"][own["right"]] * prior["left"][own["left"]]
-        parts.append((entry_of(fault.code, own["right"], own["left"]), math.log(before), float(np.logaddexp.reduce(found))))
+        parts.append((entry_of(fault.code, own["right"], own["left"]), math.log(before), float(found)))
     return parts
 
 
+@cache
 def entry_of(shared: str, right: str, left: str) -> Entry:
     """The entry of a joint hypothesis; the same cause in both lenses is one that concerns both."""
     if shared == "as-ordered" and right == left:
@@ -236,6 +241,9 @@ def gathered(parts: list[Part]) -> Posterior:
     total, likelihood = {}, {}
     for entry, its in by_entry.items():
         total[entry] = sum(math.exp(before + found - peak) for before, found in its)
+        if len(its) == 1:
+            likelihood[entry] = its[0][1]
+            continue
         befores, founds = np.array(its).T
         likelihood[entry] = float(np.logaddexp.reduce(founds + befores) - np.logaddexp.reduce(befores))
     whole = sum(total.values())

@@ -141,13 +141,14 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
 
 
 FARTHEST_SLID_MM = 10.0
+OFF_THE_LENS = 0.7  # a place this much farther than the farthest way is never written down, whatever the prism says
 
 
 def far_off(pair: PairOrder, eye: str, values: Floats) -> float:
     """How far one would have to slide, as the prism read has it; too far and nobody does. (Decided by what was read alone,
     so that the posterior need not know of it.)"""
     way = slid_by(pair.lens(eye).power[None], both=True)[0] @ (values[PRISM] - pair.due(eye))
-    return float(np.abs(way).max())
+    return float(np.abs([*way, *values[PLACE] * OFF_THE_LENS]).max())
 
 
 def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Floats) -> tuple[Floats, Job]:
