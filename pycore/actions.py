@@ -191,6 +191,19 @@ def _demonstration(_envelope: Source, fields: Fields) -> Entry:
     return {"format": "wedgewright.demonstration/1", "job": job}
 
 
+def _imagine(envelope: Source, fields: Fields) -> Entry:
+    """What the dials would show if one cause were the case."""
+    from pycore.imagine import BOTH, imaginable, imagined_entry  # not needed at the start
+
+    cause = fields.word("cause", imaginable()) or "as-ordered"
+    eyes = fields.word("eye", (*EYES, BOTH)) or BOTH
+    for key in ("job", "editions"):
+        fields.raw(key)
+    _checked(fields)
+    job = read_job(_job_source(envelope))
+    return imagined_entry(case_of(job, _edition_for(job, envelope)), cause, eyes)
+
+
 def _read_order(envelope: Source, fields: Fields) -> Entry:
     for key in ("line", "bases"):
         fields.raw(key)
@@ -299,6 +312,7 @@ ACTIONS: Mapping[str, Action] = {
     "read-order": _read_order,
     "touch": _touch,
     "step": _step,
+    "imagine": _imagine,
     "check-edition": _check_edition,
     "list-editions": _list_editions,
     "demonstration": _demonstration,

@@ -14,13 +14,13 @@ from pycore.bench.cause_effect import EFFECTS
 from pycore.bench.cause_fit import Column, Fit, Gauge, Key, joined, turn_column
 from pycore.bench.cause_lens import HEIGHT_SPREAD_MM, Held, Lens, height_is_free, held_lenses
 from pycore.bench.cause_shared import Common, commons, own_causes
-from pycore.bench.cause_table import AS_ORDERED, Cause, CauseTable, cause_table
+from pycore.bench.cause_table import AS_ORDERED, NONE_OF_THESE, Cause, CauseTable, cause_table
 from pycore.bench.expected import Due
 from pycore.job.document import Job
 from pycore.optics.prism import Eye
 
-FAINT = 12.0  # hypotheses e^-12 below the best cannot matter
-UNLIKELY = 8.0  # combinations of two whose best possible weight is e^-8 of all are left out
+FAINT = 10.0  # hypotheses below e^-10 of the best are left out: together about 1 in 10,000
+UNLIKELY = 6.5  # a pair of causes is left out that could reach e^-6.5 of the best at most
 
 
 class Own(NamedTuple):
@@ -119,7 +119,10 @@ class Bench:
         none, *others = commons(self.held, self.table)
         kept: dict[str, list[Common]] = {}
         for common in others:
-            if any(self._changes(none, common, eye) for eye in self.held):
+            cause = self.table.causes[common.code]
+            # What can be in one lens alone is in both only if it changes something in both.
+            enough = all if cause.right or cause.left else any
+            if enough([self._changes(none, common, eye) for eye in self.held]):
                 kept.setdefault(common.code, []).append(common)
         found = []
         for code, variants in kept.items():
@@ -141,9 +144,10 @@ class Bench:
         )
 
     def owns(self, none: Common, eye: Eye) -> list[Own]:
-        """The causes one lens may have of its own that would change something; first: none."""
+        """The causes one lens may have of its own that would change something: none first, then
+        the likeliest."""
         still, held, gauge = none.lenses[eye], self.held[eye], self.gauges[eye]
-        kept = [NO_CAUSE]
+        kept: list[Own] = []
         for cause, weight in own_causes(held, self.table):
             made = EFFECTS[cause.code](still, held.site, cause)
             variants = [
@@ -153,8 +157,9 @@ class Bench:
             ]
             whole = sum([variant.weight for variant in variants])
             kept += [own._replace(weight=weight * own.weight / whole) for own in variants]
-        rest = 1.0 - sum([own.weight for own in kept[1:]])
-        return [NO_CAUSE._replace(weight=rest), *kept[1:]]
+        rest = 1.0 - sum([own.weight for own in kept])
+        kept.sort(key=lambda own: -own.weight)
+        return [NO_CAUSE._replace(weight=rest), *kept]
 
 
 class _Weighed(NamedTuple):
@@ -197,9 +202,7 @@ def _normalised(found: list[Found]) -> list[Story]:
     return sorted(stories, key=lambda story: -story.probability)
 
 
-def _without_shared(
-    bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]
-) -> Iterator[Found]:
+def _without_shared(bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]) -> Iterator[Found]:
     log_none = math.log(none.weight)
     lists = [
         sorted(_weighed(bench, none, eye, owns[eye]), key=lambda one: -one.top) for eye in owns
@@ -259,21 +262,24 @@ def _with_own(
     least: float,
 ) -> Iterator[Found]:
     """A shared cause together with one of one lens, where that can reach the weight `least`."""
+    if common.code == NONE_OF_THESE:
+        return
     log_common = math.log(common.weight)
     none = {eye: owns[eye][0] for eye in owns}
     for eye in owns:
         beside = [other for other in owns if other != eye]
-        log_rest = log_common + sum([math.log(none[other].weight) for other in beside])
-        reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fits[one]) for one in beside])
-        likeliest = max([own.weight for own in owns[eye][1:]], default=0.0)
-        if not likeliest or reach + math.log(likeliest) < least:
-            continue
         others = [fits[one] for one in beside]
-        # Nothing happens twice to one lens: it would only undo what it did.
-        mine = [own for own in owns[eye][1:] if own.code != common.code]
-        for one in _weighed(bench, common, eye, mine):
-            weight = log_rest + one.log_prior + joined(one.fit, *others)
-            yield common, {**none, eye: one.own}, weight
+        log_rest = log_common + sum([math.log(none[other].weight) for other in beside])
+        reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fit) for fit in others])
+        for own in owns[eye][1:]:
+            log_prior = math.log(own.weight)
+            if reach + log_prior < least:
+                break  # the likelier causes come first
+            if own.code in (common.code, NONE_OF_THESE):
+                continue  # nothing happens twice to one lens, and none of these means none
+            fit = bench.fit(common, eye, own)
+            if fit is not None:
+                yield common, {**none, eye: own}, log_rest + log_prior + joined(fit, *others)
 
 
 def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
@@ -283,9 +289,11 @@ def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
     """
     table = cause_table().in_state(job.state)
     held = held_lenses(job, dues)
-    held = {eye: one for eye, one in held.items() if one.seen.count}
+    held = {eye: one for eye, one in held.items() if one.seen.size}
     if not held:
         return None
+    if len(held) == 1:  # nothing was read before or after it
+        held = {eye: one._replace(site=one.site._replace(second=0.0)) for eye, one in held.items()}
     gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in held.items()}
     zero = float(job.instrument.uncertainty.zero)
     return Bench(held, gauges, table, zero, height_is_free(job))

@@ -7,10 +7,11 @@ physically each cause is stands in `cause_table.json` beside its prior.
 
 import math
 from collections.abc import Callable, Iterator, Mapping
+from functools import lru_cache
 
 from pycore.angles import cosine, sine
 from pycore.bench.cause_lens import Lens, Site, Vector
-from pycore.bench.cause_table import Cause, cause_table
+from pycore.bench.cause_table import Cause
 
 Variants = list[tuple[float, Lens]]
 Effect = Callable[[Lens, Site, Cause], Variants]
@@ -37,11 +38,15 @@ def _flipped(lens: Lens, _site: Site, _cause: Cause) -> Variants:
     return [(1.0, _with_prism(lens, lens.px, -lens.py))]
 
 
-def _exchanged(lens: Lens, _site: Site, _cause: Cause) -> Variants:
+def _exchanged(lens: Lens, _site: Site, cause: Cause) -> Variants:
     if not lens.px or not lens.py:
         return []
     across, along = math.copysign(lens.py, lens.px), math.copysign(lens.px, lens.py)
-    return [(1.0, _with_prism(lens, across, along))]
+    signed = cause.of("as_signed_numbers")
+    return [
+        (1.0 - signed, _with_prism(lens, across, along)),
+        (signed, _with_prism(lens, lens.py, lens.px)),
+    ]
 
 
 def _added(lens: Lens, _site: Site, _cause: Cause) -> Variants:
@@ -163,17 +168,21 @@ def turns(spread_deg: float) -> Iterator[tuple[float, tuple[float, float]]]:
         yield weight, (side * middle_deg, narrow_deg)
 
 
+@lru_cache(maxsize=64)
+def _direction(angle_deg: float) -> Vector:
+    return cosine(angle_deg), sine(angle_deg)
+
+
 def turned(lens: Lens, angle_deg: float, spread_deg: float) -> Lens:
     """The lens turned counter-clockwise, prism and axis alike. Angles in degrees."""
-    once, twice = angle_deg, 2.0 * angle_deg
+    (once_x, once_y), (twice_x, twice_y) = _direction(angle_deg), _direction(2.0 * angle_deg)
     x, y = lens.prism
-    across = x * cosine(once) - y * sine(once)
-    along = x * sine(once) + y * cosine(once)
     return lens._replace(
-        px=across,
-        py=along - lens.t,
-        j0=lens.j0 * cosine(twice) + lens.j45 * sine(twice),
-        j45=lens.j45 * cosine(twice) - lens.j0 * sine(twice),
+        px=x * once_x - y * once_y,
+        py=x * once_y + y * once_x - lens.t,
+        j0=lens.j0 * twice_x + lens.j45 * twice_y,
+        j45=lens.j45 * twice_x - lens.j0 * twice_y,
+        turned_deg=lens.turned_deg + angle_deg,
         turn_rad=math.hypot(lens.turn_rad, math.radians(spread_deg)),
     )
 
@@ -244,9 +253,7 @@ def _table_moved(lens: Lens, site: Site, cause: Cause) -> Variants:
 
 
 def _none_of_these(lens: Lens, _site: Site, _cause: Cause) -> Variants:
-    broad = cause_table().scatter.none_prism
-    columns = ((broad, 0.0), (0.0, broad))
-    return [(1.0, lens._replace(shifts=lens.shifts + columns, broad=True))]
+    return [(1.0, lens._replace(broad=True))]
 
 
 EFFECTS: Mapping[str, Effect] = {

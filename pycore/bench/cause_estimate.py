@@ -5,7 +5,6 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from pycore.bench.cause import Bench, Story
-from pycore.bench.cause_effect import turns
 from pycore.bench.cause_fit import dot, inverse_root
 from pycore.optics.prism import Eye
 
@@ -50,9 +49,7 @@ def estimate(bench: Bench, story: Story) -> Estimate:
         ours = [gauge.scaled(bare, column) for column in bench.columns(story.common, eye, lens)]
         columns = [column + [0.0] * len(part) for column in columns]
         columns += [[0.0] * before + column for column in mine]
-        shared = [
-            (shared[at] if before else []) + column for at, column in enumerate(ours)
-        ]
+        shared = [(shared[at] if before else []) + column for at, column in enumerate(ours)]
         counts[eye] = len(mine)
         misfit += part
         before += len(part)
@@ -81,12 +78,8 @@ def _solved(
     ]
     inverse, _ = inverse_root(rows)
     half = [dot(row, pull) for row in inverse]
-    means = [
-        sum([inverse[k][at] * half[k] for k in range(len(half))]) for at in range(len(half))
-    ]
-    deviations = [
-        math.sqrt(sum([row[at] ** 2 for row in inverse])) for at in range(len(half))
-    ]
+    means = [sum([inverse[k][at] * half[k] for k in range(len(half))]) for at in range(len(half))]
+    deviations = [math.sqrt(sum([row[at] ** 2 for row in inverse])) for at in range(len(half))]
     return means, deviations, whole - dot(half, half)
 
 
@@ -155,21 +148,17 @@ def _times(found: Found, factor: float) -> Found:
 
 def _turns(bench: Bench, code: str, stories: Sequence[Story]) -> dict[Eye, dict[str, Found]]:
     """The turn in degrees, over the narrower turns it is made of."""
-    spread = bench.table.causes[code].of("turn_deg")
-    middles = [(middle, narrow) for _, (middle, narrow) in turns(spread)]
     sums: dict[Eye, list[tuple[float, Found]]] = {}
     for story in stories:
         found = estimate(bench, story)
         for eye, own in story.own.items():
-            if own.code == code:
-                middle, narrow = middles[own.variant]
-                turn = found.own[eye][-1]
-            elif story.common.code == code:
-                middle, narrow = middles[story.common.variant]
-                turn = found.own[eye][-1] if found.own[eye] else found.common[-1]
-            else:
+            lens = bench.lens(story.common, eye, own)
+            if lens is None or code not in (own.code, story.common.code):
                 continue
-            part = Found(middle + turn.mean * narrow, turn.uncertainty * narrow)
+            narrow, turn = story.common.turn_deg, found.common[-1:]
+            if lens.turn_rad:
+                narrow, turn = math.degrees(lens.turn_rad), found.own[eye][-1:]
+            part = Found(lens.turned_deg + turn[0].mean * narrow, turn[0].uncertainty * narrow)
             sums.setdefault(eye, []).append((story.probability, part))
     return {eye: {"turn_deg": _mixed(parts)} for eye, parts in sums.items()}
 
@@ -178,7 +167,5 @@ def _mixed(parts: Sequence[tuple[float, Found]]) -> Found:
     """Mean and spread of a mixture of normal distributions."""
     whole = sum([share for share, _ in parts])
     mean = sum([share * part.mean for share, part in parts]) / whole
-    spread = sum(
-        [share * (part.uncertainty**2 + (part.mean - mean) ** 2) for share, part in parts]
-    )
+    spread = sum([share * (part.uncertainty**2 + (part.mean - mean) ** 2) for share, part in parts])
     return Found(mean, math.sqrt(spread / whole))

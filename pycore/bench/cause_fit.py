@@ -7,8 +7,9 @@ Source of the algebra: Gaussian linear models (matrix determinant lemma, Woodbur
 """
 
 import math
-from collections.abc import Iterable, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass, field
+from operator import mul
 from typing import NamedTuple
 
 from pycore.bench.cause_lens import Lens, Seen, Vector
@@ -19,6 +20,7 @@ Rows = list[list[float]]
 Key = tuple[float | None, ...]
 ALIKE = 6  # decimals to which predictions count as equal, in their own units
 SAME = 1e-6
+NO_POWER = (0.0, 0.0, 0.0)
 NOTHING = Lens(0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0)
 
 
@@ -28,7 +30,7 @@ class Column(NamedTuple):
 
     read: Vector
     made: Vector
-    power: tuple[float, float, float] = (0.0, 0.0, 0.0)
+    power: tuple[float, float, float] = NO_POWER
 
 
 class Fit(NamedTuple):
@@ -53,60 +55,111 @@ class Gauge:
     scatter: Scatter
     _widths: dict[object, tuple[Rows, float]] = field(default_factory=dict)
     _powers: dict[object, tuple[Rows, float]] = field(default_factory=dict)
+    _fits: dict[object, tuple[list[float], float]] = field(default_factory=dict)
+    _columns: dict[object, list[float]] = field(default_factory=dict)
+    _measured: bool = field(init=False)
+
+    def __post_init__(self) -> None:
+        self._measured = any(part is not None for part in self.seen.place)
 
     def fit(self, lens: Lens, common: Sequence[Column] = ()) -> Fit:
         """How well `lens` fits. `common` the columns of the parameters both lenses share."""
+        if lens.turn_rad or any(column.power != NO_POWER for column in common):
+            return self._fit_turned(lens, common)
+        misfit, log_width = self._prism_misfit(lens)
+        density = -0.5 * sum([part * part for part in misfit]) - log_width
+        if self.seen.power is not None:
+            density += self._power_fit(lens)[1]
+        if self.seen.add is not None:
+            density += self._add_fit(lens)[1]
+        if not common:
+            return Fit(density)
+        columns = [self._prism_scaled(lens, column) for column in common]
+        return Fit(density, *_slopes(columns, misfit))
+
+    def _fit_turned(self, lens: Lens, common: Sequence[Column]) -> Fit:
+        """The fit where a parameter changes prism and power together."""
         misfit, log_width = self.misfit(lens)
         columns = [self.scaled(lens, column) for column in common]
         if lens.turn_rad:
             # One parameter more: I + u u' is made round again by stretching along u only.
             turn = self.scaled(lens, turn_column(lens, lens.turn_rad))
             size = dot(turn, turn)
-            if size:
-                narrower = (1.0 - 1.0 / math.sqrt(1.0 + size)) / size
-                misfit = _less(misfit, turn, narrower)
-                columns = [_less(column, turn, narrower) for column in columns]
-                log_width += 0.5 * math.log1p(size)
+            narrower = (1.0 - 1.0 / math.sqrt(1.0 + size)) / size if size else 0.0
+            misfit = _less(misfit, turn, narrower)
+            columns = [_less(column, turn, narrower) for column in columns]
+            log_width += 0.5 * math.log1p(size)
         density = -0.5 * dot(misfit, misfit) - log_width
-        if not columns:
-            return Fit(density)
-        pull = tuple([dot(column, misfit) for column in columns])
-        grip = tuple([tuple([dot(one, two) for two in columns]) for one in columns])
-        return Fit(density, pull, grip)
+        return Fit(density, *_slopes(columns, misfit)) if columns else Fit(density)
 
     def misfit(self, lens: Lens) -> tuple[list[float], float]:
         """What was read less what `lens` predicts, in independent standard deviations, and the
         logarithm of their product. A turn of the lens and common parameters are left out."""
-        seen, (x, y) = self.seen, lens.prism
+        misfit, log_width = self._prism_misfit(lens)
+        misfit = list(misfit)
+        for fit in self._other_fits(lens):
+            own = fit[0]
+            misfit += own
+            log_width -= fit[1] + 0.5 * dot(own, own)
+        return misfit, log_width
+
+    def _other_fits(self, lens: Lens) -> Iterator[tuple[list[float], float]]:
+        if self.seen.power is not None:
+            yield self._power_fit(lens)
+        if self.seen.add is not None:
+            yield self._add_fit(lens)
+
+    def _prism_misfit(self, lens: Lens) -> tuple[list[float], float]:
+        seen = self.seen
+        x, y = lens.px, lens.py + lens.t
         rest: list[float] = []
         if seen.prism is not None:
-            rest += (seen.prism[0] - x - lens.sx, seen.prism[1] - y - lens.sy)
-        if seen.place[0] is not None:
-            rest.append(seen.place[0] + self.due[0] - x)
-        if seen.place[1] is not None:
-            rest.append(seen.place[1] + self.due[1] - y)
+            rest = [seen.prism[0] - x - lens.sx, seen.prism[1] - y - lens.sy]
+        if self._measured:
+            if seen.place[0] is not None:
+                rest.append(seen.place[0] + self.due[0] - x)
+            if seen.place[1] is not None:
+                rest.append(seen.place[1] + self.due[1] - y)
         inverse, log_width = self._width(lens)
-        misfit = _times(inverse, rest)
-        if seen.power is not None:
-            rows, more = self._power_width(lens)
-            power = [a - b for a, b in zip(seen.power, lens[4:7], strict=True)]
-            misfit += _times(rows, power)
-            log_width += more
-        if seen.add is not None:
+        return _times(inverse, rest), log_width
+
+    def _power_fit(self, lens: Lens) -> tuple[list[float], float]:
+        """The power's misfit and its log density; the same for most causes, so kept."""
+        key = lens[4:7], lens.power_spread, lens.broad
+        found = self._fits.get(key)
+        if found is None:
+            assert self.seen.power is not None  # asked only where it was read
+            rows, log_width = self._power_width(lens)
+            power = [a - b for a, b in zip(self.seen.power, lens[4:7], strict=True)]
+            misfit = _times(rows, power)
+            found = self._fits[key] = misfit, -0.5 * dot(misfit, misfit) - log_width
+        return found
+
+    def _add_fit(self, lens: Lens) -> tuple[list[float], float]:
+        key = lens.add, lens.broad
+        found = self._fits.get(key)
+        if found is None:
             deviation = self._add_deviation(lens)
-            misfit.append((seen.add - lens.add) / deviation)
-            log_width += math.log(deviation)
-        return misfit, log_width
+            misfit = ((self.seen.add or 0.0) - lens.add) / deviation
+            found = self._fits[key] = [misfit], -0.5 * misfit * misfit - math.log(deviation)
+        return found
 
     def scaled(self, lens: Lens, column: Column) -> list[float]:
         """A parameter's column in the independent standard deviations of `misfit`."""
-        inverse, _ = self._width(lens)
-        scaled = _times(inverse, self._prism_part(column.read, column.made))
+        scaled = list(self._prism_scaled(lens, column))
         if self.seen.power is not None:
             scaled += _times(self._power_width(lens)[0], column.power)
         if self.seen.add is not None:
             scaled.append(0.0)
         return scaled
+
+    def _prism_scaled(self, lens: Lens, column: Column) -> list[float]:
+        key = lens.slips, lens.shifts, lens.broad, column
+        found = self._columns.get(key)
+        if found is None:
+            part = self._prism_part(column.read, column.made)
+            found = self._columns[key] = _times(self._width(lens)[0], part)
+        return found
 
     @property
     def ceiling(self) -> float:
@@ -132,9 +185,7 @@ class Gauge:
         parts: list[float] = [log_width, *(part for row in inverse for part in row)]
         if seen.prism is not None:
             parts += (x + lens.sx, y + lens.sy)
-        parts += [
-            made for made, part in zip((x, y), seen.place, strict=True) if part is not None
-        ]
+        parts += [made for made, part in zip((x, y), seen.place, strict=True) if part is not None]
         if seen.power is not None:
             parts += (*lens[4:7], lens.power_spread, float(lens.broad))
         if seen.add is not None:
@@ -146,6 +197,8 @@ class Gauge:
     def changes(self, lens: Lens, still: Lens) -> bool:
         """Tell whether `lens` predicts anything else than `still` does for what was read."""
         seen = self.seen
+        if lens.broad:
+            return True
         if seen.power is not None and (_differ(lens[4:7], still[4:7]) or lens.power_spread):
             return True
         if seen.add is not None and _differ((lens.add,), (still.add,)):
@@ -153,7 +206,7 @@ class Gauge:
         (x, y), made = lens.prism, still.prism
         if seen.prism is not None and _differ((x + lens.sx, y + lens.sy), (made[0], made[1])):
             return True
-        if any(part is not None for part in seen.place) and _differ((x, y), made):
+        if self._measured and _differ((x, y), made):
             return True
         return any(_differ(self.scaled(lens, own), ()) for own in self.own_columns(lens))
 
@@ -166,10 +219,11 @@ class Gauge:
 
     def _width(self, lens: Lens) -> tuple[Rows, float]:
         """Scales prism and place to independent standard deviations; kept by the columns."""
-        key = (lens.slips, lens.shifts)
-        if key not in self._widths:
-            self._widths[key] = self._make_width(lens)
-        return self._widths[key]
+        key = lens.slips, lens.shifts, lens.broad
+        found = self._widths.get(key)
+        if found is None:
+            found = self._widths[key] = self._make_width(lens)
+        return found
 
     def _make_width(self, lens: Lens) -> tuple[Rows, float]:
         seen, laboratory = self.seen, self.seen.laboratory_var
@@ -188,13 +242,16 @@ class Gauge:
             for row, one in zip(rows, part, strict=True):
                 for at, two in enumerate(part):
                     row[at] += one * two
+        for at, row in enumerate(rows):
+            row[at] += lens.broad * self.scatter.none_prism**2
         return inverse_root(rows)
 
     def _power_width(self, lens: Lens) -> tuple[Rows, float]:
-        key = (lens.j0, lens.j45, lens.power_spread, lens.broad)
-        if key not in self._powers:
-            self._powers[key] = self._make_power_width(lens)
-        return self._powers[key]
+        key = lens.j0, lens.j45, lens.power_spread, lens.broad
+        found = self._powers.get(key)
+        if found is None:
+            found = self._powers[key] = self._make_power_width(lens)
+        return found
 
     def _make_power_width(self, lens: Lens) -> tuple[Rows, float]:
         """Scales mean power, the cylinder along its own direction and across it."""
@@ -236,11 +293,18 @@ def _differ(one: Sequence[float], two: Sequence[float]) -> bool:
 
 def dot(one: Sequence[float], two: Sequence[float]) -> float:
     """The sum of products."""
-    return sum([a * b for a, b in zip(one, two, strict=True)])
+    return sum(map(mul, one, two), 0.0)
+
+
+def _slopes(
+    columns: Sequence[Sequence[float]], misfit: Sequence[float]
+) -> tuple[Numbers, tuple[Numbers, ...]]:
+    pull = tuple([dot(column, misfit) for column in columns])
+    return pull, tuple([tuple([dot(one, two) for two in columns]) for one in columns])
 
 
 def _times(rows: Rows, vector: Sequence[float]) -> list[float]:
-    return [sum([a * b for a, b in zip(row, vector, strict=True)]) for row in rows]
+    return [sum(map(mul, row, vector)) for row in rows]
 
 
 def _less(vector: Sequence[float], along: Sequence[float], narrower: float) -> list[float]:

@@ -42,8 +42,8 @@ class Lens(NamedTuple):
     where it is not known; `mean`, `j0`, `j45` the power as mean and the cylinder's two components
     ((Fyy - Fxx)/2, Fxy), nan where not known; `add`; `sx`, `sy` what reading at another point
     adds. `slips` and `shifts` are columns of free parameters, each one standard deviation of the
-    prism: a slip is of the point read at only, a shift is in the lens. `turn_rad` is the standard
-    deviation of a turn; `power_spread` of the mean power; `broad` marks none-of-these.
+    prism: a slip is of the point read at only, a shift is in the lens. `turned_deg` is a turn it
+    has made, `turn_rad` the standard deviation of one more; `power_spread` of the mean power; `broad` marks none-of-these.
     """
 
     px: float
@@ -58,6 +58,7 @@ class Lens(NamedTuple):
     sy: float = 0.0
     slips: tuple[Vector, ...] = ()
     shifts: tuple[Vector, ...] = ()
+    turned_deg: float = 0.0
     turn_rad: float = 0.0
     power_spread: float = 0.0
     broad: bool = False
@@ -131,7 +132,7 @@ class Seen(NamedTuple):
     add_var: float
 
     @property
-    def count(self) -> int:
+    def size(self) -> int:
         """How many numbers were read."""
         parts = (self.prism and self.prism[0], *self.place, self.add)
         single = sum(part is not None for part in parts)
@@ -174,7 +175,7 @@ def components_of(power: Power | None) -> tuple[float, float, float]:
     if power is None:
         return math.nan, 0.0, 0.0
     xx, xy, yy = power.matrix()
-    return (xx + yy) / 2.0, (yy - xx) / 2.0, xy
+    return (xx + yy) / 2.0, (yy - xx) / 2.0, xy + 0.0
 
 
 def _lens(job: Job, due_: Due) -> Lens:
@@ -202,7 +203,7 @@ def _site(job: Job, order: EyeOrder, due_: Due, dues: Mapping[Eye, Due]) -> Site
         cylinder=float(due_.power.cylinder) if due_.power else 0.0,
         cross_mm=None if order.cross_above_prp_mm is None else float(order.cross_above_prp_mm),
         boxing=(-float(boxing.right_mm), -float(boxing.up_mm)) if boxing else None,
-        segment=_segment(order, due_),
+        segment=_segment(order),
         front_power=_front_power(order, due_),
         prescription=_prescription(order, _lens(job, due_)),
         rules=_rules(job),
@@ -215,13 +216,13 @@ def _site(job: Job, order: EyeOrder, due_: Due, dues: Mapping[Eye, Due]) -> Site
 
 def _second(job: Job, eye: Eye, dues: Mapping[Eye, Due]) -> float:
     """How probable it is that this lens was read second: the weaker along 90."""
-    if job.state != "mounted" or any(read_prism(job, each) is None for each in EYES):
+    if job.state != "mounted" or len(dues) < len(EYES):
         return 0.0
     first = read_first(dues.get("right"), dues.get("left"))
     return 0.5 if first is None else float(first != eye)
 
 
-def _segment(order: EyeOrder, due_: Due) -> tuple[Vector, Vector] | None:
+def _segment(order: EyeOrder) -> tuple[Vector, Vector] | None:
     """A point in the segment, mm from the reference point, and the segment's prism there."""
     place = segment_of(order)
     if place is None or place.top_up_mm is None or place.centre_right_mm is None:
@@ -254,9 +255,7 @@ def _prescription(order: EyeOrder, due: Lens) -> Lens | None:
         return None
     mean, j0, j45 = components_of(wanted.power)
     prism, add = wanted.prism_total, float(wanted.add or 0)
-    return due._replace(
-        px=float(prism.x), py=float(prism.y), mean=mean, j0=j0, j45=j45, add=add
-    )
+    return due._replace(px=float(prism.x), py=float(prism.y), mean=mean, j0=j0, j45=j45, add=add)
 
 
 def _rules(job: Job) -> tuple[float, ...]:

@@ -124,7 +124,9 @@ def _groups(bench: Bench, stories: Sequence[Story]) -> list[Group]:
     return groups + [Group((label,), (share,)) for label, share in alone.items()]
 
 
-def _ties(groups: Sequence[Group], told: Mapping[Label, Sequence[Story]]) -> dict[Label, tuple[Label, ...]]:
+def _ties(
+    groups: Sequence[Group], told: Mapping[Label, Sequence[Story]]
+) -> dict[Label, tuple[Label, ...]]:
     """For each cause the others of the likeliest group it is in."""
     ties: dict[Label, tuple[Label, ...]] = {}
     for group in sorted(groups, key=lambda group: -group.probability):

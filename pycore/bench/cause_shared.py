@@ -6,6 +6,8 @@ cause, then what was done at the bench.
 
 from collections.abc import Callable, Iterator, Mapping
 from dataclasses import dataclass
+from itertools import product
+from math import prod
 
 from pycore.bench.cause_effect import EFFECTS, turned, turns
 from pycore.bench.cause_lens import OTHER, Held, Lens, Vector
@@ -162,6 +164,19 @@ def _have_powers(due: Pair) -> bool:
     return all(lens.has_power for lens in due.values())
 
 
+def _both_rotated(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Common]:
+    """Each lens turned by an angle of its own: every part of one with every part of the other."""
+    parts = list(turns(cause.of("turn_deg")))
+    found = []
+    for at, chosen in enumerate(product(parts, repeat=len(due))):
+        lenses = {
+            eye: turned(lens, *turn)
+            for (eye, lens), (_, turn) in zip(due.items(), chosen, strict=True)
+        }
+        found.append(_variant(cause, at, prod([weight for weight, _ in chosen]), lenses))
+    return found
+
+
 def _swapped(due: Pair) -> Pair:
     return {eye: due[OTHER[eye]] for eye in due}
 
@@ -212,6 +227,7 @@ SHARED: Mapping[str, Shared] = {
     "frame-not-square": _not_square,
     "layout-pd-wrong": _pd_wrong,
     "layout-height-wrong": _height_wrong,
+    "lens-rotated": _both_rotated,
     "lenses-swapped": _bodies_swapped,
     "eyes-swapped-in-words": _words_swapped,
     "not-split": _not_split,

@@ -14,8 +14,12 @@ AS_ORDERED, NONE_OF_THESE = "as-ordered", "none-of-these"
 
 @dataclass(frozen=True, slots=True)
 class Cause:
-    """One cause. `prior` is the share of jobs it is met in, before anything is read; `right`,
-    `left`, `both` are the shares of that (sum 1); `parameters` in the units of their names; `states` of the lenses in which it can happen."""
+    """One cause.
+
+    `prior` is the share of jobs it is met in, before anything is read; `right`, `left`, `both`
+    are the shares of that (sum 1); `parameters` in the units of their names; `states` of the
+    lenses in which it can happen.
+    """
 
     code: str
     place: str

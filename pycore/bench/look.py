@@ -10,7 +10,7 @@ import json
 import math
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, lru_cache
 
 from pycore.bench.cause import Story
 from pycore.bench.cause_rank import Label, label_of
@@ -31,16 +31,12 @@ class LookTable:
     results: tuple[str, ...]
     rows: Mapping[str, Row]
 
-    def row(self, codes: Sequence[str]) -> Row:
+    def row(self, codes: tuple[str, ...]) -> Row:
         """How probable each result is where these causes, none `as-ordered`, are the case.
 
         A cause with a row of its own speaks; several are averaged.
         """
-        rows = self.rows
-        if not codes:
-            return rows.get(AS_ORDERED) or rows[DEFAULT]
-        own = [rows[code] for code in codes if code in rows] or [rows[DEFAULT]]
-        return tuple([sum(column) / len(own) for column in zip(*own, strict=True)])
+        return _row(self.code, codes)
 
 
 @cache
@@ -59,6 +55,15 @@ def look_tables() -> Mapping[str, LookTable]:
         )
         for code, entry in source["looks"].items()
     }
+
+
+@lru_cache(maxsize=5000)
+def _row(look: str, codes: tuple[str, ...]) -> Row:
+    rows = look_tables()[look].rows
+    if not codes:
+        return rows.get(AS_ORDERED) or rows[DEFAULT]
+    own = [rows[code] for code in codes if code in rows] or [rows[DEFAULT]]
+    return tuple([sum(column) / len(own) for column in zip(*own, strict=True)])
 
 
 def codes_of(label: Label, eye: Eye | None) -> tuple[str, ...]:

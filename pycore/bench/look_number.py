@@ -7,12 +7,25 @@ whole numbers of standard deviations from the middles of all the parts.
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 from typing import NamedTuple
 
 # Nodes and weights of the ten-point Gauss-Legendre rule on [-1, 1]; Abramowitz and Stegun,
 # Handbook of Mathematical Functions (1964), table 25.4. The rule is symmetric.
-NODES = (0.148874338981631, 0.433395394129247, 0.679409568299024, 0.865063366688985, 0.973906528517172)
-WEIGHTS = (0.295524224714753, 0.269266719309996, 0.219086362515982, 0.149451349150581, 0.066671344308688)
+NODES = (
+    0.148874338981631,
+    0.433395394129247,
+    0.679409568299024,
+    0.865063366688985,
+    0.973906528517172,
+)
+WEIGHTS = (
+    0.295524224714753,
+    0.269266719309996,
+    0.219086362515982,
+    0.149451349150581,
+    0.066671344308688,
+)
 ENDS = (-6.0, -3.0, -1.0, 1.0, 3.0, 6.0)  # of the panels, in standard deviations
 ROOT = math.sqrt(2.0 * math.pi)
 
@@ -65,14 +78,10 @@ def information_of_number(
 
 def _nodes(parts: Sequence[Part], low: float, high: float) -> list[tuple[float, float]]:
     ends = sorted(
-        {
-            min(max(part.mean + end * part.deviation, low), high)
-            for part in parts
-            for end in ENDS
-        }
+        {min(max(part.mean + end * part.deviation, low), high) for part in parts for end in ENDS}
     )
     found = []
-    for start, end in zip(ends, ends[1:], strict=False):
+    for start, end in pairwise(ends):
         middle, half = (start + end) / 2.0, (end - start) / 2.0
         for node, weight in zip(NODES, WEIGHTS, strict=True):
             found += [(middle - half * node, half * weight), (middle + half * node, half * weight)]

@@ -1,8 +1,9 @@
 """The further looks that can be taken at this job, and what each is worth now."""
 
 import math
-from collections.abc import Iterator, Sequence
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
+from operator import mul
 
 from pycore.bench.cause import Bench
 from pycore.bench.cause_lens import Held, Lens
@@ -18,7 +19,7 @@ LEAST_CYLINDER = 0.25  # dioptres; below, an axis tells nothing
 LEAST_PRISM = 1.0  # prism dioptres; below, an edge tells nothing
 WORTH_COUNTING = 1e-3  # a number's information counts causes from this probability on
 QUARTER_TURN = 90.0
-LEAST_BITS = 0.01  # a look worth less tells nothing
+LEAST_BITS = 0.05  # a look expected to tell less is not worth taking
 
 
 @dataclass(frozen=True, slots=True)
@@ -35,12 +36,10 @@ class Offer:
 
 @dataclass(frozen=True, slots=True)
 class Worth:
-    """What a look is worth: `bits` about what happened; `group_bits` of them about which group
-    (the rest tells the causes of one group apart)."""
+    """What a look is expected to tell about what happened, in `bits`."""
 
     offer: Offer
     bits: float
-    group_bits: float
 
 
 def offers(job: Job, bench: Bench) -> list[Offer]:
@@ -79,105 +78,92 @@ def _can_be_taken(code: str, eye: Eye | None, job: Job, bench: Bench) -> bool:
 
 
 def worths(job: Job, weighing: Weighing) -> list[Worth]:
-    """What each look is expected to tell, the most telling first.
+    """What each look is expected to tell about what happened, the most telling first.
 
     Arguments: `job`; `weighing` of its causes. Returns the looks with their information.
     """
-    found = [_worth(offer, weighing) for offer in offers(job, weighing.bench)]
+    found = [
+        Worth(offer, _bits(offer, weighing.bench, _causes(weighing)))
+        for offer in offers(job, weighing.bench)
+    ]
     return sorted(found, key=lambda worth: -worth.bits)
 
 
-def _worth(offer: Offer, weighing: Weighing) -> Worth:
-    if offer.table.code == "reread-upright":
-        return _worth_of_rereading(offer, weighing)
+def group_bits(offer: Offer, weighing: Weighing) -> float:
+    """What a look tells about which group it is, in bits; the rest of what it is worth tells the
+    causes of one group apart. Arguments: `offer`; `weighing`."""
+    probable = {one.label: one for one in weighing.ranking.causes}
+    groups = [
+        [(share, probable[label]) for label, share in zip(group.labels, group.shares, strict=True)]
+        for group in weighing.ranking.groups
+    ]
+    return _bits(offer, weighing.bench, groups)
+
+
+Case = Sequence[tuple[float, Ranked]]  # causes with their probabilities that count as one
+
+
+def _causes(weighing: Weighing) -> list[Case]:
+    return [[(one.probability, one)] for one in weighing.ranking.causes if one.probability]
+
+
+def _bits(offer: Offer, bench: Bench, cases: Sequence[Case]) -> float:
+    """The information of a look's result about which of `cases` holds."""
     if offer.table.code == "read-axis":
-        return _worth_of_axis(offer, weighing)
-    ranking = weighing.ranking
-    bits = _information(
-        [(one.probability, offer.row(one.label)) for one in ranking.causes if one.probability]
-    )
-    return Worth(offer, bits, _information(_group_rows(offer, weighing)))
-
-
-def _group_rows(offer: Offer, weighing: Weighing) -> Iterator[tuple[float, Row]]:
-    for group in weighing.ranking.groups:
-        rows = [offer.row(label) for label in group.labels]
-        whole = group.probability
-        if len(rows) == 1:
-            yield whole, rows[0]
-        elif whole:
-            columns = zip(*rows, strict=True)
-            yield whole, tuple([_mean(group.shares, column) / whole for column in columns])
-
-
-def _mean(shares: Sequence[float], column: Sequence[float]) -> float:
-    return sum([share * part for share, part in zip(shares, column, strict=True)])
-
-
-def _merged(cases: Iterator[tuple[float, Row]] | Sequence[tuple[float, Row]]) -> dict[Row, float]:
-    """Cases that predict the same results count as one: which of them it is, no result tells."""
-    merged: dict[Row, float] = {}
-    for share, row in cases:
-        merged[row] = merged.get(row, 0.0) + share
-    return merged
-
-
-def _information(cases: Iterator[tuple[float, Row]] | Sequence[tuple[float, Row]]) -> float:
-    merged = _merged(cases)
+        return _bits_of_axis(offer, bench, cases)
+    merged: dict[Row, float] = {}  # which of those with equal results it is, no result tells
+    for case in cases:
+        whole = sum([share for share, _ in case])
+        row = _mixed([(share / whole, offer.row(one.label)) for share, one in case])
+        merged[row] = merged.get(row, 0.0) + whole
+    if offer.table.code == "reread-upright":
+        return _bits_of_rereading(offer, bench, merged)
     return information(list(merged.values()), list(merged))
 
 
-def _worth_of_rereading(offer: Offer, weighing: Weighing) -> Worth:
+def _mixed(rows: Sequence[tuple[float, Row]]) -> Row:
+    if len(rows) == 1:
+        return rows[0][1]
+    columns = zip(*[row for _, row in rows], strict=True)
+    shares = [share for share, _ in rows]
+    return tuple([sum(map(mul, shares, column)) for column in columns])
+
+
+def _bits_of_rereading(offer: Offer, bench: Bench, cases: Mapping[Row, float]) -> float:
     """The reading again, as a number: how far along from what is due to what was read."""
     assert offer.eye is not None
-    one = weighing.bench.held[offer.eye]
+    one = bench.held[offer.eye]
     assert one.seen.prism is not None  # else it is not offered
     (x, y), (due_x, due_y) = one.seen.prism, one.due.prism
     off = math.hypot(x - due_x, y - due_y)
-    reading_var = one.seen.prism_var - one.seen.laboratory_var
-    again = (off, math.sqrt(2.0 * reading_var))
+    again = (off, math.sqrt(2.0 * (one.seen.prism_var - one.seen.laboratory_var)))
     as_due = (0.0, math.sqrt(one.seen.prism_var))
     other = (off / 2.0, off / 2.0 + 0.5)
     outcomes = (again, as_due, other)
-
-    def bits(cases: dict[Row, float]) -> float:
-        mixtures = [
-            tuple([Part(share, *where) for share, where in zip(row, outcomes, strict=True)])
-            for row in cases
-        ]
-        return information_of_number(list(cases.values()), mixtures)
-
-    causes = _merged([(each.probability, offer.row(each.label)) for each in weighing.ranking.causes])
-    return Worth(offer, bits(causes), bits(_merged(_group_rows(offer, weighing))))
+    mixtures = [
+        tuple([Part(share, *where) for share, where in zip(row, outcomes, strict=True)])
+        for row in cases
+    ]
+    return information_of_number(list(cases.values()), mixtures)
 
 
-def _worth_of_axis(offer: Offer, weighing: Weighing) -> Worth:
+def _bits_of_axis(offer: Offer, bench: Bench, cases: Sequence[Case]) -> float:
+    """The axis, as a number; of causes that are not worth counting none is asked."""
     assert offer.eye is not None
-    told = {
-        one.label: (one.probability, axis_mixture(weighing.bench, offer.eye, one))
-        for one in weighing.ranking.causes
-        if one.probability >= WORTH_COUNTING
-    }
-    groups = []
-    for group in weighing.ranking.groups:
-        mixed = [
-            part._replace(share=part.share * share / group.probability)
-            for label, share in zip(group.labels, group.shares, strict=True)
-            if label in told
-            for part in told[label][1]
-        ]
-        groups.append((group.probability, tuple(mixed)))
-    return Worth(offer, _bits_of_angle(list(told.values())), _bits_of_angle(groups))
-
-
-def _bits_of_angle(cases: Sequence[tuple[float, Mixture]]) -> float:
-    """The information of an angle about which case holds; cases that predict the same are one."""
     merged: dict[Mixture, float] = {}
-    for share, mixture in cases:
-        if mixture:
-            merged[mixture] = merged.get(mixture, 0.0) + share
-    whole = sum(merged.values())
-    shares = [share / whole for share in merged.values()]
+    for case in cases:
+        worthy = [(share, one) for share, one in case if one.probability >= WORTH_COUNTING]
+        whole = sum([share for share, _ in worthy])
+        parts = [
+            part._replace(share=part.share * share / whole)
+            for share, one in worthy
+            for part in axis_mixture(bench, offer.eye, one)
+        ]
+        if parts:
+            mixture = tuple(parts)
+            merged[mixture] = merged.get(mixture, 0.0) + whole
+    counted = sum(merged.values())
+    shares = [share / counted for share in merged.values()]
     return information_of_number(shares, list(merged), -QUARTER_TURN, QUARTER_TURN)
 
 

@@ -10,8 +10,8 @@ anything more.
 from collections.abc import Iterator, Mapping, Sequence
 
 from pycore.bench.cause_rank import Label, Ranking
-from pycore.bench.cause_weighing import Weighing, weighing_of
-from pycore.bench.look_worth import LEAST_BITS, Offer, Worth, worths
+from pycore.bench.cause_weighing import weighing_of
+from pycore.bench.look_worth import LEAST_BITS, Offer, Worth, group_bits, worths
 from pycore.case import Case
 from pycore.decimals import fixed, from_float
 from pycore.names import Entry
@@ -39,7 +39,7 @@ def look_section(case: Case) -> SectionAnswer:
         title_params={"look": look_text(best.offer)},
         own={
             **_worth_entry(best),
-            "group_bits": best.group_bits,
+            "group_bits": group_bits(best.offer, weighing),
             "sentence": look_text(best.offer),
             "results": results,
             "others": [_worth_entry(worth) for worth in others[:OTHERS]],
