@@ -206,7 +206,9 @@ def amount_faults(lens: LensOrder) -> Iterator[Fault]:
     across, upright = lens.prism
     oblique = min(abs(across), abs(upright)) > 1e-9
     if oblique:
-        yield prism_fault("amounts-exchanged", lambda prism: np.sign(prism) * np.abs(prism)[:, ::-1])
+        as_numbers = parameter("amounts-exchanged", "as_signed_numbers")
+        yield prism_fault("amounts-exchanged", lambda prism: np.sign(prism) * np.abs(prism)[:, ::-1], 1 - as_numbers)
+        yield prism_fault("amounts-exchanged", lambda prism: prism[:, ::-1], as_numbers, 1)
         yield prism_fault(
             "added-arithmetically",
             lambda prism: prism * (np.abs(prism).sum(1) / np.maximum(np.hypot(prism[:, 0], prism[:, 1]), 1e-12))[:, None],

@@ -169,7 +169,9 @@ def rows_of(pair: PairOrder, source: str, faults: list[Fault], shared: list[Pair
     parts: list[Lenses] = []
     labels: list[tuple[Places, int, Floats]] = []
     for number, fault in enumerate(faults):
-        for take, count in ((every[:1], FINE), (every[1:], COARSE)) if fault.turns else ((every, 1),):
+        # What is unknown stands beside no fault of the pair.
+        contexts = every[:1] if fault.code == "none-of-these" else every
+        for take, count in ((every[:1], FINE), (every[1:], COARSE)) if fault.turns else ((contexts, 1),):
             lenses, weights = fault.make(base.take(take)), np.array([fault.share])
             if fault.turns:
                 turns, weights = angles(fault.code, count)

@@ -68,9 +68,15 @@ def draw_truth(rng: Rng, hypotheses: Hypotheses, *, faulty: bool = False) -> Tru
     while True:
         drawn = [draw_code(rng, hypotheses.prior[part]) for part in ("shared", "right", "left")]
         wrong = sum(code != "as-ordered" for code in drawn)
-        own_beside_both = drawn[0] not in {fault.code for fault in hypotheses.pair} and wrong > 1
-        if wrong <= 2 and not own_beside_both and (wrong or not faulty):
+        if wrong <= 2 and (wrong or not faulty) and not (wrong == 2 and stands_alone(hypotheses, drawn)):
             return truth_of(hypotheses, *drawn)
+
+
+def stands_alone(hypotheses: Hypotheses, drawn: list[str]) -> bool:
+    """Tell whether the shared cause is one of a lens (in both lenses), or an unknown one stands beside it: never with another."""
+    shared, *own = drawn
+    of_lens = shared not in {fault.code for fault in hypotheses.pair}
+    return of_lens or (shared != "as-ordered" and "none-of-these" in own)
 
 
 def draw_code(rng: Rng, prior: dict[str, float]) -> str:
@@ -132,7 +138,8 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
     for eye in EYES:
         lenses = lens_on_table(pair, eye, shared, own, table_turn, rng)
         data[eye], readings[eye] = read_lens(rng, pair, eye, lenses, common)
-    if pair.plan.heights and max(far_off(pair, eye, data[eye]) for eye in EYES) > FARTHEST_SLID_MM:
+    too_far = max(far_off(pair, eye, data[eye]) for eye in EYES) > FARTHEST_SLID_MM
+    if pair.plan.heights and (too_far or max(np.abs(data[eye][PLACE]).max() for eye in EYES) > OFF_THE_LENS_MM):
         pair = replace(pair, plan=replace(pair.plan, heights=False, distances=False))
         hypotheses = hypotheses_of(pair)
         readings = {eye: {name: typed for name, typed in its.items() if not name.endswith("_mm")} for eye, its in readings.items()}
@@ -140,15 +147,14 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
     return Case(pair, hypotheses, truth, data, job)
 
 
-FARTHEST_SLID_MM = 10.0
-OFF_THE_LENS = 0.7  # a place this much farther than the farthest way is never written down, whatever the prism says
+FARTHEST_SLID_MM, OFF_THE_LENS_MM = 10.0, 14.0
 
 
 def far_off(pair: PairOrder, eye: str, values: Floats) -> float:
-    """How far one would have to slide, as the prism read has it; too far and nobody does. (Decided by what was read alone,
-    so that the posterior need not know of it.)"""
+    """How far one would have to slide, as the prism read has it. (Decided by what was read alone, so that the posterior need
+    not know of it.)"""
     way = slid_by(pair.lens(eye).power[None], both=True)[0] @ (values[PRISM] - pair.due(eye))
-    return float(np.abs([*way, *values[PLACE] * OFF_THE_LENS]).max())
+    return float(np.abs(way).max())
 
 
 def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Floats) -> tuple[Floats, Job]:
