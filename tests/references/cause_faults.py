@@ -125,13 +125,13 @@ def point_faults(pair: PairOrder, eye: str) -> Iterator[Fault]:
     if pair.design == "bifocal":
         yield segment_fault(lens, inwards)
     yield at("read-elsewhere", (0.0, 0.0))
-    if np.abs(np.linalg.eigvalsh(lens.power)).min() > 1e-6:
+    if np.any(pair.due(eye)) and np.abs(np.linalg.eigvalsh(lens.power)).min() > 1e-6:
         distance_mm = 10 * np.hypot(*np.linalg.solve(lens.power, pair.due(eye)))
         codes = ("read-at-optical-centre",) * (pair.design != "progressive") + ("target-centred",)
         for code in codes:
             if distance_mm <= parameter(code, "reach_mm"):
                 yield centre_fault(code)
-    if pair.state == "mounted" and eye in read_second(pair):
+    if pair.state == "mounted" and len(pair.plan.eyes) == 2 and eye in read_second(pair):
         spread = parameter("table-moved", "spread_mm")
         yield Fault("table-moved", 1.0, read=lambda lenses: read_off(lenses, np.zeros(2), np.array([0.0, spread])))
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterator
 from dataclasses import dataclass, replace
 from typing import TypeVar
 
@@ -11,7 +12,7 @@ from numpy.typing import NDArray
 
 from tests.references.cause_faults import CAUSES, COARSE, FINE, Fault, angles, lens_faults
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, joined, made, measured, not_square, shown, slid_by, turned, with_zero,
+    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, as_second, joined, made, measured, not_square, shown, slid_by, turned, with_zero,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault, pair_faults
@@ -21,8 +22,16 @@ Places = NDArray[np.int64]
 OTHER = {"right": "left", "left": "right"}
 
 
-def what_is_read(pair: PairOrder) -> NDArray[np.bool_]:
-    """Which of a lens's measurable values this job has."""
+def what_is_read(pair: PairOrder, place: str) -> NDArray[np.bool_]:
+    """Which measurable values this job has of the lens at one place."""
+    read = np.zeros(MEASURED, dtype=bool)
+    if place not in pair.plan.eyes:
+        return read
+    return would_be_read(pair)
+
+
+def would_be_read(pair: PairOrder) -> NDArray[np.bool_]:
+    """Which measurable values this job has of a lens that is read."""
     read = np.zeros(MEASURED, dtype=bool)
     read[PRISM] = True
     read[MEAN], read[CYLINDER] = pair.plan.powers, pair.plan.powers
@@ -37,32 +46,56 @@ class Hypotheses:
 
     lens: dict[str, list[Fault]]
     pair: list[PairFault]
+    beside: list[PairFault]  # a lens's fault in both lenses, where one of them has a second one
     prior: dict[str, dict[str, float]]  # "right", "left", "shared" → code → prior
 
     def same_variant(self, code: str) -> list[tuple[int, int, float]]:
         """Places, among the code's variants of the right and of the left lens, of the variants that both allow; shares."""
-        right, left = ([fault for fault in self.lens[eye] if fault.code == code] for eye in EYES)
-        found = [(i, j, one.share) for i, one in enumerate(right) for j, other in enumerate(left) if one.variant == other.variant]
-        whole = sum(share for _, _, share in found)
-        return [(i, j, share / whole) for i, j, share in found]
+        return same_variant(self.lens, code)
+
+
+def same_variant(lens: dict[str, list[Fault]], code: str) -> list[tuple[int, int, float]]:
+    """See `Hypotheses.same_variant`."""
+    right, left = ([fault for fault in lens[eye] if fault.code == code] for eye in EYES)
+    found = [(i, j, one.share) for i, one in enumerate(right) for j, other in enumerate(left) if one.variant == other.variant]
+    whole = sum(share for _, _, share in found)
+    return [(i, j, share / whole) for i, j, share in found]
+
+
+def in_both(lens: dict[str, list[Fault]], codes: list[str]) -> Iterator[PairFault]:
+    """Faults of a lens in both lenses, to stand beside a further one of either. (Not the turns, of which any two angles go
+    together, nor what is unknown.)"""
+    for code in codes:
+        of_code = {eye: [fault for fault in lens[eye] if fault.code == code] for eye in EYES}
+        if code == "none-of-these" or of_code["right"][0].turns:
+            continue
+        for right, left, share in same_variant(lens, code):
+            one = {"right": of_code["right"][right], "left": of_code["left"][left]}
+            make = {eye: lambda lens, other, act=fault.make: as_second(act(as_second(lens))) for eye, fault in one.items()}
+            read = {eye: lambda lens, act=fault.read: as_second(act(as_second(lens))) for eye, fault in one.items()}
+            yield PairFault(code, share, make, read)
 
 
 def hypotheses_of(pair: PairOrder) -> Hypotheses:
-    """Faults that this job allows and that change something in what is read, and their priors."""
+    """Faults that this job allows and that change something in what is read, and their priors.
+
+    A lens that is not read yet has no faults of its own here; faults of both lenses stay, whatever the other will show.
+    """
     lens = {eye: noticeable(pair, eye, list(lens_faults(pair, eye))) for eye in EYES}
     shared = noticeable_pair(pair, list(pair_faults(pair)))
     codes = {eye: {fault.code for fault in lens[eye]} for eye in EYES}
     prior: dict[str, dict[str, float]] = {"shared": {}}
     for eye in EYES:
-        prior[eye] = {code: CAUSES[code]["prior"] * share_of(code, eye, codes) for code in codes[eye] - {"as-ordered"}}
+        here = codes[eye] - {"as-ordered"} if eye in pair.plan.eyes else set()
+        prior[eye] = {code: CAUSES[code]["prior"] * share_of(code, eye, codes) for code in here}
     for code in {fault.code for fault in shared} - {"as-ordered"}:
         prior["shared"][code] = CAUSES[code]["prior"] * CAUSES[code]["both"]
-    for code in (codes["right"] & codes["left"]) - {"as-ordered"} - prior["shared"].keys():
-        if CAUSES[code]["both"]:
-            prior["shared"][code] = CAUSES[code]["prior"] * CAUSES[code]["both"]
+    common = sorted((codes["right"] & codes["left"]) - {"as-ordered"} - prior["shared"].keys())
+    common = [code for code in common if CAUSES[code]["both"]]
+    prior["shared"] |= {code: CAUSES[code]["prior"] * CAUSES[code]["both"] for code in common}
     for of_one in prior.values():
         of_one["as-ordered"] = 1 - sum(of_one.values())
-    return Hypotheses(lens, shared, prior)
+    return Hypotheses(lens, shared, list(in_both(lens, common)), prior)
 
 
 def predicted(pair: PairOrder, place: str, lenses: Lenses) -> tuple[Floats, Floats]:
@@ -84,13 +117,13 @@ def as_due(pair: PairOrder, place: str) -> tuple[Floats, Floats]:
 
 
 def differs(pair: PairOrder, place: str, lenses: Lenses, due: tuple[Floats, Floats]) -> bool:
-    """Tell whether any of what is read of a lens would differ from what is due (see `as_due`)."""
-    read = what_is_read(pair)
+    """Tell whether anything read of a lens, once it is read, would differ from what is due (see `as_due`)."""
+    read = would_be_read(pair)
     means, loads = predicted(pair, place, lenses)
     due_means, due_loads = due
     free = np.concatenate([loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2)
-    far = [np.abs(part[:, read]).max() > 1e-9 for part in (means - due_means, free)]
-    return bool(far[0] or far[1] or lenses.broad.any())
+    far = [bool((np.abs(part[:, read]) > 1e-9).any()) for part in (means - due_means, free)]
+    return far[0] or far[1] or bool(lenses.broad[:, read].any())
 
 
 def noticeable(pair: PairOrder, eye: str, faults: list[Fault]) -> list[Fault]:
@@ -118,13 +151,14 @@ def noticeable_pair(pair: PairOrder, faults: list[PairFault]) -> list[PairFault]
     lenses, due = {eye: start(pair, eye) for eye in EYES}, {eye: as_due(pair, eye) for eye in EYES}
     changing = []
     for fault in faults[1:]:
-        noticed = False
+        noticed = []
         for place in EYES:
             source = OTHER[place] if fault.crossed else place
             lens = shown(fault.made_as[place](lenses[source], lenses[OTHER[source]]))
             lens = not_square(lens, np.array([3.0])) if fault.turns else fault.read[place](lens)
-            noticed = noticed or bool(fault.zero_variance) or differs(pair, place, with_zero(lens), due[place])
-        if noticed:
+            noticed.append(bool(fault.zero_variance) or differs(pair, place, with_zero(lens), due[place]))
+        # What may also concern one lens alone concerns both only where it changes both.
+        if all(noticed) if fault.layout_variance else any(noticed):
             changing.append(fault)
     return [faults[0], *shared_out(changing)]
 
@@ -183,10 +217,10 @@ def rows_of(pair: PairOrder, source: str, faults: list[Fault], shared: list[Pair
     return Rows(context, fault_number, np.concatenate([label[2] for label in labels]), joined(parts))
 
 
-def contexts_of(shared: list[PairFault]) -> list[list[Context]]:
-    """Each fault of the pair with its angles."""
+def contexts_of(hypotheses: Hypotheses) -> list[list[Context]]:
+    """Each fault of the pair with its angles; then those of a lens in both lenses."""
     found = []
-    for fault in shared:
+    for fault in hypotheses.pair:
         if fault.turns:
             fine, coarse = angles(fault.code, FINE), angles(fault.code, COARSE)
             found.append(
@@ -195,7 +229,7 @@ def contexts_of(shared: list[PairFault]) -> list[list[Context]]:
             )
         else:
             found.append([Context(fault, math.log(fault.share))])
-    return found
+    return found + [[Context(fault, math.log(fault.share), beside=True)] for fault in hypotheses.beside]
 
 
 def read_at_places(sources: dict[str, Rows], shared: list[PairFault], contexts: list[list[Context]]) -> dict[str, Rows]:

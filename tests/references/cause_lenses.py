@@ -2,7 +2,8 @@
 
 A `Lenses` value is one lens under N hypotheses (first index). What is free (a displacement, a zero error) enters as
 loadings on latent values with independent normal priors: four that both lenses may have in common (the zero's x and y, a
-layout error, the thinning where it is not known), three of the lens's own (two lengths, a power). Prism in Δ seen from the
+layout error, the thinning where it is not known), three of the lens's own fault (two lengths, a power), and three of a
+second fault that it has beside it. Prism in Δ seen from the
 front, x right, y up; powers in D; lengths in mm.
 
 Sources: p(r) = p0 − F r ("A matrix formalism for decentration problems", AJOPO 1976;53:27-33); a turn changes F to R F Rᵀ;
@@ -18,7 +19,9 @@ from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
 ZERO, LAYOUT, THINNING, OWN, POWER = slice(0, 2), 2, 3, slice(4, 6), 6
-COMMON, LATENTS = 4, 7
+COMMON, LATENTS = 4, 10
+OWN_LATENTS = LATENTS - COMMON
+SECOND = np.array([0, 1, 2, 3, 7, 8, 9, 4, 5, 6])  # the latents with those of the own and of the second fault exchanged
 PRISM, MEAN, CYLINDER, ADD, PLACE = slice(0, 2), 2, slice(3, 5), 5, slice(6, 8)
 MEASURED = 8  # prism x and y, mean power, both parts of the cylinder, add, place x and y
 MIRROR = np.array([-1.0, 1.0])
@@ -35,7 +38,7 @@ class Lenses:
     power: Floats  # N × 2 × 2, of the lens as it lies
     add: Floats  # N
     moved: Floats  # N × 2 × latents: what a displacement adds at the ordered point
-    own_variance: Floats  # N × 3, of the lens's own latents
+    own_variance: Floats  # N × 6, of the lens's own latents
     at_point: Floats  # N × 2, prism at the ordered point of the frame
     at_point_load: Floats
     read: Floats  # N × 2, prism read
@@ -62,9 +65,20 @@ def made(prism: Floats, thinning: Floats, thinning_load: Floats, power: Floats, 
     nothing, no_load = np.zeros((1, 2)), np.zeros((1, 2, LATENTS))
     return Lenses(
         prism=prism[None], thinning=thinning[None], thinning_load=thinning_load[None], power=power[None], add=np.array([add]),
-        moved=no_load, own_variance=np.zeros((1, 3)), at_point=nothing, at_point_load=no_load, read=nothing, read_load=no_load,
+        moved=no_load, own_variance=np.zeros((1, OWN_LATENTS)), at_point=nothing, at_point_load=no_load, read=nothing, read_load=no_load,
         seen=power[None], mean_shift=np.zeros(1), broad=np.zeros((1, MEASURED)),
     )  # fmt: skip
+
+
+def as_second(lenses: Lenses) -> Lenses:
+    """The latents of the lens's own and of its second fault exchanged: an act between two exchanges is the second's."""
+    return replace(
+        lenses,
+        moved=lenses.moved[:, :, SECOND],
+        at_point_load=lenses.at_point_load[:, :, SECOND],
+        read_load=lenses.read_load[:, :, SECOND],
+        own_variance=lenses.own_variance[:, SECOND[COMMON:] - COMMON],
+    )
 
 
 # --- making and layout ----------------------------------------------------------------------------------------------------
@@ -194,7 +208,7 @@ def measured(lenses: Lenses, due: Floats, to_mm: Floats) -> tuple[Floats, Floats
     means, loads = np.zeros((len(lenses), MEASURED)), np.zeros((len(lenses), MEASURED, LATENTS))
     means[:, PRISM], loads[:, PRISM] = lenses.read, lenses.read_load
     means[:, MEAN] = np.trace(lenses.seen, axis1=1, axis2=2) / 2 + lenses.mean_shift
-    loads[:, MEAN, POWER] = 1
+    loads[:, MEAN, [POWER, SECOND[POWER]]] = 1
     means[:, CYLINDER] = cylinder_parts(lenses.seen)
     means[:, ADD] = lenses.add
     means[:, PLACE] = times(to_mm, lenses.at_point - due)

@@ -67,6 +67,7 @@ class Bench:
 class Plan:
     """What is read of the pair: `times` each prism; what stands on the compensator's scale (Δ), where one is set."""
 
+    eyes: tuple[str, ...]
     powers: bool
     heights: bool
     distances: bool
@@ -150,6 +151,7 @@ def draw_pair(rng: Rng) -> PairOrder:
     meter = draw_bench(rng)
     places = state == "mounted" and amount is not None and min(weakest(right), weakest(left)) >= 1 and rng.random() < 0.3
     plan = Plan(
+        eyes=pick(rng, (EYES, EYES[:1], EYES[1:]), (0.92, 0.05, 0.03)),
         powers=rng.random() < 0.8,
         heights=places,
         distances=places and rng.random() < 0.6,

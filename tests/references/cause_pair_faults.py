@@ -51,7 +51,7 @@ def pair_faults(pair: PairOrder) -> Iterator[PairFault]:
     yield pair_fault("as-ordered")
     for code in ("instrument-zero",) + ("compensator-left-on",) * (pair.bench.kind == "manual"):
         yield pair_fault(code, zero_variance=parameter(code, "prism") ** 2)
-    if pair.plan.scales:
+    if pair.plan.scales.keys() & set(pair.plan.eyes):
         taken = {eye: 2 * taken_by_scale(pair, eye) for eye in EYES}
         yield pair_fault("compensator-wrong-sense", read={eye: lambda lenses, c=c: offset(lenses, c) for eye, c in taken.items()})
     if pair.state == "mounted":

@@ -10,7 +10,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, cached_property
 
 import numpy as np
 
@@ -75,7 +75,7 @@ class Evidence:
 
 def evidence_of(pair: PairOrder, place: str, rows: Rows, data: Floats) -> Evidence:
     """The likelihood of one lens's readings under each row, its own latent values integrated out."""
-    read = what_is_read(pair)
+    read = what_is_read(pair, place)
     means, loads = predicted(pair, place, rows.lenses)
     noise = noise_of(pair, rows.lenses)
     means, loads, noise = means[:, read], loads[:, read], noise[:, read][:, :, read]
@@ -123,22 +123,31 @@ class Posterior:
     entries: dict[Entry, float]
     likelihood: dict[Entry, float]
 
-    def group(self, entry: Entry) -> frozenset[Entry]:
-        """All entries that predict the same as this one: equal likelihoods of readings that are as good as continuous."""
-        own = self.likelihood[entry]
-        within = 1e-7 * max(1.0, abs(own))
-        return frozenset(other for other, value in self.likelihood.items() if other == entry or abs(value - own) < within)
+    @cached_property
+    def groups(self) -> dict[Entry, frozenset[Entry]]:
+        """Each entry's group, all that predict the same: equal likelihoods of readings that are as good as continuous."""
+        possible = sorted((value, entry) for entry, value in self.likelihood.items() if value > -math.inf)
+        groups: list[list[Entry]] = []
+        for (value, entry), (before, _) in zip(possible, [(-math.inf, AS_ORDERED), *possible], strict=False):
+            if value - before < 1e-7 * max(1.0, abs(value)):
+                groups[-1].append(entry)
+            else:
+                groups.append([entry])
+        found = {entry: frozenset([entry]) for entry in self.likelihood}
+        for group in groups:
+            found |= dict.fromkeys(group, frozenset(group))
+        return found
 
 
 def posterior(pair: PairOrder, hypotheses: Hypotheses, data: dict[str, Floats]) -> Posterior:
     """Which faults, given the data (measured values of each place; what is not read in this job is never looked at)."""
-    contexts = contexts_of(hypotheses.pair)
-    sources = {eye: rows_of(pair, eye, hypotheses.lens[eye], hypotheses.pair) for eye in EYES}
-    rows = read_at_places(sources, hypotheses.pair, contexts)
+    contexts, shared = contexts_of(hypotheses), hypotheses.pair + hypotheses.beside
+    sources = {eye: rows_of(pair, eye, hypotheses.lens[eye], shared) for eye in EYES}
+    rows = read_at_places(sources, shared, contexts)
     evidence = {eye: evidence_of(pair, eye, rows[eye], data[eye]) for eye in EYES}
     parts = lens_by_lens(pair, hypotheses, rows, evidence)
     first = len(contexts[0])
-    for fault, its in zip(hypotheses.pair[1:], contexts[1:], strict=True):
+    for fault, its in zip(shared[1:], contexts[1:], strict=True):
         log_weights = np.array([context.weight for context in its])
         beside = np.array([context.beside for context in its])
         parts += within_pair_fault(pair, hypotheses, fault, rows, evidence, first, log_weights, beside)
@@ -167,6 +176,8 @@ def lens_by_lens(pair: PairOrder, hypotheses: Hypotheses, rows: dict[str, Rows],
     none = prior["shared"]["as-ordered"]
     for a, right_code in enumerate(names["right"]):
         for b, left_code in enumerate(names["left"]):
+            if right_code not in prior["right"] or left_code not in prior["left"]:
+                continue
             before = math.log(none * prior["right"][right_code] * prior["left"][left_code])
             parts.append((entry_of("as-ordered", right_code, left_code), before, log_of(blocks[a, b]) + peak))
     alone = prior["right"]["as-ordered"] * prior["left"]["as-ordered"]
@@ -213,6 +224,8 @@ def within_pair_fault(
         if label:
             place = "right" if label < beyond else "left"
             own[at[place]] = codes[place][label - beyond * (place == "left")]
+        if any(code not in prior[eye] for eye, code in own.items()):
+            continue
         before = prior["shared"][fault.code] * prior["right"][own["right"]] * prior["left"][own["left"]]
         parts.append((entry_of(fault.code, own["right"], own["left"]), math.log(before), float(found)))
     return parts

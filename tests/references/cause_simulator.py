@@ -65,18 +65,19 @@ def truth_of(hypotheses: Hypotheses, shared: str, right: str, left: str) -> Trut
 
 def draw_truth(rng: Rng, hypotheses: Hypotheses, *, faulty: bool = False) -> Truth:
     """From the priors; never three faults at once. `faulty`: given that something is wrong."""
+    beside = {fault.code for fault in hypotheses.beside}
     while True:
         drawn = [draw_code(rng, hypotheses.prior[part]) for part in ("shared", "right", "left")]
         wrong = sum(code != "as-ordered" for code in drawn)
         if wrong <= 2 and (wrong or not faulty) and not (wrong == 2 and stands_alone(hypotheses, drawn)):
-            return truth_of(hypotheses, *drawn)
+            return Truth(*drawn) if wrong == 2 and drawn[0] in beside else truth_of(hypotheses, *drawn)
 
 
 def stands_alone(hypotheses: Hypotheses, drawn: list[str]) -> bool:
-    """Tell whether the shared cause is one of a lens (in both lenses), or an unknown one stands beside it: never with another."""
+    """Tell whether a shared cause is one that stands beside no other, or an unknown one would stand beside it."""
     shared, *own = drawn
-    of_lens = shared not in {fault.code for fault in hypotheses.pair}
-    return of_lens or (shared != "as-ordered" and "none-of-these" in own)
+    beside_others = shared in {fault.code for fault in hypotheses.pair + hypotheses.beside}
+    return not beside_others or (shared != "as-ordered" and "none-of-these" in own)
 
 
 def draw_code(rng: Rng, prior: dict[str, float]) -> str:
@@ -125,7 +126,7 @@ def lens_on_table(pair: PairOrder, place: str, shared: PairFault, own: dict[str,
 
 def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) -> Case:
     """Make the pair with that fault, read it, write the readings down."""
-    shared = draw_variant(rng, hypotheses.pair, truth.shared)
+    shared = draw_variant(rng, hypotheses.pair + hypotheses.beside, truth.shared)
     own = {eye: draw_variant(rng, hypotheses.lens[eye], getattr(truth, eye)) for eye in EYES}
     if truth.both:
         variants = [[fault for fault in hypotheses.lens[eye] if fault.code == truth.right] for eye in EYES]
@@ -143,7 +144,7 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
         pair = replace(pair, plan=replace(pair.plan, heights=False, distances=False))
         hypotheses = hypotheses_of(pair)
         readings = {eye: {name: typed for name, typed in its.items() if not name.endswith("_mm")} for eye, its in readings.items()}
-    job = document(pair) | {"readings": {"at": "marked-point", **readings}}
+    job = document(pair) | {"readings": {"at": "marked-point", **{eye: readings[eye] for eye in pair.plan.eyes}}}
     return Case(pair, hypotheses, truth, data, job)
 
 

@@ -14,6 +14,7 @@ from typing import Any
 import numpy as np
 
 from pycore.api import handle
+from tests.references.cause_faults import CAUSES
 from tests.references.cause_orders import EYES, draw_pair
 from tests.references.cause_hypotheses import hypotheses_of
 from tests.references.cause_posterior import AS_ORDERED, Entry, Member, Posterior, posterior
@@ -37,7 +38,7 @@ class Judged:
         left, found = dict(self.tested), []
         while left:
             entry = next(iter(left))
-            group = self.own.group(entry) if entry in self.own.likelihood else frozenset([entry])
+            group = self.own.groups.get(entry, frozenset([entry]))
             found.append((sum(left.pop(member, 0.0) for member in group), group))
         return sorted(found, key=lambda item: -item[0])
 
@@ -63,8 +64,9 @@ def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
 
 
 def member_of(part: dict[str, Any]) -> Member:
-    """One cause of an entry with its eyes, right first; what is no cause concerns both."""
-    both = part["code"] in ("as-ordered", "all-others")
+    """One cause of an entry with its eyes, right first; what is no cause, or one of the pair only, concerns both."""
+    code = part["code"]
+    both = code not in CAUSES or CAUSES[code]["both"] == 1
     return part["code"], EYES if both else tuple(eye for eye in EYES if eye in part["eyes"])
 
 
@@ -151,7 +153,7 @@ def ranks(judged: list[Judged], sure: float = 0.9) -> Ranks:
     """Rank of the injected group in the tested list."""
     places = []
     for job in judged:
-        group = job.own.group(job.truth)
+        group = job.own.groups[job.truth]
         if sum(job.own.entries[entry] for entry in group) >= sure:
             ranked = [job.truth in tested for _, tested in job.groups()]
             places.append(ranked.index(True) if any(ranked) else len(ranked))
