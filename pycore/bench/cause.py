@@ -58,7 +58,8 @@ NO_CAUSE = Own(None, 0, 1.0)
 class Bench:
     """The lenses of one job with their gauges: all that weighing needs.
 
-    `zero` the standard uncertainty of the instrument's zero, prism dioptres; `free_height` where
+    `held` are the lenses ordered, `gauges` those of which something was read: what is ordered for
+    the other one counts where both were exchanged. `zero` the standard uncertainty of the instrument's zero, prism dioptres; `free_height` where
     the height read at is common but not known.
     """
 
@@ -122,7 +123,7 @@ class Bench:
             cause = self.table.causes[common.code]
             # What can be in one lens alone is in both only if it changes something in both.
             enough = all if cause.right or cause.left else any
-            if enough([self._changes(none, common, eye) for eye in self.held]):
+            if enough([self._changes(none, common, eye) for eye in self.gauges]):
                 kept.setdefault(common.code, []).append(common)
         found = []
         for code, variants in kept.items():
@@ -177,7 +178,7 @@ def weigh(bench: Bench) -> list[Story]:
     Arguments: `bench`. Returns the hypotheses; their probabilities sum to 1.
     """
     none, *shared = bench.commons()
-    owns = {eye: bench.owns(none, eye) for eye in bench.held}
+    owns = {eye: bench.owns(none, eye) for eye in bench.gauges}
     found = [*_without_shared(bench, none, owns)]
     alone = [(common, _alone(bench, common, owns)) for common in shared]
     found += [(common, own, weight) for common, (own, weight, _) in alone]
@@ -289,11 +290,11 @@ def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
     """
     table = cause_table().in_state(job.state)
     held = held_lenses(job, dues)
-    held = {eye: one for eye, one in held.items() if one.seen.size}
-    if not held:
+    seen = {eye: one for eye, one in held.items() if one.seen.size}
+    if not seen:
         return None
-    if len(held) == 1:  # nothing was read before or after it
+    if len(seen) == 1:  # nothing was read before or after it
         held = {eye: one._replace(site=one.site._replace(second=0.0)) for eye, one in held.items()}
-    gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in held.items()}
+    gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in seen.items()}
     zero = float(job.instrument.uncertainty.zero)
     return Bench(held, gauges, table, zero, height_is_free(job))

@@ -80,7 +80,7 @@ def rank(bench: Bench, stories: Sequence[Story]) -> Ranking:
     told: dict[Label, list[Story]] = {}
     for story in stories:
         told.setdefault(label_of(story), []).append(story)
-    eyes = tuple(bench.held)
+    eyes = tuple(bench.gauges)
     for code in (AS_ORDERED, NONE_OF_THESE):
         if not any(len(label) == 1 and label[0].code == code for label in told):
             told[(Named(code, eyes),)] = []

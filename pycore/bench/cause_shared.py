@@ -73,15 +73,14 @@ def _in_both(cause: Cause, held: Mapping[Eye, Held], due: Pair) -> list[Common]:
     effect = EFFECTS[cause.code]
     made = {eye: effect(due[eye], held[eye].site, cause) for eye in held}
     count = min(map(len, made.values()))
-    if cause.place != "bench":
+    shares = [share for share, _ in next(iter(made.values()))]
+    if cause.place == "bench":
         return [
-            _variant(cause, at, made[eye][at][0], {eye: made[eye][at][1] for eye in held})
+            _variant(cause, at, shares[at], due, after=_again(cause, held, at))
             for at in range(count)
-            for eye in list(held)[:1]
         ]
-    return [
-        _variant(cause, at, 1.0 / count, due, after=_again(cause, held, at)) for at in range(count)
-    ]
+    lenses = [{eye: made[eye][at][1] for eye in held} for at in range(count)]
+    return [_variant(cause, at, shares[at], lenses[at]) for at in range(count)]
 
 
 def _again(cause: Cause, held: Mapping[Eye, Held], at: int) -> After:

@@ -47,7 +47,7 @@ def offers(job: Job, bench: Bench) -> list[Offer]:
     taken = {(look.look, None if look.look in OF_THE_PAIR else look.eye) for look in job.looks}
     found: list[Offer] = []
     for code, table in look_tables().items():
-        eyes: tuple[Eye | None, ...] = (None,) if code in OF_THE_PAIR else tuple(bench.held)
+        eyes: tuple[Eye | None, ...] = (None,) if code in OF_THE_PAIR else tuple(bench.gauges)
         found += [
             Offer(table, eye)
             for eye in eyes

@@ -90,7 +90,7 @@ def _entries(weighing: Weighing, offered: Sequence[Offer]) -> Iterator[Entry]:
     if rest > 0.0:
         yield {
             "code": "all-others",
-            "eyes": list(weighing.bench.held),
+            "eyes": list(weighing.bench.gauges),
             "with": [],
             "probability": rest,
             "residual": None,
