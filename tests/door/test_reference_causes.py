@@ -63,7 +63,7 @@ def test_the_simulator_is_calibrated_on_its_own_jobs() -> None:
 
 
 def test_the_simulators_evidence_is_a_normal_density() -> None:
-    """"As ordered" without zero uncertainty, powers or heights: prism of both lenses, against scipy's density."""
+    """ "As ordered" without zero uncertainty, powers or heights: prism of both lenses, against scipy's density."""
     rng, checked = np.random.default_rng(3), 0
     while checked < 5:
         case: Case = draw_case(rng)

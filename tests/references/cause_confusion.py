@@ -15,7 +15,17 @@ from multiprocessing import get_context
 
 from tests.references.cause_faults import CAUSES
 from tests.references.cause_statistics import (
-    ALL_OTHERS, AS_ORDERED, Judged, Ranks, Reliability, by_cause, confusion, falsely_accused, from_priors, ranks, reliability,
+    ALL_OTHERS,
+    AS_ORDERED,
+    Judged,
+    Ranks,
+    Reliability,
+    by_cause,
+    confusion,
+    falsely_accused,
+    from_priors,
+    ranks,
+    reliability,
 )  # fmt: skip
 
 # Promised: what stands first, among the first three; calibration; accusing a correct pair.
@@ -44,8 +54,8 @@ class Figures:
             f"first in {self.ranks.first:.4f}": self.ranks.first >= LEAST_FIRST,
             f"among the first three in {self.ranks.among_three:.4f}": self.ranks.among_three >= LEAST_AMONG_THREE,
             f"calibration error {self.first.error:.4f}": self.first.error <= LARGEST_ERROR,
-            f"calibration error of accusations {self.accusing.error:.4f}":
-                self.accusing.error <= LARGEST_ERROR + self.accusing.by_chance,
+            f"calibration error of accusations {self.accusing.error:.4f}": self.accusing.error
+            <= LARGEST_ERROR + self.accusing.by_chance,
             f"correct pairs accused {self.accused:.4f}": self.accused <= LARGEST_ACCUSED,
         }
         return [figure for figure, holds in held.items() if not holds]
@@ -75,7 +85,9 @@ def piece(task: tuple[str, int, int, bool]) -> tuple[bool, list[Judged]]:
 
 def measure(count: int, seed: int, *, program: bool = True) -> Figures:
     """Simulate about `count` jobs in all and judge them, in as many processes as there are processors."""
-    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")  # small matrices: threads get in one another's way; read at a process's start
+    os.environ.setdefault(
+        "OPENBLAS_NUM_THREADS", "1"
+    )  # small matrices: threads get in one another's way; read at a process's start
     each = max(1, round(count / 2 / len(CODES)))
     pieces = max(1, round(count / 2 / PIECE))
     tasks = [("", PIECE, 1000 * seed + number, program) for number in range(pieces)]

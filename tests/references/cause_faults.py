@@ -17,10 +17,26 @@ import numpy as np
 import pycore
 from tests.references import bench_reference as bench
 from tests.references.cause_lenses import (
-    COMMON, FLIP, MEASURED, MIRROR, PRISM, Floats, Lenses, displaced, read_at_centre, read_from_front, read_mirrored, read_off,
+    COMMON,
+    FLIP,
+    MEASURED,
+    MIRROR,
+    PRISM,
+    Floats,
+    Lenses,
+    displaced,
+    read_at_centre,
+    read_from_front,
+    read_mirrored,
+    read_off,
 )  # fmt: skip
 from tests.references.cause_orders import (
-    EYES, SEGMENT_BELOW_MM, SEGMENT_CENTRE_BELOW_TOP_MM, SEGMENT_INSET_MM, LensOrder, PairOrder,
+    EYES,
+    SEGMENT_BELOW_MM,
+    SEGMENT_CENTRE_BELOW_TOP_MM,
+    SEGMENT_INSET_MM,
+    LensOrder,
+    PairOrder,
 )  # fmt: skip
 
 TABLE: dict[str, Any] = json.loads((Path(pycore.__file__).parent / "bench" / "cause_table.json").read_text("utf-8"))
@@ -78,12 +94,12 @@ def lens_faults(pair: PairOrder, eye: str) -> Iterator[Fault]:
     """Every fault of one lens that this job allows, as ordered first."""
     yield Fault("as-ordered", 1.0)
     yield from point_faults(pair, eye)
-    yield from reading_faults(pair, eye)
+    yield from reading_faults(pair)
     if pair.state != "uncut":
         yield from layout_faults()
     lens = pair.lens(eye)
     if np.any(lens.prism):
-        yield from base_faults(lens)
+        yield from base_faults()
         yield from amount_faults(lens)
     if pair.thinning_amount:
         yield thinning_fault("thinning-one-lens", 0.0)
@@ -161,9 +177,8 @@ def read_second(pair: PairOrder) -> tuple[str, ...]:
     return tuple(eye for eye in EYES if strength[eye] == min(strength.values()))
 
 
-def reading_faults(pair: PairOrder, eye: str) -> Iterator[Fault]:
+def reading_faults(pair: PairOrder) -> Iterator[Fault]:
     """Read with the lens or the key the wrong way round."""
-    del eye
     spread = parameter("read-from-front", "usual_power_d")
     yield Fault("read-from-front", 1.0, read=lambda lenses: read_from_front(lenses, 0.0, spread))
     if pair.bench.kind == "automatic":
@@ -187,7 +202,7 @@ def layout_faults() -> Iterator[Fault]:
     yield Fault("lens-rotated", 1.0, turns=True)
 
 
-def base_faults(lens: LensOrder) -> Iterator[Fault]:
+def base_faults() -> Iterator[Fault]:
     """The prism's amount right, its base wrong."""
     yield prism_fault("base-reversed", lambda prism: -prism)
     yield prism_fault("side-word-wrong", lambda prism: -prism)
@@ -222,7 +237,11 @@ def amount_faults(lens: LensOrder) -> Iterator[Fault]:
 def cylinder_faults(lens: LensOrder) -> Iterator[Fault]:
     """A step of the transposition forgotten, or the sign."""
     sphere, cylinder, axis_deg = lens.sphere, lens.cylinder, lens.axis_deg
-    steps = ((sphere, -cylinder, axis_deg + 90), (sphere + cylinder, cylinder, axis_deg + 90), (sphere + cylinder, -cylinder, axis_deg))
+    steps = (
+        (sphere, -cylinder, axis_deg + 90),
+        (sphere + cylinder, cylinder, axis_deg + 90),
+        (sphere + cylinder, -cylinder, axis_deg),
+    )
     for variant, power in enumerate(steps):
         yield power_fault("cylinder-transposition", power, 1 / 3, variant)
     yield power_fault("cylinder-sign", (sphere, -cylinder, axis_deg))

@@ -12,7 +12,24 @@ from numpy.typing import NDArray
 
 from tests.references.cause_faults import CAUSES, COARSE, FINE, Fault, angles, lens_faults
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, Lenses, Floats, as_second, joined, made, measured, not_square, shown, slid_by, turned, with_zero,
+    ADD,
+    COMMON,
+    CYLINDER,
+    MEAN,
+    MEASURED,
+    PLACE,
+    PRISM,
+    Floats,
+    Lenses,
+    as_second,
+    joined,
+    made,
+    measured,
+    not_square,
+    shown,
+    slid_by,
+    turned,
+    with_zero,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault, pair_faults
@@ -71,7 +88,7 @@ def in_both(lens: dict[str, list[Fault]], codes: list[str]) -> Iterator[PairFaul
             continue
         for right, left, share in same_variant(lens, code):
             one = {"right": of_code["right"][right], "left": of_code["left"][left]}
-            make = {eye: lambda lens, other, act=fault.make: as_second(act(as_second(lens))) for eye, fault in one.items()}
+            make = {eye: lambda lens, _other, act=fault.make: as_second(act(as_second(lens))) for eye, fault in one.items()}
             read = {eye: lambda lens, act=fault.read: as_second(act(as_second(lens))) for eye, fault in one.items()}
             yield PairFault(code, share, make, read)
 
@@ -121,7 +138,9 @@ def differs(pair: PairOrder, place: str, lenses: Lenses, due: tuple[Floats, Floa
     read = would_be_read(pair)
     means, loads = predicted(pair, place, lenses)
     due_means, due_loads = due
-    free = np.concatenate([loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2)
+    free = np.concatenate(
+        [loads[:, :, :COMMON] - due_loads[:, :, :COMMON], loads[:, :, COMMON:] * lenses.own_variance[:, None, :]], 2
+    )
     far = [bool((np.abs(part[:, read]) > 1e-9).any()) for part in (means - due_means, free)]
     return far[0] or far[1] or bool(lenses.broad[:, read].any())
 
@@ -247,7 +266,9 @@ def read_at_places(sources: dict[str, Rows], shared: list[PairFault], contexts: 
                 parts[place].append((np.full(len(here), first), rows.fault[here], rows.weight[here], lenses))
         first += len(contexts[number])
     return {
-        place: Rows(*(np.concatenate([part[field] for part in of_place]) for field in range(3)), joined([part[3] for part in of_place]))  # type: ignore[misc]
+        place: Rows(
+            *(np.concatenate([part[field] for part in of_place]) for field in range(3)), joined([part[3] for part in of_place])
+        )  # type: ignore[misc]
         for place, of_place in parts.items()
     }
 

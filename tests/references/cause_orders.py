@@ -16,7 +16,6 @@ from numpy.typing import NDArray
 from tests.references import bench_reference as bench
 
 Floats = NDArray[np.float64]
-Job = dict[str, Any]
 Rng = np.random.Generator
 EYES = ("right", "left")
 THINNED = ("bifocal", "progressive")
@@ -130,7 +129,7 @@ def draw_pair(rng: Rng) -> PairOrder:
     add = 0.0 if design == "single-vision" else float(rng.integers(3, 13)) / 4
     sphere = quarter(np.clip(rng.normal(-1.0, 2.5), -8, 7))
     cylinder = 0.0 if rng.random() < 0.25 else -min(quarter(rng.exponential(0.9)) + 0.25, 4.0)
-    axis = int(round(pick(rng, (180.0, 90.0, rng.uniform(0, 180)), (0.5, 0.25, 0.25)) + rng.normal(0, 12))) % 180 or 180
+    axis = round(pick(rng, (180.0, 90.0, rng.uniform(0, 180)), (0.5, 0.25, 0.25)) + rng.normal(0, 12)) % 180 or 180
     components = draw_prism(rng)
     half_pd, box = rng.uniform(28.5, 34.5), (rng.integers(48, 59), rng.integers(28, 47), rng.integers(14, 25))
     height = half_mm(box[1] / 2 + rng.uniform(-1, 3))
@@ -141,7 +140,7 @@ def draw_pair(rng: Rng) -> PairOrder:
     )  # fmt: skip
     left = LensOrder(
         eye="left", sphere=sphere + quarter(rng.normal(0, 0.6)), cylinder=min(0.0, cylinder + quarter(rng.normal(0, 0.3))),
-        axis_deg=int(round(180 - axis + rng.normal(0, 8))) % 180 or 180, add=add, components=written(rng, "left", components[1]),
+        axis_deg=round(180 - axis + rng.normal(0, 8)) % 180 or 180, add=add, components=written(rng, "left", components[1]),
         pd_mm=half_mm(half_pd + rng.normal(0, 0.7)), height_mm=height + float(rng.choice([0, 0, 0, 0.5, -0.5])), cross_mm=cross,
     )  # fmt: skip
     rule, amount = draw_thinning(rng, design, add)
@@ -243,57 +242,3 @@ def draw_bench(rng: Rng) -> Bench:
     if rng.random() < 0.7:
         return Bench(kind="manual", prism_step=0.25, prism=0.08, power_d=0.04, axis_deg=1.0, position_mm=0.3, zero=zero)
     return Bench(kind="automatic", prism_step=0.01, prism=0.05, power_d=0.03, axis_deg=1.0, position_mm=0.3, zero=zero)
-
-
-# --- as the job document ------------------------------------------------------------------------------------------------
-
-
-def signed(value: float) -> str:
-    """A power as typed: "+0.25", "-1.00", "0.00"."""
-    return f"{value:+.2f}" if round(value, 2) else "0.00"
-
-
-def document(pair: PairOrder) -> Job:
-    """The pair as a job without readings. Numbers as text, as they are typed."""
-    thinning: Job = {"rule": pair.rule}
-    if pair.rule == "amount":
-        thinning |= {"amount": f"{pair.thinning_amount:.2f}", "base": "down"}
-    job: Job = {
-        "format": "wedgewright.job/1",
-        "state": pair.state,
-        "lens": {"design": pair.design},
-        "frame": dict(zip(("a_mm", "b_mm", "dbl_mm"), map(str, pair.box_mm), strict=True)),
-        "instrument": {
-            "kind": pair.bench.kind,
-            "prism_step": str(pair.bench.prism_step),
-            "compensator": "lens-prism",
-            "compensator_maximum": "15",
-            "uncertainty": {name: str(getattr(pair.bench, name)) for name in ("prism", "power_d", "axis_deg", "position_mm")},
-            "zero_uncertainty": str(pair.bench.zero),
-        },
-    }
-    if pair.design in THINNED:
-        job["thinning"] = thinning
-    for lens in pair.lenses:
-        job[lens.eye] = target(lens.asked or lens) | {"pd_mm": str(lens.pd_mm), "prp_height_mm": str(lens.height_mm)}
-        if lens.asked:
-            job[lens.eye]["stated"] = target(lens)
-        if pair.design == "bifocal":
-            job[lens.eye]["segment"] = {
-                "shape": "flat-top", "width_mm": "28", "inset_mm": str(SEGMENT_INSET_MM), "height_mm": str(lens.height_mm - SEGMENT_BELOW_MM),
-                "centre_below_top_mm": str(SEGMENT_CENTRE_BELOW_TOP_MM),
-            }  # fmt: skip
-        if pair.design == "progressive":
-            job[lens.eye] |= {"cross_above_prp_mm": str(lens.cross_mm), "fitting_height_mm": str(lens.height_mm + lens.cross_mm)}
-    return job
-
-
-def target(lens: LensOrder) -> Job:
-    """Powers, add and prism of one lens, as typed."""
-    typed: Job = {"sphere": signed(lens.sphere), "cylinder": signed(lens.cylinder)}
-    typed["prism"] = [{"amount": f"{amount:.2f}", "base": base} for amount, base in lens.components] or [{"amount": "0", "base": "0"}]
-    if lens.cylinder:
-        typed["axis"] = str(lens.axis_deg)
-    if lens.add:
-        typed["add"] = f"{lens.add:.2f}"
-    return typed

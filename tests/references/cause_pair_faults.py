@@ -14,7 +14,6 @@ from tests.references.cause_lenses import LAYOUT, MIRROR, Floats, Lenses, displa
 from tests.references.cause_orders import EYES, LensOrder, PairOrder
 
 
-
 @dataclass(frozen=True)
 class PairFault:
     """One fault of the pair: what each lens is made as, what is done to it on the lens meter."""
@@ -29,9 +28,8 @@ class PairFault:
     layout_variance: float = 0.0
 
 
-def own(lens: Lenses, other: Lenses) -> Lenses:
+def own(lens: Lenses, _other: Lenses) -> Lenses:
     """This place's lens."""
-    del other
     return lens
 
 
@@ -76,7 +74,7 @@ def body(lens: Lenses) -> dict[str, Any]:
 
 def as_prescribed(asked: LensOrder) -> Callable[[Lenses, Lenses], Lenses]:
     """The lens made to the prescription, not to the maker's values."""
-    return lambda lens, other: replace(lens, prism=asked.prism[None], power=asked.power[None])
+    return lambda lens, _other: replace(lens, prism=asked.prism[None], power=asked.power[None])
 
 
 def taken_by_scale(pair: PairOrder, eye: str) -> Floats:
@@ -91,7 +89,7 @@ def shared_layout() -> Iterator[PairFault]:
         ("layout-pd-wrong", {eye: np.array([towards_nose(eye), 0.0]) for eye in EYES}),
         ("layout-height-wrong", {eye: np.array([0.0, 1.0]) for eye in EYES}),
     ):
-        make = {eye: lambda lens, other, way=way: displaced(lens, way, LAYOUT, 0.0) for eye, way in directions.items()}
+        make = {eye: lambda lens, _other, way=way: displaced(lens, way, LAYOUT, 0.0) for eye, way in directions.items()}
         yield pair_fault(code, make=make, layout_variance=parameter(code, "spread_mm") ** 2)
 
 
@@ -101,9 +99,9 @@ def shared_prism(pair: PairOrder) -> Iterator[PairFault]:
     yield pair_fault("eyes-swapped-in-words", make=lambda lens, other: replace(lens, prism=other.prism * MIRROR))
     for whole in EYES:
         prisms = {eye: ((right - left) if eye == "right" else (left - right)) * (eye == whole) for eye in EYES}
-        make = {eye: lambda lens, other, prism=prism: replace(lens, prism=prism[None]) for eye, prism in prisms.items()}
+        make = {eye: lambda lens, _other, prism=prism: replace(lens, prism=prism[None]) for eye, prism in prisms.items()}
         yield pair_fault("not-split", 1 / 2, make=make)
-    yield pair_fault("split-twice", make=lambda lens, other: replace(lens, prism=lens.prism / 2))
+    yield pair_fault("split-twice", make=lambda lens, _other: replace(lens, prism=lens.prism / 2))
 
 
 def shared_thinning(pair: PairOrder) -> Iterator[PairFault]:
@@ -113,7 +111,7 @@ def shared_thinning(pair: PairOrder) -> Iterator[PairFault]:
     others = [amount for amount in rules if abs(amount - due) > 0.05 + 1e-9]
 
     def thinned(code: str, amount: float, share: float = 1.0) -> PairFault:
-        return pair_fault(code, share, make=lambda lens, other: replace(lens, thinning=np.array([[0.0, -amount]])))
+        return pair_fault(code, share, make=lambda lens, _other: replace(lens, thinning=np.array([[0.0, -amount]])))
 
     yield thinned("thinning-missing", 0.0)
     yield thinned("thinning-doubled", 2 * due)

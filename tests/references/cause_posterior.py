@@ -14,10 +14,31 @@ from functools import cache, cached_property
 
 import numpy as np
 
-from tests.references.cause_faults import NOISE
-from tests.references.cause_hypotheses import Hypotheses, Places, Rows, contexts_of, predicted, read_at_places, rows_of, what_is_read
+from tests.references.cause_faults import CAUSES, NOISE
+from tests.references.cause_hypotheses import (
+    Hypotheses,
+    Places,
+    Rows,
+    contexts_of,
+    predicted,
+    read_at_places,
+    rows_of,
+    what_is_read,
+)
 from tests.references.cause_lenses import (
-    ADD, COMMON, CYLINDER, MEAN, MEASURED, PLACE, PRISM, THINNING, ZERO, Floats, Lenses, cylinder_parts, slid_by,
+    ADD,
+    COMMON,
+    CYLINDER,
+    MEAN,
+    MEASURED,
+    PLACE,
+    PRISM,
+    THINNING,
+    ZERO,
+    Floats,
+    Lenses,
+    cylinder_parts,
+    slid_by,
 )  # fmt: skip
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault
@@ -152,7 +173,7 @@ def posterior(pair: PairOrder, hypotheses: Hypotheses, data: dict[str, Floats]) 
         beside = np.array([context.beside for context in its])
         parts += within_pair_fault(pair, hypotheses, fault, rows, evidence, first, log_weights, beside)
         first += len(its)
-    return gathered(parts)
+    return gathered([(as_far_as_read(entry, pair.plan.eyes), before, found) for entry, before, found in parts])
 
 
 Part = tuple[Entry, float, float]  # with ln prior, ln likelihood
@@ -163,14 +184,19 @@ def lens_by_lens(pair: PairOrder, hypotheses: Hypotheses, rows: dict[str, Rows],
     here = {eye: np.flatnonzero(rows[eye].context == 0) for eye in EYES}
     right, left = here["right"], here["left"]
     i, j = np.repeat(right, len(left)), np.tile(left, len(right))
-    logs = joint(evidence["right"], evidence["left"], i, j, common_variance(pair, hypotheses.pair[0])).reshape(len(right), len(left))
+    logs = joint(evidence["right"], evidence["left"], i, j, common_variance(pair, hypotheses.pair[0])).reshape(
+        len(right), len(left)
+    )
     peak = logs.max()
     weight = {eye: rows[eye].weight[here[eye]] for eye in EYES}
     shares = np.exp(logs - peak)
     weighted = shares * np.exp(weight["right"][:, None] + weight["left"])
     codes = {eye: [fault.code for fault in hypotheses.lens[eye]] for eye in EYES}
     names = {eye: list(dict.fromkeys(codes[eye])) for eye in EYES}
-    member = {eye: np.array([[codes[eye][row] == name for row in rows[eye].fault[here[eye]]] for name in names[eye]], float) for eye in EYES}
+    member = {
+        eye: np.array([[codes[eye][row] == name for row in rows[eye].fault[here[eye]]] for name in names[eye]], float)
+        for eye in EYES
+    }
     blocks = member["right"] @ weighted @ member["left"].T
     prior, parts = hypotheses.prior, []
     none = prior["shared"]["as-ordered"]
@@ -238,6 +264,14 @@ def entry_of(shared: str, right: str, left: str) -> Entry:
         return ((right, EYES),)
     members = ((shared, EYES), (right, ("right",)), (left, ("left",)))
     return tuple(sorted(member for member in members if member[0] != "as-ordered"))
+
+
+def as_far_as_read(entry: Entry, eyes: tuple[str, ...]) -> Entry:
+    """Where one lens alone was read, a lens's fault in both lenses is told of that lens."""
+    if len(eyes) == 2:
+        return entry
+    of_lens = {code for code, cause in CAUSES.items() if cause["both"] < 1}
+    return tuple(sorted((code, eyes if code in of_lens else concerned) for code, concerned in entry))
 
 
 def log_of(value: float) -> float:

@@ -15,9 +15,9 @@ import numpy as np
 
 from pycore.api import handle
 from tests.references.cause_faults import CAUSES
-from tests.references.cause_orders import EYES, draw_pair
 from tests.references.cause_hypotheses import hypotheses_of
-from tests.references.cause_posterior import AS_ORDERED, Entry, Member, Posterior, posterior
+from tests.references.cause_orders import EYES, draw_pair
+from tests.references.cause_posterior import AS_ORDERED, Entry, Member, Posterior, as_far_as_read, posterior
 from tests.references.cause_simulator import Case, draw_truth, draw_with, simulate
 
 ALL_OTHERS: Entry = (("all-others", EYES),)
@@ -76,7 +76,8 @@ def member_of(part: dict[str, Any]) -> Member:
 def judge(case: Case, weight: float, *, program: bool) -> Judged:
     """One job judged by the simulator and by the program (or by the simulator alone, to prove itself)."""
     own = posterior(case.pair, case.hypotheses, case.data)
-    return Judged(weight, case.truth.entry, own, causes_of(case.job) if program else own.entries)
+    truth = as_far_as_read(case.truth.entry, case.pair.plan.eyes)
+    return Judged(weight, truth, own, causes_of(case.job) if program else own.entries)
 
 
 def from_priors(count: int, seed: int, *, program: bool) -> list[Judged]:
@@ -164,7 +165,9 @@ def ranks(judged: list[Judged], sure: float = 0.9) -> Ranks:
 def falsely_accused(judged: list[Judged]) -> float:
     """Share of correct pairs for which some cause stands above one half."""
     good = [job for job in judged if job.truth == AS_ORDERED]
-    return sum(any(value > 0.5 for entry, value in job.tested.items() if entry not in (AS_ORDERED, ALL_OTHERS)) for job in good) / len(good)
+    return sum(
+        any(value > 0.5 for entry, value in job.tested.items() if entry not in (AS_ORDERED, ALL_OTHERS)) for job in good
+    ) / len(good)
 
 
 def confusion(judged: list[Judged]) -> dict[str, dict[str, int]]:
