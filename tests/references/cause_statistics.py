@@ -50,16 +50,21 @@ class Judged:
 # --- the program's list ---------------------------------------------------------------------------------------------------
 
 
-def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
-    """The program's causes of one job, through its door."""
+def listed(job: dict[str, Any]) -> list[tuple[Entry, float]]:
+    """The program's list of causes of one job, through its door."""
     request = {"format": "wedgewright.request/1", "do": "report", "job": job, "sections": ["causes"]}
     report = json.loads(handle(json.dumps(request)))
-    found: dict[Entry, float] = {}
     assert "causes" in report, (report, job)
-    for entry in report["causes"]:
-        key = tuple(sorted(member_of(part) for part in (entry, *entry.get("with", []))))
-        assert key not in found, key
-        found[key] = entry["probability"]
+    return [
+        (tuple(sorted(member_of(part) for part in (entry, *entry.get("with", [])))), entry["probability"]) for entry in report["causes"]
+    ]
+
+
+def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
+    """The same by entry."""
+    found: dict[Entry, float] = {}
+    for entry, value in listed(job):
+        found[entry] = found.get(entry, 0.0) + value
     return found
 
 
