@@ -59,8 +59,9 @@ class Bench:
     """The lenses of one job with their gauges: all that weighing needs.
 
     `held` are the lenses ordered, `gauges` those of which something was read: what is ordered for
-    the other one counts where both were exchanged. `zero` the standard uncertainty of the instrument's zero, prism dioptres; `free_height` where
-    the height read at is common but not known.
+    the other one counts where both were exchanged. `zero` is the standard uncertainty of the
+    instrument's zero in prism dioptres; `free_height` where the height read at is common to both
+    but not known.
     """
 
     held: Mapping[Eye, Held]
@@ -136,13 +137,12 @@ class Bench:
     def _changes(self, none: Common, common: Common, eye: Eye) -> bool:
         lens = common.after(common.lenses[eye], eye)
         gauge = self.gauges[eye]
-        if gauge.changes(lens, none.lenses[eye]) or common.zero:
+        if gauge.changes(lens, none.lenses[eye]):
             return True
-        if common.moved:
-            return any(lens.moved(*common.moved[eye]))
-        return bool(common.turn_deg) and gauge.changes(
-            lens._replace(turn_rad=common.turn_deg), none.lenses[eye]
-        )
+        columns = self.columns(common, eye, lens)
+        known = 0 if common.zero else len(self.columns(none, eye, lens))
+        added = columns[known:]  # a zero off widens the columns that its uncertainty has
+        return any(gauge.feels(lens, column) for column in added)
 
     def owns(self, none: Common, eye: Eye) -> list[Own]:
         """The causes one lens may have of its own that would change something: none first, then
@@ -172,28 +172,29 @@ class _Weighed(NamedTuple):
     top: float
 
 
-def weigh(bench: Bench) -> list[Story]:
+def weigh(bench: Bench, slack: float = 0.0) -> list[Story]:
     """Every hypothesis that matters with its probability, the most probable first.
 
-    Arguments: `bench`. Returns the hypotheses; their probabilities sum to 1.
+    Arguments: `bench`; `slack` by how much (as a logarithm) looks may yet raise a hypothesis over
+    another. Returns the hypotheses; their probabilities sum to 1.
     """
     none, *shared = bench.commons()
     owns = {eye: bench.owns(none, eye) for eye in bench.gauges}
-    found = [*_without_shared(bench, none, owns)]
+    found = [*_without_shared(bench, none, owns, FAINT + slack)]
     alone = [(common, _alone(bench, common, owns)) for common in shared]
     found += [(common, own, weight) for common, (own, weight, _) in alone]
     best = max([weight for _, _, weight in found])
     for common, (_, _, fits) in alone:
-        found += _with_own(bench, common, owns, fits, best - UNLIKELY)
-    return _normalised(found)
+        found += _with_own(bench, common, owns, fits, best - UNLIKELY - slack)
+    return _normalised(found, FAINT + slack)
 
 
 Found = tuple[Common, Mapping[Eye, Own], float]
 
 
-def _normalised(found: list[Found]) -> list[Story]:
+def _normalised(found: list[Found], faint: float) -> list[Story]:
     best = max([weight for _, _, weight in found])
-    kept = [one for one in found if one[2] > best - FAINT]
+    kept = [one for one in found if one[2] > best - faint]
     shares = [math.exp(weight - best) for _, _, weight in kept]
     whole = sum(shares)
     stories = [
@@ -203,7 +204,9 @@ def _normalised(found: list[Found]) -> list[Story]:
     return sorted(stories, key=lambda story: -story.probability)
 
 
-def _without_shared(bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]) -> Iterator[Found]:
+def _without_shared(
+    bench: Bench, none: Common, owns: Mapping[Eye, list[Own]], faint: float
+) -> Iterator[Found]:
     log_none = math.log(none.weight)
     lists = [
         sorted(_weighed(bench, none, eye, owns[eye]), key=lambda one: -one.top) for eye in owns
@@ -217,7 +220,7 @@ def _without_shared(bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]) -
     for one in lists[0]:
         for two in lists[1]:
             top = log_none + one.top + two.top
-            if top < best - FAINT:
+            if top < best - faint:
                 break
             weight = log_none + one.log_prior + two.log_prior + joined(one.fit, two.fit)
             best = max(best, weight)
@@ -227,9 +230,9 @@ def _without_shared(bench: Bench, none: Common, owns: Mapping[Eye, list[Own]]) -
 def _weighed(bench: Bench, common: Common, eye: Eye, owns: list[Own]) -> Iterator[_Weighed]:
     for own in owns:
         fit = bench.fit(common, eye, own)
-        if fit is not None:
-            log_prior = math.log(own.weight)
-            yield _Weighed(own, log_prior, fit, log_prior + _top(fit))
+        assert fit is not None  # these are the causes that can happen to this lens
+        log_prior = math.log(own.weight)
+        yield _Weighed(own, log_prior, fit, log_prior + _top(fit))
 
 
 def _top(fit: Fit) -> float:

@@ -236,8 +236,11 @@ def _at_segment(lens: Lens, site: Site, cause: Cause) -> Variants:
     if site.segment is None or not lens.has_power:
         return []
     point, own = site.segment
-    read = _read_at(lens, *point, *_around(cause.of("spread_mm")))
-    return [(1.0, read._replace(sx=read.sx + own[0], sy=read.sy + own[1]))]
+    read = _read_at(lens, *point)
+    through = lens._replace(mean=lens.mean + lens.add)  # the segment's power moves the prism there
+    spread = [through.moved(*each) for each in _around(cause.of("spread_mm"))]
+    slips = (*lens.slips, *spread)
+    return [(1.0, read._replace(sx=read.sx + own[0], sy=read.sy + own[1], slips=slips))]
 
 
 def _elsewhere(lens: Lens, _site: Site, cause: Cause) -> Variants:

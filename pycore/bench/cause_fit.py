@@ -208,7 +208,11 @@ class Gauge:
             return True
         if self._measured and _differ((x, y), made):
             return True
-        return any(_differ(self.scaled(lens, own), ()) for own in self.own_columns(lens))
+        return any(self.feels(lens, own) for own in self.own_columns(lens))
+
+    def feels(self, lens: Lens, column: Column) -> bool:
+        """Tell whether a parameter moves anything of what was read."""
+        return any(abs(part) > SAME for part in self.scaled(lens, column))
 
     def _prism_part(self, read: Vector, made: Vector) -> list[float]:
         part: list[float] = list(read) if self.seen.prism is not None else []
@@ -287,8 +291,8 @@ def turn_column(lens: Lens, turn_rad: float) -> Column:
 
 
 def _differ(one: Sequence[float], two: Sequence[float]) -> bool:
-    """Tell whether two predictions differ visibly; () stands for nothing at all."""
-    return any(abs(a - b) > SAME for a, b in zip(one, two or [0.0] * len(one), strict=True))
+    """Tell whether two predictions differ visibly."""
+    return any(abs(a - b) > SAME for a, b in zip(one, two, strict=True))
 
 
 def dot(one: Sequence[float], two: Sequence[float]) -> float:

@@ -28,7 +28,7 @@ def imagined(
     if code == AS_ORDERED:
         return {eye: _picture(none, eye, one, one.due) for eye, one in held.items()}
     if len(eyes) == 1:
-        return _in_one(held, table, code, eyes[0], none)
+        return _in_one(held, table, code, eyes[0], none) if eyes[0] in held else {}
     variants = [common for common in shared if common.code == code]
     if not variants:
         return {}
@@ -64,8 +64,8 @@ def eyes_of(
     cause = table.causes.get(code)
     if cause is None or not (cause.right or cause.left):
         return both
-    if eye in held:
-        return (eye,) if eye else both
+    if eye:
+        return (eye,)
     if cause.both:
         return both
     able = [each for each in both if any(own is cause for own, _ in own_causes(held[each], table))]

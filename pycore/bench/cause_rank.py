@@ -72,6 +72,8 @@ def label_of(story: Story) -> Label:
     if story.common.code != AS_ORDERED:
         named = [one for one in named if one.code != story.common.code]
         named.append(Named(story.common.code, eyes))
+    if len(eyes) == 1:  # which of two causes of one lens is shared, nobody sees
+        named.sort()
     return tuple(named) or (Named(AS_ORDERED, eyes),)
 
 

@@ -6,7 +6,7 @@ from dataclasses import dataclass
 from pycore.bench.cause import Bench, Story, bench_of, weigh
 from pycore.bench.cause_rank import Ranking, rank
 from pycore.bench.expected import Due
-from pycore.bench.look import looked
+from pycore.bench.look import leverage, looked
 from pycore.job.document import Job
 from pycore.optics.prism import Eye
 
@@ -28,5 +28,5 @@ def weighing_of(job: Job, dues: Mapping[Eye, Due]) -> Weighing | None:
     bench = bench_of(job, dues)
     if bench is None:
         return None
-    stories = tuple(looked(weigh(bench), job.looks))
+    stories = tuple(looked(weigh(bench, leverage(job.looks)), job.looks))
     return Weighing(bench, stories, rank(bench, stories))

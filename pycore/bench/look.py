@@ -77,6 +77,16 @@ def codes_of(label: Label, eye: Eye | None) -> tuple[str, ...]:
     )
 
 
+def leverage(looks: Sequence[Look]) -> float:
+    """By how much, as a logarithm, results of looks can raise one cause over another at most."""
+    whole = 0.0
+    for look in looks:
+        table = look_tables()[look.look]
+        column = [row[table.results.index(look.result)] for row in table.rows.values()]
+        whole += math.log(max(column) / min(column))
+    return whole
+
+
 def looked(stories: Sequence[Story], looks: Sequence[Look]) -> list[Story]:
     """The hypotheses after the results of further looks, the most probable first.
 

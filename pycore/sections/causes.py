@@ -86,21 +86,20 @@ def _entries(weighing: Weighing, offered: Sequence[Offer]) -> Iterator[Entry]:
     shown = [one for one in ranking.causes if _is_worth(one)]
     for one in shown:
         yield _entry(weighing, one, offered)
-    rest = 1.0 - sum([one.probability for one in shown])
-    if rest > 0.0:
-        yield {
-            "code": "all-others",
-            "eyes": list(weighing.bench.gauges),
-            "with": [],
-            "probability": rest,
-            "residual": None,
-            "estimate": None,
-            "tied_with": [],
-            "place": "none",
-            "tell_apart": None,
-            "sentence": {"code": "all-others", "params": {}},
-            "shown": {"probability": percent(rest), "text": say("causes.all-others")},
-        }
+    rest = max(0.0, 1.0 - sum([one.probability for one in shown]))
+    yield {
+        "code": "all-others",
+        "eyes": list(weighing.bench.gauges),
+        "with": [],
+        "probability": rest,
+        "residual": None,
+        "estimate": None,
+        "tied_with": [],
+        "place": "none",
+        "tell_apart": None,
+        "sentence": {"code": "all-others", "params": {}},
+        "shown": {"probability": percent(rest), "text": say("causes.all-others")},
+    }
 
 
 def _is_worth(one: Ranked) -> bool:

@@ -552,6 +552,8 @@ def test_what_is_ordered_for_the_lens_not_read_counts() -> None:
     job = patched(PAIR, readings__left=None)
     assert ("eyes-swapped-in-words", R) in leading(read((2.0, -1.0), None, job))
     assert ("not-split", R) in leading(read((5.0, 2.5), None, job))
+    labels = [tuple(sorted(one.label)) for one in ranking(read((3.4, -1.5), None, job)).causes]
+    assert len(labels) == len(set(labels)), "two causes of one lens are one entry"
     bodies = patched(job, readings__right=power(LEFT_LENS))
     assert ("lenses-swapped", R) in leading(read(PL, None, bodies))
 
@@ -651,7 +653,29 @@ def test_the_adds_read_count() -> None:
     assert ranking(made).causes[0].label[0].code == "lenses-swapped"
 
 
-def test_only_adds_and_a_zero_known_well() -> None:
+def test_lenses_that_differ_in_their_adds_only() -> None:
+    alike = patched(PROGRESSIVE, left=RIGHT_LENS | {"add": "2.50"}, right__prism=None, readings__left=power(RIGHT_LENS))
+    job = patched(alike, readings__right__add="2.50", readings__left__add="2.00")
+    assert {("lenses-swapped", B), ("frame-upside-down", B)} == leading(job)
+
+
+def test_only_a_height_measured() -> None:
+    """Where the lens shows what is due, 4 mm too low, tells of a height wrong without any prism read."""
+    job = patched(PAIR, readings__right__prp_height_mm="15", readings__left__prp_height_mm="19")
+    assert ranking(job).causes[0].label[0].code != AS_ORDERED
+    assert chance(job, "read-elsewhere", "right") == 0.0
+    assert chance(job, "base-reversed", "right") < 0.1
+
+
+def test_only_adds_read() -> None:
+    """Nothing but none-of-these can then be wrong with a lens."""
+    adds = {"right": {"add": "2.00"}, "left": {"add": "2.12"}}
+    found = ranking(patched(PROGRESSIVE, readings=adds))
+    assert {named.code for one in found.causes for named in one.label} == {AS_ORDERED, NONE_OF_THESE}
+    assert found.causes[0].label[0].code == AS_ORDERED
+
+
+def test_a_zero_known_badly_accuses_fewer() -> None:
     """With a zero uncertainty both lenses hang together; the posterior still sums to 1."""
     job = read((PR[0] + 0.2, PR[1]), (PL[0] + 0.2, PL[1]), instrument__zero_uncertainty="0.2")
     assert chance(job, AS_ORDERED) > chance(read((PR[0] + 0.2, PR[1]), (PL[0] + 0.2, PL[1])), AS_ORDERED)
