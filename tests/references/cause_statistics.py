@@ -56,7 +56,8 @@ def listed(job: dict[str, Any]) -> list[tuple[Entry, float]]:
     report = json.loads(handle(json.dumps(request)))
     assert "causes" in report, (report, job)
     return [
-        (tuple(sorted(member_of(part) for part in (entry, *entry.get("with", [])))), entry["probability"]) for entry in report["causes"]
+        (tuple(sorted(member_of(part) for part in (entry, *entry.get("with", [])))), entry["probability"])
+        for entry in report["causes"]
     ]
 
 
