@@ -186,9 +186,29 @@ def _edition_entry(edition: Edition) -> Entry:
 
 
 def _demonstration(_envelope: Source, fields: Fields) -> Entry:
+    """An invented pair; `pair` names one that fails, by what is wrong with it."""
+    kept = json.loads(package_text("job/demonstration.json"))
+    pair = fields.word("pair", tuple(kept["changes"])) or "within"
     _checked(fields)
-    job = json.loads(package_text("job/demonstration.json"))
-    return {"format": "wedgewright.demonstration/1", "job": job}
+    job = _changed(kept["pair"], kept["changes"][pair])
+    names = list(kept["changes"])
+    following = names[(names.index(pair) + 1) % len(names)]
+    return {
+        "format": "wedgewright.demonstration/1",
+        "job": job,
+        "pair": pair,
+        "next": following,
+        "pairs": names,
+    }
+
+
+def _changed(job: Source, change: Source) -> Entry:
+    """The job with the fields of `change` in it, object by object; null takes a field away."""
+    inner = {
+        key: _changed(job.get(key, {}), value) if isinstance(value, Mapping) else value
+        for key, value in change.items()
+    }
+    return {key: value for key, value in {**job, **inner}.items() if value is not None}
 
 
 def _imagine(envelope: Source, fields: Fields) -> Entry:

@@ -11,7 +11,8 @@ from pycore.job.document import Job
 from pycore.optics.prism import EYES, Eye
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
+# Compared by identity, so that what several sections ask of one case can be kept for it.
+@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
 class Case:
     """One job with everything that its report is made of."""
 

@@ -2,6 +2,7 @@
 
 import re
 from decimal import ROUND_HALF_EVEN, Decimal
+from functools import lru_cache
 
 MAXIMUM_DIGITS = 12
 NANO = Decimal("1E-9")
@@ -26,6 +27,7 @@ class NumberError(ValueError):
         self.code = code
 
 
+@lru_cache(maxsize=1024)  # between two keystrokes all numbers but one are the same
 def read_decimal(text: str) -> Decimal:
     """Read a number from its own digits; comma and point both separate decimals.
 

@@ -2,6 +2,7 @@
 
 from collections.abc import Iterator, Mapping
 from decimal import Decimal
+from functools import lru_cache
 from typing import Any
 
 from pycore.decimals import NumberError, decimal_places, read_decimal, signed
@@ -51,6 +52,7 @@ def _leaves(value: Any, path: str, key: str = "") -> Iterator[tuple[str, str, st
         yield path, key, value
 
 
+@lru_cache(maxsize=1024)  # between two keystrokes all numbers but one are the same
 def _understood(path: str, key: str, text: str) -> str:
     if key == "base":
         return _base(path, text)

@@ -6,7 +6,7 @@ from typing import Any
 
 from pycore.decimals import decimal_places, fixed, signed, snap
 from pycore.optics.power import Power
-from pycore.optics.prism import Eye, Prism, horizontal_word, vertical_word
+from pycore.optics.prism import Eye, Prism, Word, horizontal_word, vertical_word
 from pycore.words import say
 
 Entry = dict[str, Any]
@@ -30,28 +30,25 @@ def prism_entry(eye: Eye, prism: Prism) -> Entry:
     >>> prism_entry("left", Prism(Decimal(-2), Decimal("-1.5")))["notation_180"]["words"]
     'BD&I'
     """
-    base_deg = prism.base_deg
+    x, y, base_deg = number(prism.x), number(prism.y), prism.base_deg
     across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
+    amount = Decimal(0) if base_deg is None else prism.amount
+    turned = None if base_deg is None else _in_180(base_deg, across, along)
     entry: Entry = {
-        "amount": 0.0 if base_deg is None else number(prism.amount),
+        "amount": number(amount),
         "base": None if base_deg is None else round(base_deg, 9) % 360.0,
-        "x": number(prism.x),
-        "y": number(prism.y),
-        "horizontal": {"amount": number(abs(prism.x)), "base": across},
-        "vertical": {"amount": number(abs(prism.y)), "base": along},
+        "x": x,
+        "y": y,
+        "horizontal": {"amount": abs(x), "base": across},
+        "vertical": {"amount": abs(y), "base": along},
         "quadrant": "-".join(word for word in (along, across) if word) or "none",
-        "notation_180": _in_180(eye, prism),
+        "notation_180": turned,
     }
-    entry["shown"] = _prism_texts(entry, prism)
+    entry["shown"] = _prism_texts(entry, prism, amount) if turned else _no_prism_texts()
     return entry
 
 
-def _in_180(eye: Eye, prism: Prism) -> Entry | None:
-    base_deg = prism.base_deg
-    if base_deg is None:
-        return None
-    across, along = horizontal_word(eye, prism.x), vertical_word(prism.y)
-    side = along or across or ""
+def _in_180(base_deg: float, across: Word | None, along: Word | None) -> Entry:
     degrees = base_deg if base_deg <= 180.0 else base_deg - 180.0
     text, places = f"{degrees:03.0f}", 0
     # Never let rounding turn an up or down into in or out, whose words stand at 0 and 180 only.
@@ -59,42 +56,44 @@ def _in_180(eye: Eye, prism: Prism) -> Entry | None:
         places += 1
         text = f"{degrees:0{4 + places}.{places}f}"
     words = "B" + "&".join(_LETTERS[word] for word in (along, across) if word)
-    return {"degrees": text, "side": side, "words": words}
+    return {"degrees": text, "side": along or across or "", "words": words}
 
 
-def _prism_texts(entry: Entry, prism: Prism) -> Entry:
-    amount = fixed(prism.amount, 2)
-    if entry["base"] is None:
-        text = say("text.no-prism")
-        return {
-            "amount": amount,
-            "base": "",
-            "horizontal": "0.00",
-            "vertical": "0.00",
-            "text": text,
-            "text_180": text,
-            "components": text,
-        }
-    base = degrees_text(entry["base"])
+def _no_prism_texts() -> Entry:
+    text = say("text.no-prism")
+    return {
+        "amount": "0.00",
+        "base": "",
+        "horizontal": "0.00",
+        "vertical": "0.00",
+        "text": text,
+        "text_180": text,
+        "components": text,
+    }
+
+
+def _prism_texts(entry: Entry, prism: Prism, amount: Decimal) -> Entry:
+    total, base = fixed(amount, 2), degrees_text(entry["base"])
+    horizontal, vertical = fixed(abs(prism.x), 2), fixed(abs(prism.y), 2)
     parts = [
-        say("text.component", amount=fixed(abs(part), 2), word=say(f"directions.{word}"))
+        say("text.component", amount=part, word=say(f"directions.{word}"))
         for part, word in (
-            (prism.x, entry["horizontal"]["base"]),
-            (prism.y, entry["vertical"]["base"]),
+            (horizontal, entry["horizontal"]["base"]),
+            (vertical, entry["vertical"]["base"]),
         )
         if word
     ]
     components = " ".join(parts)
     turned = entry["notation_180"]
     return {
-        "amount": amount,
+        "amount": total,
         "base": base,
-        "horizontal": fixed(abs(prism.x), 2),
-        "vertical": fixed(abs(prism.y), 2),
+        "horizontal": horizontal,
+        "vertical": vertical,
         "components": components,
-        "text": say("text.prism", amount=amount, base=base, components=components),
+        "text": say("text.prism", amount=total, base=base, components=components),
         "text_180": say(
-            "text.prism-180", amount=amount, words=turned["words"], degrees=turned["degrees"]
+            "text.prism-180", amount=total, words=turned["words"], degrees=turned["degrees"]
         ),
     }
 

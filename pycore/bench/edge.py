@@ -13,14 +13,14 @@ from operator import mul
 
 from pycore.bench.body import BodyValues, body_values, usual_minimum_centre_mm
 from pycore.bench.expected import Due
-from pycore.bench.rim import MOST_RIM_POINTS, Place, Placed, Rim, placed, rim_of
+from pycore.bench.rim import MOST_RIM_POINTS, Placed, Rim, placed, rim_of
 from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 from pycore.optics.material import usual_material
 from pycore.optics.power import point_with_prism
 from pycore.optics.prism import NO_PRISM, Prism
 from pycore.optics.surface import OutsideSurfaceError, true_front_d
-from pycore.optics.thickness import Solid, thicknesses
+from pycore.optics.thickness import Solid, Spot, Spots, spots_of, thicknesses_at
 
 COARSE = 24  # points of the rim, where only comparisons are made
 THICKEST_MM = 60.0  # no blank is thicker
@@ -71,7 +71,10 @@ class Edge:
 
     def at(self, angle_deg: float) -> float:
         """Thickness in mm at the point of the rim nearest to an angle in degrees, 0 to 350."""
-        return min(self.profile, key=lambda place: abs(place[0] - angle_deg))[1]
+        known = dict(self.profile)
+        if angle_deg in known:
+            return known[angle_deg]
+        return known[min(known, key=lambda place_deg: abs(place_deg - angle_deg))]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -127,27 +130,28 @@ def edge_of(
     """
     solid = lens.with_prism(prism)
     start_mm = lens.minimum_centre_mm if lens.centre_mm is None else lens.centre_mm
-    every = max(1, len(lens.rim.points) // most)
-    indices = list(range(0, len(lens.rim.points), every))
-    found = thicknesses(solid, start_mm, [lens.rim.points[index] for index in indices])
-    beside = _beside(indices, found, len(lens.rim.points)) if every > 1 else []
+    rim = _spots(lens.rim, lens.solid)
+    indices = list(range(0, len(rim.points), max(1, len(rim.points) // most)))
+    spots = [rim.points[index] for index in indices]
+    found = thicknesses_at(solid, start_mm, spots)
+    beside = _beside(indices, found, len(rim.points)) if len(spots) < len(rim.points) else []
     indices += beside
     inside = _thinnest_inside(lens, prism)
-    others = [*(lens.rim.points[index] for index in beside), *lens.rim.holes, *inside]
-    found += thicknesses(solid, start_mm, others)
-    places = [*(lens.rim.points[index] for index in indices), *lens.rim.holes, *inside]
+    others = [*(rim.points[index] for index in beside), *rim.holes, *inside]
+    spots += others
+    found += thicknesses_at(solid, start_mm, others)
     demands = [lens.minimum_edge_mm] * len(indices)
-    demands += [lens.minimum_hole_mm] * len(lens.rim.holes)
+    demands += [lens.minimum_hole_mm] * len(rim.holes)
     demands += [lens.minimum_centre_mm] * len(inside)
     if lens.centre_mm is None:
-        centre_mm, governing, found = _thickness(solid, start_mm, found, places, demands)
+        centre_mm, governing, found = _thickness(solid, start_mm, found, spots, demands)
     else:
         centre_mm, governing = lens.centre_mm, -1
     around = dict(sorted(zip(indices, found, strict=False)))
     step = 360.0 / len(lens.rim.points)
     volume = 0.0
     if weigh:
-        inner = thicknesses(solid, centre_mm, lens.rim.nodes)
+        inner = thicknesses_at(solid, centre_mm, rim.nodes)
         volume = sum(map(mul, lens.rim.node_areas_mm2, inner))
     density = lens.density_g_cm3 if weigh else None
     thin, thick = (end(around, key=around.__getitem__) for end in (min, max))
@@ -163,6 +167,21 @@ def edge_of(
     )
 
 
+@dataclass(frozen=True, slots=True)
+class _RimSpots:
+    """A rim's points, holes and nodes, each with the depth of the lens's front there."""
+
+    points: Spots
+    holes: Spots
+    nodes: Spots
+
+
+@lru_cache(maxsize=16)
+def _spots(rim: Rim, solid: Solid) -> _RimSpots:
+    """Kept, since every prism that is tried leaves the front as it is. Raises OutsideSurfaceError."""
+    return _RimSpots(*(spots_of(solid, places) for places in (rim.points, rim.holes, rim.nodes)))
+
+
 def _beside(indices: Sequence[int], found: Sequence[float], count: int) -> list[int]:
     """The points of the rim left out beside the thinnest and the thickest one looked at."""
     ends = (indices[found.index(end(found))] for end in (min, max))
@@ -170,21 +189,21 @@ def _beside(indices: Sequence[int], found: Sequence[float], count: int) -> list[
     return sorted(beside.difference(indices))
 
 
-def _thinnest_inside(lens: FramedLens, prism: Prism) -> tuple[Place, ...]:
+def _thinnest_inside(lens: FramedLens, prism: Prism) -> Spots:
     """Where a minus lens with prism is thinnest, if that lies inside its rim: at the optical
     centre. A plus lens is thickest there; between both the thinnest place is on the rim."""
     power = lens.solid.power
     if prism == NO_PRISM or max(power.principal) >= 0:
         return ()
     place = point_with_prism(prism, NO_PRISM, power)
-    return (place,) if place and lens.rim.holds(place) else ()
+    return spots_of(lens.solid, [place]) if place and lens.rim.holds(place) else ()
 
 
 def _thickness(
     solid: Solid,
     centre_mm: float,
     found: list[float],
-    places: Sequence[Place],
+    spots: Spots,
     demands: Sequence[float],
 ) -> tuple[float, int | None, list[float]]:
     """The least centre thickness that meets all demands, which of them governs it (None: that of
@@ -192,16 +211,16 @@ def _thickness(
     governing = None
     while True:
         lacking = [demand - mm for demand, mm in zip(demands, found, strict=True)]
-        worst = max(range(len(places)), key=lacking.__getitem__)
+        worst = max(range(len(spots)), key=lacking.__getitem__)
         if abs(lacking[worst]) <= KEPT_MM or (governing is None and lacking[worst] < 0):
             return centre_mm, governing, found
         governing = worst
-        centre_mm = _settled(solid, centre_mm, places[worst], demands[worst], lacking[worst])
-        found = thicknesses(solid, centre_mm, places)
+        centre_mm = _settled(solid, centre_mm, spots[worst], demands[worst], lacking[worst])
+        found = thicknesses_at(solid, centre_mm, spots)
 
 
 def _settled(
-    solid: Solid, centre_mm: float, place: Place, demand_mm: float, short_mm: float
+    solid: Solid, centre_mm: float, spot: Spot, demand_mm: float, short_mm: float
 ) -> float:
     """The centre thickness at which one place, `short_mm` short as it is, has just its minimum.
 
@@ -212,7 +231,7 @@ def _settled(
         centre_mm += step
         if not 0 < centre_mm < THICKEST_MM:
             raise OutsideSurfaceError
-        before, short_mm = short_mm, demand_mm - thicknesses(solid, centre_mm, (place,))[0]
+        before, short_mm = short_mm, demand_mm - thicknesses_at(solid, centre_mm, (spot,))[0]
         step *= short_mm / (before - short_mm)
     return centre_mm
 

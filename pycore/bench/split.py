@@ -157,20 +157,22 @@ def _equal(
         return replace(nearest, kind=kind, reached=False)
     low, high = parts[side], parts[side + 1]
     miss_low, miss_high = misses[side], misses[side + 1]
-    part = _root_of_parabola(misses, low, high)
+    part, moved = _root_of_parabola(misses, low, high), ""
     while True:
         share = way(kind, shared(whole, Decimal(part)))
         miss = measure(share) or 0.0
         if abs(miss) <= EQUAL or high - low < NO_NARROWER:
             return share
-        # The miss that stays is halved (the Illinois rule): it would slow the search down.
+        # An end that stays twice has its miss halved (the Illinois rule), or it would stay on.
         if miss * miss_high > 0:
-            high, miss_high, miss_low = part, miss, miss_low / 2.0
+            miss_low /= 2.0 if moved == "high" else 1.0
+            high, miss_high, moved = part, miss, "high"
         else:
-            low, miss_low, miss_high = part, miss, miss_high / 2.0
-        # False position, a tenth from the ends at least, so that it comes to an end.
+            miss_high /= 2.0 if moved == "low" else 1.0
+            low, miss_low, moved = part, miss, "low"
+        # False position, a little from the ends at least, so that it comes to an end.
         share_of_way = miss_low / (miss_low - miss_high) if miss_low != miss_high else 0.5
-        part = low + (high - low) * min(max(share_of_way, 0.1), 0.9)
+        part = low + (high - low) * min(max(share_of_way, 0.02), 0.98)
 
 
 def _root_of_parabola(misses: Sequence[float], low: float, high: float) -> float:

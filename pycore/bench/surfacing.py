@@ -12,7 +12,7 @@ from decimal import Decimal
 
 from pycore.angles import cosine, sine, wrap
 from pycore.bench.body import BodyValues, body_values
-from pycore.bench.edge import Framing, edge_of, framing_of
+from pycore.bench.edge import Framing, edge_of
 from pycore.bench.expected import Due
 from pycore.bench.outline import outline_of
 from pycore.job.body import Surfacing
@@ -182,14 +182,14 @@ def angles_of(prism: Prism) -> Angles | None:
     return Angles(base_deg, wrap(180.0 - base_deg), wrap(base_deg + 180.0), wrap(360.0 - base_deg))
 
 
-def surfaced(job: Job, order: EyeOrder, due_: Due) -> Surfaced | None:
+def surfaced(job: Job, order: EyeOrder, due_: Due, framing: Framing | None) -> Surfaced | None:
     """One lens on the generator, or None without a power.
 
-    Arguments: `job`; `order` and `due_` of the eye. Returns the Surfaced lens.
+    Arguments: `job`; `order` and `due_` of the eye; `framing` of its lens, None without a frame.
+    Returns the Surfaced lens.
     Source: p + F·c with c the reference point from the block's centre (facts 4.10), the thin
     formula: in thick steep lenses 6 mm away up to 0.5 Δ off; the section `field` has the exact one.
     """
-    framing = framing_of(job, order, due_)
     body = framing.values if framing else body_values(order, job.frame)
     if body is None or due_.power is None:
         return None

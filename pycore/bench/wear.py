@@ -1,7 +1,8 @@
 """What does the eye get from the lens as it is worn, and which lens gives the prescription?
 
-Pantoscopic tilt, wrap and both vertex distances. The power goes by the tilted-lens matrix, the
-prism by tracing the lens with its prism through the front pole. Prism thinning is in the lens
+Pantoscopic tilt, wrap and both vertex distances. The power goes by the tilted-lens matrix (beside
+it a pencil of rays through the real lens), the prism by tracing the lens with its prism through
+the front pole. Prism thinning is in the lens
 when it is traced and is left out of both answers again, so that they stand beside the order.
 Front and vertex distances are the wearer's; what nobody measured is asked for.
 """
@@ -13,6 +14,7 @@ from decimal import Decimal
 from pycore.bench.body import BodyValues
 from pycore.decimals import from_float
 from pycore.job.body import Wear
+from pycore.optics.pencil import back_of_read_power, pencil_as_worn
 from pycore.optics.power import Power
 from pycore.optics.prism import Eye, Prism
 from pycore.optics.tilt import (
@@ -106,6 +108,19 @@ class Worn:
         worn = power_as_worn(lens.power.matrix(), self.tilt, self.glass.index)
         power, seen = moved(worn, traced, -self.farther_mm)
         return Act(power=power_of(power, _sign(lens.power)), prism=self._without_thinning(seen))
+
+    def pencil_power(self, lens: Act) -> Power:
+        """The power the eye gets from a lens by a narrow pencil through its thickness and prism.
+
+        Arguments: `lens` as a lens meter shows it, without thinning. Returns dioptres, as at the
+        distance at which it was tested, with a cylinder of the lens's sign. Raises BeyondError.
+        Source: `optics.pencil`.
+        """
+        prism = _plus(_pair(lens.prism), self.thinning)
+        back = back_of_read_power(lens.power, prism, self.glass)
+        worn = pencil_as_worn(back, prism, self.glass, self.tilt)
+        power, _ = moved(worn, prism, -self.farther_mm)
+        return power_of(power, _sign(lens.power))
 
     def lens_for(self, wanted: Act) -> Act:
         """The lens that gives the eye what is wanted: `effect_of` turned round.

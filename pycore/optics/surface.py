@@ -80,6 +80,30 @@ class Surface:
             along_u * self.across + along_v * self.along,
         )
 
+    def bend(self, x_mm: float, y_mm: float) -> tuple[float, float, float]:
+        """How the slope grows: second derivatives of the depth (xx, xy, yy) in 1/mm.
+
+        Raises OutsideSurfaceError.
+        """
+        u = x_mm * self.along + y_mm * self.across
+        v = y_mm * self.along - x_mm * self.across
+        steep, flat = self.steep_per_mm, self.flat_per_mm
+        arc, level = circle_depth(steep, u), _cosine_of_slope(steep, u)
+        # Once more from (1 - flat·depth)² + (flat·v)² = (1 - flat·arc)².
+        across = 1.0 - flat * arc
+        left = 1.0 - flat * (arc + circle_depth(flat / across, v))
+        rise = steep * u / level
+        along_u, along_v = rise * across / left, flat * v / left
+        uu = (steep / level**3 * across - flat * rise * rise + flat * along_u * along_u) / left
+        uv, vv = flat * along_u * along_v / left, flat * (1.0 + along_v * along_v) / left
+        cos, sin = self.along, self.across
+        mixed = 2.0 * cos * sin * uv
+        return (
+            cos * cos * uu + sin * sin * vv - mixed,
+            cos * sin * (uu - vv) + (cos * cos - sin * sin) * uv,
+            sin * sin * uu + cos * cos * vv + mixed,
+        )
+
 
 def true_front_d(front_curve_d: float, curve_index: float, index: float) -> float:
     """The front surface's real power from the curve marked for another index.
@@ -122,6 +146,18 @@ def through_front_d(front_d: float, thickness_mm: float, index: float) -> float:
     return front_d / left
 
 
+def toric(along_per_mm: float, across_per_mm: float, axis_deg: float) -> Surface:
+    """The toric with one principal curvature along an axis and the other across it, in 1/mm.
+
+    >>> toric(1 / 100, 1 / 80, 90.0).steep_per_mm
+    0.0125
+    """
+    if abs(across_per_mm) >= abs(along_per_mm):
+        across_deg = axis_deg + 90.0
+        return Surface(across_per_mm, along_per_mm, cosine(across_deg), sine(across_deg))
+    return Surface(along_per_mm, across_per_mm, cosine(axis_deg), sine(axis_deg))
+
+
 def back_surface(power: Power, front_d: float, thickness_mm: float, index: float) -> Surface:
     """The back surface that gives a back vertex power behind a spherical front.
 
@@ -135,7 +171,4 @@ def back_surface(power: Power, front_d: float, thickness_mm: float, index: float
     at_back_d = through_front_d(front_d, thickness_mm, index)
     to_curvature = -1.0 / (1000.0 * (index - 1.0))
     first, second = ((float(part) - at_back_d) * to_curvature for part in power.principal)
-    axis_deg = float(power.axis)
-    if abs(second) >= abs(first):
-        return Surface(second, first, cosine(axis_deg + 90.0), sine(axis_deg + 90.0))
-    return Surface(first, second, cosine(axis_deg), sine(axis_deg))
+    return toric(first, second, float(power.axis))

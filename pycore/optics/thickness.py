@@ -19,6 +19,8 @@ CORRIDOR_MM = 12.0  # over which an addition comes in below the reference point;
 SETTLED_MM = 1e-6  # a nanometre
 
 Points = Sequence[tuple[float, float]]
+Spot = tuple[float, float, float]
+Spots = Sequence[Spot]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -57,6 +59,30 @@ def addition_depth(add: float, index: float, below_mm: float) -> float:
     return curvature * (CORRIDOR_MM * CORRIDOR_MM / 6.0 + beyond * below_mm / 2.0)
 
 
+def spots_of(solid: Solid, points: Points) -> list[Spot]:
+    """The points with the depth of the front surface there: what no prism and no thickness changes.
+
+    Arguments: `solid`; `points` (right_mm, up_mm) from the reference point. Returns each point
+    with mm, the addition's gain in it. Raises OutsideSurfaceError. Source: Pythagoras, as
+    `optics.surface.circle_depth`; `addition_depth`.
+
+    >>> spots_of(Solid(index=1.5, front_d=10.0, power=Power(sphere=0)), [(30.0, 0.0)])
+    [(30.0, 0.0, 10.0)]
+    """
+    front, add, index = sphere(solid.front_d, solid.index).steep_per_mm, solid.add, solid.index
+    found = []
+    try:
+        for x, y in points:
+            bent = front * (x * x + y * y)
+            depth = bent / (1.0 + math.sqrt(1.0 - front * bent))
+            if y < 0.0 and add:
+                depth += addition_depth(add, index, -y)
+            found.append((x, y, depth))
+    except ValueError as beyond:  # the root of a negative number
+        raise OutsideSurfaceError from beyond
+    return found
+
+
 def thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     """Thickness in mm at each point, for a lens `centre_mm` thick at its reference point.
 
@@ -69,13 +95,24 @@ def thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     >>> [round(mm, 3) for mm in thicknesses(flat, 2.0, [(0.0, 0.0), (25.0, 3.0), (-25.0, 0.0)])]
     [2.0, 6.926, -2.926]
     """
+    return thicknesses_at(solid, centre_mm, spots_of(solid, points))
+
+
+def thicknesses_at(solid: Solid, centre_mm: float, spots: Spots) -> list[float]:
+    """As `thicknesses`, where the front's depth is known already. Arguments: `spots` of `spots_of`
+    for a solid with the same front, index and addition. Returns mm.
+
+    >>> flat = Solid(index=1.5, front_d=0.0, power=Power(sphere=0), prism_x=10.0)
+    >>> round(thicknesses_at(flat, 2.0, [(25.0, 0.0, 0.0)])[0], 3)
+    6.926
+    """
     try:
-        return _thicknesses(solid, centre_mm, points)
+        return _thicknesses(solid, centre_mm, spots)
     except ValueError as beyond:  # the root of a negative number
         raise OutsideSurfaceError from beyond
 
 
-def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
+def _thicknesses(solid: Solid, centre_mm: float, spots: Spots) -> list[float]:
     """Written out flat: a pair's sections ask for thousands of points at each keystroke.
 
     The back is met at depth z behind its own pole where, in the axes u, v, w of its tilted
@@ -83,7 +120,6 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     the parabola, in one or two steps.
     """
     root = math.sqrt
-    front = sphere(solid.front_d, solid.index).steep_per_mm
     # As `optics.surface.back_surface`, with the axis looked up.
     to_curvature = 1.0 / (1000.0 * (solid.index - 1.0))
     at_back_d = through_front_d(solid.front_d, centre_mm, solid.index)
@@ -108,8 +144,8 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
     w_x, w_y, w_z = -sin_tilt * base_x, -sin_tilt * base_y, cos_tilt
     # The error of a Newton step is about this times the step's square.
     bend = max(abs(steep), abs(flat)) * sin_tilt * sin_tilt
-    add, found = solid.add, []
-    for x, y in points:
+    found = []
+    for x, y, front in spots:
         u0, v0, w0 = u_x * x + u_y * y, v_x * x + v_y * y, w_x * x + w_y * y
         z = (0.5 * (steep * u0 * u0 + flat * v0 * v0) - w0) / w_z
         while True:
@@ -125,11 +161,7 @@ def _thicknesses(solid: Solid, centre_mm: float, points: Points) -> list[float]:
             z += step
             if bend * step * step < SETTLED_MM:
                 break
-        bent = front * (x * x + y * y)
-        thick = centre_mm + z - bent / (1.0 + root(1.0 - front * bent))
-        if y < 0.0 and add:
-            thick -= addition_depth(add, solid.index, -y)
-        found.append(thick)
+        found.append(centre_mm + z - front)
     return found
 
 

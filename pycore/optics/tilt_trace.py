@@ -70,8 +70,34 @@ def prism_as_worn(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Vec
 
 
 def _traced(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Vector:
+    x, y, z = tilt.worn(*crossed(back, prism, glass, tilt).left)
+    return -100.0 * x / z, -100.0 * y / z
+
+
+@dataclass(frozen=True, slots=True)
+class Crossing:
+    """How the held ray crosses a lens, in the lens's frame; directions have length 1.
+
+    `axes` right, up and out of the back surface, `at` where it is met in its own frame, mm, the
+    `normal` there towards the eye; the ray `inside` the glass, `along_mm` of it, and as it `left`.
+    """
+
+    axes: Turned
+    at: Vector
+    normal: tuple[float, float, float]
+    inside: tuple[float, float, float]
+    left: tuple[float, float, float]
+    along_mm: float
+
+
+def crossed(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Crossing:
+    """Follow light from straight ahead through the front pole of a tilted lens.
+
+    Arguments: as `prism_as_worn`. Returns the Crossing. Raises OutsideSurfaceError and
+    TotalReflectionError. Source: law of refraction.
+    """
     inside = refract(tilt.light(), (0.0, 0.0, -1.0), 1.0 / glass.index)
-    right, up, out = _turned_to(prism, glass.index)
+    axes = right, up, out = _turned_to(prism, glass.index)
     # From here in the back surface's own frame, its pole at the origin; the ray starts at the
     # front pole, `thickness_mm` straight in front of it.
     start = (glass.thickness_mm * right[2], glass.thickness_mm * up[2], glass.thickness_mm * out[2])
@@ -83,11 +109,14 @@ def _traced(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Vector:
         gap = start[2] + along_mm * ray[2] + back.depth(x, y)
         step = gap / (ray[2] + slope_x * ray[0] + slope_y * ray[1])
         along_mm -= step
-    left = refract(ray, unit((-slope_x, -slope_y, -1.0)), glass.index)
-    x, y, z = tilt.worn(
-        *(left[0] * right[i] + left[1] * up[i] + left[2] * out[i] for i in range(3))
+    normal = unit(
+        (
+            -slope_x * right[0] - slope_y * up[0] - out[0],
+            -slope_x * right[1] - slope_y * up[1] - out[1],
+            -slope_x * right[2] - slope_y * up[2] - out[2],
+        )
     )
-    return -100.0 * x / z, -100.0 * y / z
+    return Crossing(axes, (x, y), normal, inside, refract(inside, normal, glass.index), along_mm)
 
 
 def prism_to_order(back: Surface, worn: Vector, glass: Glass, tilt: Tilt) -> Vector:

@@ -3,6 +3,7 @@
 import math
 from collections.abc import Iterable, Mapping
 from decimal import Decimal
+from functools import lru_cache
 
 from pycore.bench.edge import Edge, Framing, framing_of
 from pycore.bench.outline import outline_of
@@ -20,8 +21,12 @@ MATERIAL = ("index", "front_curve", "minimum_centre_mm", "minimum_edge_mm", "den
 BOX = ("frame.a_mm", "frame.b_mm")
 
 
-def framings_of(case: Case) -> dict[Eye, Framing]:
-    """Each ordered lens in its rim, as far as power and frame are known. Arguments: `case`."""
+@lru_cache(maxsize=1)
+def framings_of(case: Case) -> Mapping[Eye, Framing]:
+    """Each ordered lens in its rim, as far as power and frame are known. Arguments: `case`.
+
+    Kept for the case, since several sections ask the same.
+    """
     found: dict[Eye, Framing] = {}
     for eye in EYES:
         order, due_ = case.job.order(eye), case.dues.get(eye)

@@ -19,6 +19,7 @@ from pycore.optics.prism import Eye
 from pycore.scenes.surfacing import surfacing_scene
 from pycore.sections.answer import Ask, Row, SectionAnswer
 from pycore.sections.body_asks import body_asks
+from pycore.sections.framing import framings_of
 from pycore.words import say
 
 BODY_FIELDS = (
@@ -35,10 +36,12 @@ Lenses = Mapping[Eye, Surfaced]
 
 def surfacing_section(case: Case) -> SectionAnswer:
     """The section. Arguments: `case`. Returns the answer for every lens that is to be made."""
-    lenses = dict[Eye, Surfaced]()
+    framings, lenses = framings_of(case), dict[Eye, Surfaced]()
     for eye, due_ in case.dues.items():
         order = case.job.order(eye)
-        lens = surfaced(case.job, order, due_) if order and not due_.partner else None
+        if order is None or due_.partner:
+            continue
+        lens = surfaced(case.job, order, due_, framings.get(eye))
         if lens:
             lenses[eye] = lens
     own = {eye: _entry(eye, lens) for eye, lens in lenses.items()}

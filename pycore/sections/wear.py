@@ -32,6 +32,7 @@ OFFERED = {
 }
 BODY_FIELDS = ("lens.index", "lens.front_curve", "lens.centre_thickness_mm")
 LARGE_TILT_DEG = 25.0  # beyond it the thin-lens matrix is a guide only; common practice
+OFF_MATRIX_D = Decimal("0.10")  # from which the matrix and a pencil of rays are told apart here
 HUNDREDTH = Decimal("0.01")
 
 
@@ -47,6 +48,14 @@ class _Lens:
     wanted: Act
     effective: Act
     compensated: Act
+    pencils: Mapping[str, Power]
+
+    @property
+    def off_matrix(self) -> Decimal:
+        """How far pencils of rays are from the powers by the matrix, at most, in dioptres."""
+        matrix = {"effective": self.effective.power, "compensated": self.wanted.power}
+        differences = [power_difference(matrix[code], it) for code, it in self.pencils.items()]
+        return max(differences, default=Decimal(0))
 
     @property
     def off_power(self) -> Decimal:
@@ -103,6 +112,10 @@ def _lens(job: Job, order: EyeOrder, due_: Due, body: BodyValues, fit: Fit) -> _
     power = order.verified.power or Power(Decimal(0))
     made = Act(power=power, prism=due_.expected - thinning)
     wanted = Act(power=order.prescribed.power or power, prism=order.prescribed.prism_total)
+    compensated = worn.lens_for(wanted)
+    lenses = (
+        {"effective": made, "compensated": compensated} if worn.tilt.axis_deg is not None else {}
+    )
     return _Lens(
         order=order,
         due=due_,
@@ -111,7 +124,8 @@ def _lens(job: Job, order: EyeOrder, due_: Due, body: BodyValues, fit: Fit) -> _
         made=made,
         wanted=wanted,
         effective=worn.effect_of(made),
-        compensated=worn.lens_for(wanted),
+        compensated=compensated,
+        pencils={code: worn.pencil_power(lens) for code, lens in lenses.items()},
     )
 
 
@@ -138,6 +152,7 @@ def _entry(eye: Eye, lens: _Lens) -> Entry:
         "compensated": _act_entry(eye, lens.compensated),
         "stated_used": lens.due.stated_used,
         "held": "front-pole",
+        "pencil": {code: power_entry(power) for code, power in lens.pencils.items()},
         "tilt": {
             "angle_deg": number(from_float(tilt.angle_deg)),
             "axis_deg": None if tilt.axis_deg is None else number(from_float(tilt.axis_deg)),
@@ -177,9 +192,15 @@ def _rows(lenses: Lenses, fit: Fit, own: Mapping[Eye, Entry]) -> Iterator[Row]:
     prisms = {eye: _prism_text(eye, lens.made.prism) for eye, lens in lenses.items()}
     yield _row(f"{made}-prism", prisms, False)
     for code in ("effective", "compensated"):
-        for part in ("power", "prism"):
-            texts = {eye: entry[code][part]["shown"]["text"] for eye, entry in own.items()}
-            yield _row(f"{code}-{part}", texts, assumed)
+        shown = {eye: entry[code] for eye, entry in own.items()}
+        powers = {eye: entry["power"]["shown"]["text"] for eye, entry in shown.items()}
+        yield _row(f"{code}-power", powers, assumed)
+        traced = {eye: lens.pencils[code] for eye, lens in lenses.items() if lens.tilted}
+        if traced:
+            texts = {eye: power_text(_rounded(power)) for eye, power in traced.items()}
+            yield _row(f"{code}-pencil", texts, assumed)
+        prisms = {eye: entry["prism"]["shown"]["text"] for eye, entry in shown.items()}
+        yield _row(f"{code}-prism", prisms, assumed)
     if stated:
         yield _row("stated-off", {eye: _stated_off(lens) for eye, lens in lenses.items()}, assumed)
     tilted = {eye: lens for eye, lens in lenses.items() if lens.tilted}
@@ -247,6 +268,9 @@ def _notes(lenses: Lenses, fit: Fit) -> Iterator[tuple[str, Mapping[str, str]]]:
     tilted = any(lens.tilted for lens in lenses.values())
     if tilted:
         yield "front-pole", {}
+    for eye, lens in lenses.items():
+        if lens.off_matrix >= OFF_MATRIX_D:
+            yield "matrix-off", {"eye": eye, "power": fixed(lens.off_matrix, 2)}
     if lenses and fit.worn_mm != fit.tested_mm:
         yield "at-tested-distance", {}
     if any(not lens.due.stated_used for lens in lenses.values()):

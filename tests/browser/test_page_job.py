@@ -61,7 +61,7 @@ def read(page: Page, eye: str, across: tuple[str, str], along: tuple[str, str]) 
 def test_the_demonstration_job_end_to_end(page_from_disk: Page, screenshot: Picture) -> None:
     page = page_from_disk
     demonstrate(page)
-    expect(page.get_by_text("DEMONSTRATION: an invented job")).to_be_visible()
+    expect(page.get_by_text("DEMONSTRATION, invented")).to_be_visible()
     expect(outcome(page)).to_have_text("Within")
     assert page.evaluate("performance.getEntriesByName('first-answer').length") == 1
     # Worked by hand: 3 in and 1.5 up with 1.33 (2/3 of the add of 2.00) down leaves 3.00 in 0.17 up; the left 3.00 in 2.83 down.
@@ -92,7 +92,7 @@ def test_the_demonstration_job_end_to_end(page_from_disk: Page, screenshot: Pict
     expect(page.locator(".jobs li")).to_have_count(1)
     expect(page.locator(".jobs li")).to_contain_text("DEMO")
     page.locator("#new-job").click()
-    expect(page.get_by_text("DEMONSTRATION: an invented job")).to_be_hidden()
+    expect(page.get_by_text("DEMONSTRATION, invented")).to_be_hidden()
     page.locator("#move-keep").click()
     page.locator(".jobs li button").click()
     expect(outcome(page)).to_have_text("Within")
@@ -453,6 +453,6 @@ def test_an_edition_of_the_shop_judges_as_the_shops_own(page_from_disk: Page, tm
     page.locator("details.check").first.locator("summary").click()
     expect(page.locator("details.check").first).to_contain_text("the shop's own")
     expect(page.locator("details.check").first).not_to_contain_text("published")
-    page.wait_for_timeout(2000)  # what is not yet saved may be lost by leaving; this is about the edition
+    expect(page.locator(".save")).to_have_text("saved")  # each change takes that word away until it is true again
     page.reload()
     expect(page.locator(".decide-head .word")).to_have_text("Outside", timeout=60_000)

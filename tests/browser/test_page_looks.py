@@ -208,6 +208,17 @@ def test_a_job_prints_on_one_sheet(opened: Opener, paper: str) -> None:
     page.screenshot(path=SCREENS / f"sheet-{paper}.png", full_page=True)
 
 
+def test_the_paper_and_the_dates_are_the_shops(opened: Opener) -> None:
+    page = opened()
+    page.locator("#move-bench").click()
+    page.locator("label.key:has(#f-setting-paper-letter)").click()
+    page.locator("label.key:has(#f-setting-date-day-point)").click()
+    page.evaluate("dispatchEvent(new Event('beforeprint'))")
+    sheet = page.pdf(prefer_css_page_size=True)
+    assert re.search(rb"/MediaBox\s*\[0 0 612 792\]", sheet), "Letter is 8.5 by 11 inches (ANSI/ASME Y14.1)"
+    assert re.search(r"\b\d\d\.\d\d\.20\d\d ", page.locator("#sheet").text_content() or "")
+
+
 def test_an_invalid_entry_prints_no_verdict(opened: Opener) -> None:
     page = opened()
     page.locator("#move-order").click()

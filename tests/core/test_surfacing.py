@@ -15,6 +15,7 @@ from pycore.optics.power import Power, prism_at
 from pycore.optics.prism import Eye, Prism
 from pycore.optics.thickness import Solid
 from pycore.sections.answer import SectionAnswer
+from pycore.sections.framing import framings_of
 from pycore.sections.surfacing import surfacing_section
 from tests.references import tilt_reference as room
 
@@ -225,7 +226,7 @@ def lens_of(job: Job, eye: Eye = "right") -> Surfaced:
     case = case_of(read_job(job), None)
     order = case.job.order(eye)
     assert order
-    found = surfaced(case.job, order, case.dues[eye])
+    found = surfaced(case.job, order, case.dues[eye], framings_of(case).get(eye))
     assert found
     return found
 
@@ -358,7 +359,7 @@ def test_lenses_that_are_not_made() -> None:
     case = case_of(read_job(job_of({"sphere": "-1.00"}, {"pd_mm": "30"})), None)
     order = case.job.left
     assert order
-    assert surfaced(case.job, order, case.dues["left"]) is None
+    assert surfaced(case.job, order, case.dues["left"], None) is None
     only = job_of({"pd_mm": "30"}, {"sphere": "-3.00", "partner": True})
     assert (section(only).title, section(only).own, section(only).rows) == ("unknown", None, ())
 

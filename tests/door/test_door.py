@@ -81,6 +81,18 @@ def test_the_example_of_the_contract() -> None:
     SCHEMA.validate(EXAMPLE)
 
 
+def test_each_demonstration_pair_but_the_first_fails_and_leads_to_the_next() -> None:
+    seen, pair = [], "within"
+    while pair not in seen:
+        answer = ask(do="demonstration", pair=pair)
+        verdict = report_on(answer["job"])["verdict"]
+        assert verdict["outcome"] == ("within" if pair == "within" else "outside"), pair
+        seen.append(pair)
+        pair = answer["next"]
+    assert (pair, seen) == ("within", answer["pairs"])
+    assert ask(do="demonstration", pair="no-such")["errors"][0]["code"] == "choice-unknown"
+
+
 def test_the_demonstration_job() -> None:
     job = demonstration()
     assert job["demonstration"] is True

@@ -200,3 +200,29 @@ def decentred(
     lenses = Lenses(index, radius, axes, axes @ turn @ own, pole - thickness_mm[:, None] * axis, steep, flat)
     behind = lenses.back_from(np.zeros((len(index), 3)), -axes[..., 2])
     return lenses, np.sqrt(dot(behind, behind))
+
+
+def power_along_ray(lenses: Lenses, step_mm: float = 1e-3) -> Array:
+    """Power matrix of a narrow pencil from straight ahead, on the plane square to the ray as it leaves.
+
+    Right and up of that plane are the room's, turned by the shortest turn that brings straight ahead onto the ray.
+    """
+    count = len(lenses.index)
+    ray = np.tile([0.0, 0.0, -1.0], (count, 1))
+    middle, chief = lenses.through(np.zeros((count, 3)), ray)
+    square = np.cross(ray, chief)
+    sine = np.linalg.norm(square, axis=-1)
+    angle = np.arctan2(sine, dot(ray, chief))
+    turn = Rotation.from_rotvec(square / np.maximum(sine, 1e-15)[:, None] * angle[:, None]).as_matrix()
+    places, turns = [], []
+    for offset in ([step_mm, 0.0, 0.0], [0.0, step_mm, 0.0]):
+        found = []
+        for sign in (1.0, -1.0):
+            at, left = lenses.through(np.tile(sign * np.array(offset), (count, 1)), ray)
+            along = dot(middle - at, chief) / dot(left, chief)
+            place = np.einsum("...ji,...j->...i", turn, at + along[:, None] * left - middle)
+            found.append((place[:, :2], np.einsum("...ji,...j->...i", turn, left)[:, :2]))
+        places.append((found[0][0] - found[1][0]) / (2 * step_mm))
+        turns.append((found[0][1] - found[1][1]) / (2 * step_mm))
+    place, direction = np.stack(places, -1), np.stack(turns, -1)
+    return -1000.0 * direction @ np.linalg.inv(place)

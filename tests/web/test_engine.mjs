@@ -2,6 +2,8 @@
 import assert from "node:assert/strict";
 import { afterEach, beforeEach, test } from "node:test";
 import { startEngine } from "../../web/app/engine.js";
+import { createKeeper } from "../../web/app/panels/keeper.js";
+import { NAMES } from "../../web/app/section-names.js";
 
 /** Stands in for a browser's worker: keeps what it is sent, answers when the test says so. */
 class FakeWorker {
@@ -94,14 +96,35 @@ test("the worker is given both payloads, and what was asked before it was ready 
   assert.equal(engine.mode, "worker");
 });
 
-test("with nobody waiting, the first calls are spent on the demonstration", async () => {
-  await start();
-  FakeWorker.last.say({ kind: "ready" });
-  const [{ id, do: what }] = FakeWorker.last.asked;
-  assert.equal(what, "demonstration");
-  FakeWorker.last.say({ kind: "answer", id, text: JSON.stringify({ job: { id: "DEMO" } }) });
+test("when it is quiet, the first calls are spent on the demonstration, section by section", async () => {
+  await start({ quietMs: 1 });
+  const worker = FakeWorker.last;
+  worker.say({ kind: "ready" });
+  assert.deepEqual(worker.asked, [], "not before it is quiet");
   await settle();
-  assert.deepEqual(FakeWorker.last.asked.at(-1).job, { id: "DEMO" });
+  const [{ id, do: what }] = worker.asked;
+  assert.equal(what, "demonstration");
+  worker.say({ kind: "answer", id, text: JSON.stringify({ job: { id: "DEMO" } }) });
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).job, { id: "DEMO" });
+  assert.deepEqual(worker.asked.at(-1).sections, []);
+  worker.answer();
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, ["layout"]);
+});
+
+test("what nobody waits for lets every question pass, and goes when it has been quiet", async () => {
+  const engine = await start({ quietMs: 20 });
+  const worker = FakeWorker.last;
+  const idle = engine.ask({ do: "list-editions" }, { lane: "editions", idle: true });
+  worker.say({ kind: "ready" });
+  const urgent = engine.ask({ do: "report" }, { lane: "verdict" });
+  worker.answer();
+  assert.equal((await urgent).what, "report");
+  assert.equal(worker.asked.length, 1);
+  await new Promise((resolve) => setTimeout(resolve, 40));
+  worker.answer();
+  assert.equal((await idle).what, "list-editions");
 });
 
 test("one question is under way at a time, the newest of a lane wins, and other lanes wait their turn", async () => {
@@ -193,4 +216,23 @@ test("a question that has not begun can be taken back; one that is being answere
   assert.equal(FakeWorker.last.asked.at(-1).do, "newest", "what was taken back is never sent");
   FakeWorker.last.answer();
   assert.equal((await newest).what, "newest");
+});
+
+test("a keystroke waits behind one section at most", async () => {
+  const engine = await startAsked();
+  const worker = FakeWorker.last;
+  const keeper = createKeeper({ engine, names: NAMES, first: () => [], changed: () => {}, pauseMs: 1 });
+  keeper.follow({ id: "a" }, []);
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, ["layout"]);
+  worker.answer();
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, ["field"], "a section is under way");
+  const keystroke = engine.ask({ do: "report", sections: [] }, { lane: "verdict" });
+  worker.answer();
+  assert.deepEqual(worker.asked.at(-1).sections, [], "it comes next, before the sections that are left");
+  worker.answer();
+  assert.ok(await keystroke);
+  await settle();
+  assert.deepEqual(worker.asked.at(-1).sections, [NAMES[2]], "then they go on");
 });

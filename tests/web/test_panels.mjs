@@ -100,12 +100,13 @@ function slowEngine() {
   };
 }
 const pause = (ms) => new Promise((resolve) => setTimeout(resolve, ms));
+const LAYOUT = { names: ["layout"], first: () => [] };
 const answerOf = (name) => ({ format: "wedgewright.report/1", sections: { layout: { name } } });
 
 test("sections are asked for once a job: going back to it asks nothing again", async () => {
   const engine = slowEngine();
   let changes = 0;
-  const keeper = createKeeper({ engine, changed: () => (changes += 1), pauseMs: 1 });
+  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => (changes += 1), pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   keeper.follow({ id: "a" }, []);
   await pause(10);
@@ -115,7 +116,7 @@ test("sections are asked for once a job: going back to it asks nothing again", a
   assert.equal(engine.asked.length, 1, "not while it is being answered either");
   engine.asked[0].resolve(answerOf("a"));
   await pause(1);
-  assert.deepEqual([keeper.report.sections.layout.name, keeper.current, changes], ["a", true, 1]);
+  assert.deepEqual([keeper.report.sections.layout.name, keeper.current, changes], ["a", true, 2]);
 
   keeper.follow({ id: "b" }, []);
   assert.equal(keeper.current, false, "the answer shown is that of the job before");
@@ -130,7 +131,7 @@ test("sections are asked for once a job: going back to it asks nothing again", a
 
 test("a keystroke takes the question back, and a late answer never covers a newer one", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, changed: () => {}, pauseMs: 5 });
+  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => {}, pauseMs: 5 });
   keeper.follow({ id: "a" }, []);
   keeper.cancel();
   await pause(15);
@@ -149,7 +150,7 @@ test("a keystroke takes the question back, and a late answer never covers a newe
 
 test("a job that the core cannot answer keeps what was there, said as earlier", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, changed: () => {}, pauseMs: 1 });
+  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => {}, pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   await pause(10);
   engine.asked[0].resolve(answerOf("a"));
@@ -159,4 +160,42 @@ test("a job that the core cannot answer keeps what was there, said as earlier", 
   engine.asked[1].resolve({ errors: [{ code: "internal" }] });
   await pause(1);
   assert.deepEqual([keeper.report.sections.layout.name, keeper.current, keeper.failed], ["a", false, true]);
+});
+
+/** The one section that an asked question is about, and an answer to it. */
+const sectionOf = ({ request }) => request.sections[0];
+const sectionAnswer = (name, job) => ({ sections: { [name]: { job } }, scenes: { [name]: { pair: job } }, right: { power: 1, [name]: job } });
+
+test("sections are asked one at a time, what is looked at first; each is shown as it comes", async () => {
+  const engine = slowEngine();
+  const keeper = createKeeper({ engine, names: ["layout", "edge", "near"], first: () => ["near"], changed: () => {}, pauseMs: 1 });
+  keeper.follow({ id: "a" }, []);
+  for (const [index, name] of ["near", "layout", "edge"].entries()) {
+    await pause(5);
+    assert.deepEqual(engine.asked.map(sectionOf).slice(index), [name], "the next only when the one before is answered");
+    assert.equal(keeper.current, false);
+    engine.asked[index].resolve(sectionAnswer(name, "a"));
+  }
+  await pause(1);
+  assert.equal(keeper.current, true);
+  assert.deepEqual(Object.keys(keeper.report.sections).sort(), ["edge", "layout", "near"]);
+  assert.deepEqual(keeper.report.right, { near: "a", layout: "a", edge: "a" });
+});
+
+test("broken off by a keystroke, the rest is asked later and what was answered is not asked again", async () => {
+  const engine = slowEngine();
+  const keeper = createKeeper({ engine, names: ["layout", "edge"], first: () => [], changed: () => {}, pauseMs: 1 });
+  keeper.follow({ id: "a" }, []);
+  await pause(5);
+  keeper.cancel();
+  engine.asked[0].resolve(sectionAnswer("layout", "a"));
+  await pause(5);
+  assert.equal(engine.asked.length, 1, "nothing more is asked");
+  keeper.follow({ id: "a" }, []);
+  await pause(5);
+  assert.deepEqual(engine.asked.map(sectionOf), ["layout", "edge"]);
+  engine.asked[1].resolve(sectionAnswer("edge", "a"));
+  await pause(1);
+  assert.equal(keeper.current, true);
+  assert.deepEqual(keeper.report.scenes, { layout: { pair: "a" }, edge: { pair: "a" } });
 });

@@ -4,7 +4,7 @@ import { readdirSync, readFileSync } from "node:fs";
 import { join } from "node:path";
 import { test } from "node:test";
 import * as fields from "../../web/app/fields.js";
-import { say, shown, useComma, useWords } from "../../web/app/words.js";
+import { dateText, say, shown, useWords, writeWith } from "../../web/app/words.js";
 
 const ROOT = new URL("../../web/", import.meta.url).pathname;
 const own = JSON.parse(readFileSync(join(ROOT, "words-page.en.json"), "utf8"));
@@ -52,9 +52,23 @@ test("holes are filled with the text given, a missing word shows its code", () =
 });
 
 test("the decimal sign is swapped, clause numbers and names are not", () => {
-  useComma(true);
+  writeWith({ decimal: "comma", date: "iso" });
   assert.equal(shown("3.35 Δ at 26.6° (3.00 in 1.50 up)"), "3,35 Δ at 26,6° (3,00 in 1,50 up)");
   assert.equal(shown("Z80.1-2015, 5.1.4"), "Z80.1-2015, 5.1.4");
-  useComma(false);
+  writeWith({ decimal: "point", date: "iso" });
   assert.equal(shown("3.35 Δ"), "3.35 Δ");
+});
+
+test("a moment is written as the shop writes its dates", () => {
+  const moment = "2026-12-01 15:20";
+  for (const [date, text] of [
+    ["iso", "2026-12-01 15:20"],
+    ["day", "01/12/2026 15:20"],
+    ["day-point", "01.12.2026 15:20"],
+    ["month", "12/01/2026 15:20"],
+  ]) {
+    writeWith({ decimal: "comma", date });
+    assert.equal(shown(dateText(moment)), text);
+  }
+  writeWith({ decimal: "point", date: "iso" });
 });

@@ -1,6 +1,6 @@
 /** A scene of the core as SVG. The core's y goes up, the screen's down; nothing else is changed. */
 
-import { svg } from "./dom.js";
+import { differs, svg } from "./dom.js";
 import { say, shown } from "./words.js";
 
 /**
@@ -159,8 +159,6 @@ function hatching(id, unit) {
 }
 
 const STILL = new Set(["ring", "ring-label", "tick", "base-label", "grid"]);
-/** @type {WeakMap<SVGElement, string>} what each layer was drawn from */
-const drawn = new WeakMap();
 
 /**
  * Draws one layer, unless it shows this already: a keystroke moves the reading, not the rings.
@@ -171,9 +169,7 @@ const drawn = new WeakMap();
  * @param {string} hatch
  */
 function drawLayer(layer, shapes, unit, hatch) {
-  const from = JSON.stringify([unit, say("directions.in"), shown("0.5"), shapes]);
-  if (drawn.get(layer) === from) return;
-  drawn.set(layer, from);
+  if (!differs(layer, [unit, say("directions.in"), shown("0.5"), shapes])) return;
   layer.setAttribute("font-size", String(5 * unit));
   const marks = shapes.flatMap((shape) => marksOf(shape, unit, hatch));
   layer.replaceChildren(...marks.map(({ tag, attributes, text }) => svg(tag, attributes, text ?? null)));

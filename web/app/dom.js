@@ -117,6 +117,22 @@ export function redraw(host, ...children) {
   if (key) find(host, key)?.focus({ preventScroll: true });
 }
 
+/** @type {WeakMap<Element, string>} what each node was drawn from */
+const drawn = new WeakMap();
+
+/**
+ * Tells whether a node is to be drawn anew, and remembers what from: a keystroke changes little of what is seen.
+ *
+ * @param {Element} node
+ * @param {unknown} from all that its picture is made of
+ */
+export function differs(node, from) {
+  const text = JSON.stringify(from) ?? "";
+  if (drawn.get(node) === text) return false;
+  drawn.set(node, text);
+  return true;
+}
+
 /**
  * @param {Element} host
  * @param {string} key

@@ -14,10 +14,14 @@ export function shopEditions({ engine, listed }) {
   let editions = [];
   /** @type {import("./store.js").Store|null} */
   let store = null;
+  let known = false;
 
-  async function list() {
-    const given = await engine.ask({ do: "list-editions", editions }, { lane: "editions" });
-    if (given?.["editions"]) listed(given["editions"]);
+  /** @param {{idle?: boolean}} [how] `idle` at the start, when the first answer goes before */
+  async function list({ idle = false } = {}) {
+    const given = await engine.ask({ do: "list-editions", editions }, { lane: "editions", idle });
+    if (!given?.["editions"]) return;
+    known = true;
+    listed(given["editions"]);
   }
 
   return {
@@ -25,11 +29,15 @@ export function shopEditions({ engine, listed }) {
       return editions;
     },
     list,
+    /** Asks for the list unless it is there: the first answer is drawn, and the next thing may be to choose. */
+    listOnce() {
+      if (!known) list();
+    },
     /** @param {import("./store.js").Store} opened */
     async open(opened) {
       store = opened;
       editions = await opened.all("editions");
-      if (editions.length) await list();
+      list({ idle: true });
     },
     /** @param {unknown} edition @returns {Promise<import("./types.js").Fault[]>} what is wrong with it; nothing where it was taken */
     async add(edition) {

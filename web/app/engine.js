@@ -1,6 +1,6 @@
 /**
  * The page's side of the conversation with the core: one request at a time goes to the worker, the newest of each lane
- * wins, and a worker that fails or takes too long is ended and started anew.
+ * wins, what nobody waits for goes when it is quiet, and a worker that fails or takes too long is ended and started anew.
  */
 import { afterFirstPaint, payload, scriptUrl } from "./boot.js";
 import { NAMES } from "./section-names.js";
@@ -13,6 +13,7 @@ import { NAMES } from "./section-names.js";
  * @property {number} id
  * @property {string} lane
  * @property {string} text
+ * @property {boolean} idle nobody waits for it: it goes when nothing else was asked for a while
  * @property {(answer: EngineAnswer | null) => void} resolve
  */
 /** @typedef {{postMessage: (message: object) => void, end: () => void}} Link */
@@ -20,8 +21,8 @@ import { NAMES } from "./section-names.js";
 
 const TIME_LIMIT_MS = 20000;
 const START_LIMIT_MS = 120000;
-/** After the start: long enough that nobody is likely to wait for the first answer any more. */
-const IDLE_MS = 1500;
+/** Long enough after the last question that somebody waited for: typing pauses less. */
+const QUIET_MS = 400;
 
 /**
  * Opens a worker made of the engine's own text, or, where workers are refused, runs the engine on this thread.
@@ -62,9 +63,9 @@ function refusal(code) {
 }
 
 /**
- * @param {{onState?: (state: EngineState) => void, timeLimitMs?: number}} [options]
+ * @param {{onState?: (state: EngineState) => void, timeLimitMs?: number, quietMs?: number}} [options]
  */
-export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } = {}) {
+export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS, quietMs = QUIET_MS } = {}) {
   /** @type {EngineState} */
   let state = "reading";
   /** @type {"worker" | "main-thread"} */
@@ -77,6 +78,9 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
   let link = null;
   /** @type {ReturnType<typeof setTimeout> | undefined} */
   let timer;
+  /** @type {ReturnType<typeof setTimeout> | undefined} */
+  let quietTimer;
+  let quiet = false;
   let ready = false;
   let crashes = 0;
   let sequence = 0;
@@ -86,8 +90,17 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
     onState(next);
   };
 
+  const somebodyAsks = () => {
+    clearTimeout(quietTimer);
+    quiet = false;
+    quietTimer = setTimeout(() => {
+      quiet = true;
+      sendNext();
+    }, quietMs);
+  };
+
   const sendNext = () => {
-    const next = waiting.values().next().value;
+    const next = [...waiting.values()].find(({ idle }) => !idle || quiet);
     if (!ready || running || !link || !next) {
       return;
     }
@@ -150,9 +163,13 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
         clearTimeout(timer);
         ready = true;
         enter("ready");
+        somebodyAsks();
         warmUp();
         sendNext();
       } else if (data.kind === "answer" && data.id === running?.id) {
+        if (!running?.idle) {
+          somebodyAsks();
+        }
         settle(JSON.parse(data.text));
         sendNext();
       } else if (data.kind === "failed") {
@@ -162,22 +179,15 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
     crash: crashed,
   };
 
-  // The first calls of a fresh Python are slow; where nobody waits they are spent on the demonstration.
+  // The first calls of a fresh Python are slow, and each section's code is loaded when it is first asked for: while it
+  // is quiet that is done with the demonstration, one by one, so that a question waits behind one of them at most.
   const warmUp = async () => {
-    if (waiting.size > 0) {
-      return;
-    }
-    const demonstration = await ask({ do: "demonstration" }, { lane: "warm-up" });
+    const background = { lane: "warm-up", idle: true };
+    const demonstration = await ask({ do: "demonstration" }, background);
     if (demonstration?.job) {
-      await ask({ do: "report", job: demonstration.job, sections: [], scenes: true }, { lane: "warm-up" });
-      setTimeout(() => loadSections(demonstration.job), IDLE_MS);
-    }
-  };
-
-  // Each section's code is loaded when it is first asked for; here one by one, so that nobody waits behind them all.
-  const loadSections = async (/** @type {unknown} */ job) => {
-    for (const name of NAMES) {
-      await ask({ do: "report", job, sections: [name], scenes: true }, { lane: "warm-up" });
+      for (const sections of [[], ...NAMES.map((name) => [name])]) {
+        await ask({ do: "report", job: demonstration.job, sections, scenes: true }, background);
+      }
     }
   };
 
@@ -208,10 +218,10 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
    * Asks the core. A newer question of the same lane makes an older one that has no answer yet resolve to null.
    *
    * @param {EngineRequest} request
-   * @param {{lane: string}} lane
+   * @param {{lane: string, idle?: boolean}} how `idle` where nobody waits for the answer
    * @returns {Promise<EngineAnswer | null>}
    */
-  function ask(request, { lane }) {
+  function ask(request, { lane, idle = false }) {
     return new Promise((resolve) => {
       if (state === "failed") {
         resolve(refusal("engine-failed"));
@@ -224,7 +234,10 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS } 
       }
       const text = JSON.stringify({ format: "wedgewright.request/1", sequence, ...request });
       waiting.delete(lane); // so that the newer one takes its place at the end of the queue
-      waiting.set(lane, { id: sequence, lane, text, resolve });
+      waiting.set(lane, { id: sequence, lane, text, idle, resolve });
+      if (!idle) {
+        somebodyAsks();
+      }
       sendNext();
     });
   }

@@ -57,7 +57,6 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
   const tabs = MOVES.map((name) =>
     button(say(`page.nav.${name}`), () => show(name), { class: "move", id: `move-${name}`, "data-repeats": true }),
   );
-  const banner = el("p", { class: "demonstration", hidden: true }, say("page.demonstration.banner"));
 
   byId("top").append(
     el("h1", { class: "brand" }, "Wedgewright"),
@@ -65,7 +64,6 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
     el("nav", { "aria-label": say("page.nav.label") }, ...tabs),
     el("div", { class: "tools" }, undo, redo, pad),
   );
-  byId("banner").append(banner);
   const main = byId("views");
   for (const [name, view] of Object.entries(views)) {
     view.node.id = `view-${name}`;
@@ -122,7 +120,6 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
         entries["lens.design"] ? say(`page.values.design.${entries["lens.design"]}`) : "",
       ];
       job.textContent = parts.filter(Boolean).join(" · ") || say("page.frame.no_job");
-      banner.hidden = entries["demonstration"] !== "true";
       undo.disabled = !state.canUndo;
       redo.disabled = !state.canRedo;
       pad.setAttribute("aria-pressed", String(wantsKeypad(settings)));

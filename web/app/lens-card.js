@@ -2,7 +2,7 @@
 
 import { dialText, mainFacts, moreFacts } from "./facts.js";
 import { drawScene, legendMark, placeOf } from "./dial.js";
-import { button, el, redraw, svg } from "./dom.js";
+import { button, differs, el, redraw, svg } from "./dom.js";
 import { removeBranch } from "./job.js";
 import { eyeName, say, shown } from "./words.js";
 
@@ -125,11 +125,16 @@ export function lensCard(eye, { state, steps }) {
       waiting.hidden = Boolean(scenes);
       drawPicture(overview, scenes?.dial, `dial-${eye}`, lens ? dialText(eye, lens) : "");
       drawPicture(close, scenes?.close, `close-${eye}`, say("page.dial.close", { eye: eyeName(eye) }));
-      redraw(facts, lens ? factList(mainFacts(lens)) : null);
-      redraw(more, lens ? factList(moreFacts(lens)) : null);
+      drawFacts(facts, lens ? mainFacts(lens) : []);
+      drawFacts(more, lens ? moreFacts(lens) : []);
       first.textContent = lens ? hint(eye, report, lens) : "";
     },
   };
+}
+
+/** @param {Element} host @param {Fact[]} facts */
+function drawFacts(host, facts) {
+  if (differs(host, facts)) redraw(host, facts.length ? factList(facts) : null);
 }
 
 /**

@@ -1,5 +1,6 @@
 /** Joins the parts: state to form, form to engine, answer to pictures. One way round, no return. */
 
+import { demonstration } from "./demonstration.js";
 import { watchDock } from "./dock.js";
 import { byId, el, redraw } from "./dom.js";
 import { copyText, download, fileName } from "./files.js";
@@ -12,7 +13,7 @@ import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
 import { orderLine } from "./order-line.js";
 import { drawSheet } from "./print.js";
-import { applyTheme, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
 import { openStore } from "./store.js";
@@ -23,7 +24,7 @@ import { keepView } from "./views/keep.js";
 import { layoutView } from "./views/layout.js";
 import { orderView } from "./views/order.js";
 import { readView } from "./views/read.js";
-import { say, useComma } from "./words.js";
+import { say, writeWith } from "./words.js";
 
 /**
  * @typedef {import("./types.js").Report} Report
@@ -35,8 +36,8 @@ import { say, useComma } from "./words.js";
 export function startPage(startEngine) {
   const root = document.documentElement;
   const settings = loadSettings();
-  applyTheme(settings);
-  useComma(settings.decimal === "comma");
+  applyLook(settings);
+  writeWith(settings);
 
   const state = createState();
   const form = createForm(state);
@@ -63,6 +64,8 @@ export function startPage(startEngine) {
   });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
+  const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
+  const demonstrate = invented.load;
   const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
@@ -90,6 +93,7 @@ export function startPage(startEngine) {
     drawView(settings.view);
     strip.draw(standing);
     top.draw();
+    invented.draw();
     top.queries(
       (standing.report?.notes ?? []).filter(({ about, severity }) => about === "order" && severity === "warning").length,
     );
@@ -137,6 +141,7 @@ export function startPage(startEngine) {
     standing.earlier = faults.length > 0 && standing.report !== null;
     if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
     draw();
+    editions.listOnce();
     views.layout.follow(standing, editions.all);
     root.dataset["drawn"] = String(given.sequence ?? "");
     if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
@@ -153,16 +158,6 @@ export function startPage(startEngine) {
     views.order.useEditions(list);
     views.bench.showEditions(list.filter(({ provenance }) => provenance.includes("local")));
     if (state.entries["edition"]) answer();
-  }
-
-  async function demonstrate() {
-    const given = await engine.ask({ do: "demonstration" }, { lane: "demonstration" });
-    if (!given?.["job"]) {
-      if (given?.["errors"]) refuse(given["errors"]);
-      return;
-    }
-    state.replace(guestJob(state.entries, fromJob(given["job"])));
-    top.show("read");
   }
 
   function newJob() {
@@ -249,8 +244,8 @@ export function startPage(startEngine) {
 
   function settingsChanged() {
     saveSettings(settings);
-    applyTheme(settings);
-    useComma(settings.decimal === "comma");
+    applyLook(settings);
+    writeWith(settings);
     keypad.refresh();
     top.keypad();
     line.ask();
@@ -290,7 +285,7 @@ export function startPage(startEngine) {
     })
     .catch(() => top.saved("off"));
 
-  editions.list();
+  editions.list({ idle: true });
   top.show(settings.view);
   draw();
   keypad.refresh();

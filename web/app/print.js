@@ -10,7 +10,7 @@ import { outcomeSymbol } from "./symbols.js";
 import { EYES } from "./types.js";
 import { outcomeOf, sentenceOf } from "./verdict.js";
 import { cautionLines } from "./views/decide.js";
-import { say, shown } from "./words.js";
+import { dateText, say, shown } from "./words.js";
 
 /**
  * @typedef {import("./types.js").Report} Report
@@ -123,7 +123,7 @@ function sheetHead(entries, at) {
     "header",
     {},
     el("h1", {}, say("page.print.title", { id: entries["id"] ?? "" })),
-    el("p", {}, [...names, at].join(" · ")),
+    el("p", {}, [...names, dateText(at)].join(" · ")),
   );
 }
 
@@ -176,7 +176,7 @@ export function drawSheet(host, { standing, entries, hash, at, sections }) {
       "div",
       { class: "sheet-sign" },
       el("p", {}, say("page.print.initials")),
-      el("p", { class: "sheet-box" }, by ? `${by} · ${entries["signed.at"] ?? ""}` : ""),
+      el("p", { class: "sheet-box" }, by ? `${by} · ${dateText(entries["signed.at"] ?? "")}` : ""),
     ),
     el("div", { class: "cautions" }, ...cautionLines(verdict?.cautions ?? [])),
     sections,

@@ -9,10 +9,12 @@ const KEY = "wedgewright.settings";
  * @property {"auto"|"on"|"off"} keypad
  * @property {string} view
  * @property {"360"|"180"} bases
+ * @property {"iso"|"day"|"day-point"|"month"} date order and signs of day, month and year
+ * @property {"any"|"a4"|"letter"} paper
  */
 
 /** @type {Settings} */
-const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360" };
+const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360", date: "iso", paper: "any" };
 
 /** @returns {Settings} */
 export function loadSettings() {
@@ -40,11 +42,12 @@ export function eraseSettings() {
   }
 }
 
-/** @param {Settings} settings */
-export function applyTheme(settings) {
+/** @param {Settings} settings colours and paper */
+export function applyLook(settings) {
   const root = document.documentElement;
   if (settings.theme === "auto") delete root.dataset.theme;
   else root.dataset.theme = settings.theme;
+  root.dataset.paper = settings.paper;
 }
 
 /** @param {Settings} settings whether our own keypad opens at a field */

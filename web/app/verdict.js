@@ -1,6 +1,6 @@
 /** The strip at the foot: one word, one symbol, one sentence; what is to be mended; the way to the reasons. */
 
-import { button, byId, el, redraw } from "./dom.js";
+import { button, byId, differs, el, redraw } from "./dom.js";
 import { faultPlace, faultText, isAsk } from "./faults.js";
 import { outcomeSymbol } from "./symbols.js";
 import { say } from "./words.js";
@@ -101,18 +101,20 @@ export function verdictStrip({ show, goTo }) {
       const sentence = sentenceOf(standing);
       host.dataset["outcome"] = outcome;
       host.classList.toggle("earlier", earlier);
-      redraw(
-        body,
-        outcomeSymbol(outcome),
-        el(
-          "div",
-          { class: "said" },
-          el("p", { class: "word" }, word, earlier ? el("span", { class: "badge" }, say("page.verdict.earlier")) : null),
-          el("p", { class: "sentence" }, sentence),
-          verdict ? el("p", { class: "caution" }, say("page.verdict.caution")) : null,
-        ),
-        el("div", { class: "strip-keys" }, ...keysFor(standing)),
-      );
+      if (differs(body, [outcome, sentence, earlier, Boolean(report), verdict?.not_checked.length])) {
+        redraw(
+          body,
+          outcomeSymbol(outcome),
+          el(
+            "div",
+            { class: "said" },
+            el("p", { class: "word" }, word, earlier ? el("span", { class: "badge" }, say("page.verdict.earlier")) : null),
+            el("p", { class: "sentence" }, sentence),
+            verdict ? el("p", { class: "caution" }, say("page.verdict.caution")) : null,
+          ),
+          el("div", { class: "strip-keys" }, ...keysFor(standing)),
+        );
+      }
       const spoken = begun && verdict && !earlier ? `${word}. ${sentence}` : "";
       if (live.textContent !== spoken) live.textContent = spoken;
       clearTimeout(later);

@@ -3,15 +3,18 @@
 /** @type {any} */
 let words = {};
 let comma = false;
+/** @type {string} */
+let dates = "iso";
 
 /** @param {object} all the groups of the words file */
 export function useWords(all) {
   words = all;
 }
 
-/** @param {boolean} on whether numbers are shown with a decimal comma */
-export function useComma(on) {
-  comma = on;
+/** @param {{decimal: string, date: string}} settings how this shop writes its decimal sign and its dates */
+export function writeWith({ decimal, date }) {
+  comma = decimal === "comma";
+  dates = date;
 }
 
 /** @param {string} code @returns {string|undefined} */
@@ -54,6 +57,23 @@ export function say(code, params = {}) {
 export function shown(text) {
   const plain = text === null || text === undefined ? "" : String(text);
   return comma ? plain.replace(/(?<![\w.])(\d+)\.(\d+)(?![\w.]*\d)/g, "$1,$2") : plain;
+}
+
+/** Year, month and day, in the order and with the signs of each way of writing them. */
+const DATES = {
+  day: "$3/$2/$1",
+  "day-point": "$3.$2.$1",
+  month: "$2/$3/$1",
+};
+
+/**
+ * A moment as this shop writes its dates. It is kept, and read, largest unit first.
+ *
+ * @param {string} moment as `stamp` makes it, "2026-12-01 15:20"
+ */
+export function dateText(moment) {
+  const order = DATES[/** @type {keyof typeof DATES} */ (dates)];
+  return order ? moment.replace(/^(\d{4})-(\d\d)-(\d\d)/, order) : moment;
 }
 
 /** @param {string} eye "right", "left" or "pair" */

@@ -2,10 +2,10 @@
  * The engine's side of the conversation with the page. It runs in a worker, or on the page's own thread where workers are
  * refused; it knows a port to listen at and nothing of the page.
  *
- * From the page: {kind: "wasm" | "python", text} once each, then {kind: "ask", id, text}.
+ * From the page: {kind: "wasm", text} and one of {kind: "snapshot" | "python", text}, then {kind: "ask", id, text}.
  * To the page: {kind: "ready"}, {kind: "answer", id, text}, {kind: "failed", message}.
  */
-import { startPython } from "./python.js";
+import { startFromLibrary, startFromSnapshot } from "./python.js";
 
 /**
  * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
@@ -18,15 +18,22 @@ import { startPython } from "./python.js";
 export function serve(port, pyodideBehind) {
   /** @type {Record<string, (text: string) => void>} */
   const arrived = {};
-  const payload = (/** @type {string} */ kind) => new Promise((resolve) => (arrived[kind] = resolve));
-  const handle = startPython(pyodideBehind, payload("wasm"), payload("python"));
+  /** @type {(kind: string) => Promise<string>} */
+  const payload = (kind) => new Promise((resolve) => (arrived[kind] = resolve));
+  const wasm = payload("wasm");
+  // Whichever of the two comes says which way to start.
+  const handle = Promise.race([
+    payload("snapshot").then((text) => startFromSnapshot(pyodideBehind, wasm, text)),
+    payload("python").then((text) => startFromLibrary(pyodideBehind, wasm, text)),
+  ]);
   handle.then(
     () => port.postMessage({ kind: "ready" }),
     (error) => port.postMessage({ kind: "failed", message: String(error) }),
   );
   port.onmessage = async ({ data }) => {
-    if (data.kind in arrived) {
-      arrived[data.kind](data.text);
+    const take = arrived[data.kind];
+    if (take) {
+      take(data.text);
       return;
     }
     try {

@@ -4,7 +4,7 @@
  * @param {string} text
  * @returns {Uint8Array<ArrayBuffer>}
  */
-export function bytesOfBase64(text) {
+export function bytesOf(text) {
   if ("fromBase64" in Uint8Array) {
     return /** @type {any} */ (Uint8Array).fromBase64(text);
   }
@@ -27,4 +27,12 @@ export function inflated(bytes) {
   const written = [writer.write(bytes), writer.close()];
   written.forEach((step) => step.catch(() => {})); // an error shows where the stream is read
   return gunzip.readable;
+}
+
+/**
+ * @param {ReadableStream<Uint8Array<ArrayBuffer>>} stream
+ * @returns {Promise<Uint8Array<ArrayBuffer>>}
+ */
+export async function readAll(stream) {
+  return new Uint8Array(await new Response(stream).arrayBuffer());
 }

@@ -108,7 +108,8 @@ export function createPanel(name, tools) {
       const text = section ? titleOf(section) : waiting;
       if (answer.textContent !== text) answer.textContent = text;
       const written = shown("0.5");
-      if (next === report && written === look) return;
+      const same = next && report && section === report.sections?.[name];
+      if ((same || next === report) && written === look) return;
       [report, look] = [next, written];
       stale = true;
       if (node.open) drawBody();

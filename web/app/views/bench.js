@@ -17,7 +17,7 @@ import { say } from "../words.js";
  */
 export function benchView({ form, settings, settingsChanged, erase, editions }) {
   const shop = shopCard(editions);
-  /** @param {"theme"|"decimal"|"keypad"|"bases"} name @param {string[]} values */
+  /** @param {"theme"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
   const setting = (name, values) => {
     const control = choiceControl(
       { path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values },
@@ -69,6 +69,8 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         setting("decimal", ["point", "comma"]),
         setting("keypad", ["auto", "on", "off"]),
         setting("bases", ["360", "180"]),
+        setting("date", ["iso", "day", "day-point", "month"]),
+        setting("paper", ["any", "a4", "letter"]),
       ),
       card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),

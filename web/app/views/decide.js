@@ -5,7 +5,7 @@ import { button, card, el, redraw } from "../dom.js";
 import { noteList } from "../notes.js";
 import { outcomeSymbol } from "../symbols.js";
 import { outcomeOf, sentenceOf } from "../verdict.js";
-import { say, shown } from "../words.js";
+import { dateText, say, shown } from "../words.js";
 
 /**
  * @typedef {import("../types.js").Report} Report
@@ -198,7 +198,7 @@ export function decideView({ state, sign, print, copy }) {
       redraw(edition, ...(verdict ? editionLines(verdict) : [el("p", { class: "help" }, say("page.verdict.no_edition"))]));
       redraw(cautions, ...cautionLines(verdict?.cautions ?? []));
       const by = state.entries["signed.initials"];
-      signed.textContent = by ? say("page.decide.signed", { initials: by, at: state.entries["signed.at"] ?? "" }) : "";
+      signed.textContent = by ? say("page.decide.signed", { initials: by, at: dateText(state.entries["signed.at"] ?? "") }) : "";
       gate();
     },
   };

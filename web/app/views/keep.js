@@ -2,7 +2,7 @@
 
 import { button, card, el, redraw } from "../dom.js";
 import { outcomeSymbol } from "../symbols.js";
-import { say } from "../words.js";
+import { dateText, say } from "../words.js";
 
 /** @typedef {import("../keeping.js").KeptJob} KeptJob */
 
@@ -86,7 +86,7 @@ export function keepView({ newJob, demonstrate, exportFile, importText, copy, pr
                 "span",
                 { class: "job-name" },
                 el("strong", {}, job.id || say("page.keep.unnamed")),
-                ` ${say(`page.outcomes.${job.outcome}`)} · ${job.edition} · ${job.initials} · ${job.at}`,
+                ` ${say(`page.outcomes.${job.outcome}`)} · ${job.edition} · ${job.initials} · ${dateText(job.at)}`,
               ),
               button(say("page.actions.reopen"), () => reopen(job), { "aria-label": say("page.keep.reopen", { id: job.id }) }),
             ),

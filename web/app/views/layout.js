@@ -16,7 +16,7 @@ import { say } from "../words.js";
  * @param {(field: string) => void} tools.goTo
  */
 export function layoutView({ form, state, engine, goTo }) {
-  const keeper = createKeeper({ engine, changed: show });
+  const keeper = createKeeper({ engine, names: NAMES, first: () => opened(), changed: show });
   const panels = NAMES.map((name) => createPanel(name, { form, state, goTo }));
   const said = el("p", { class: "help layout-said", role: "status" });
   const list = el("div", { class: "panels" }, ...panels.map(({ node }) => node));
@@ -56,7 +56,7 @@ export function layoutView({ form, state, engine, goTo }) {
     if (said.textContent !== text) said.textContent = text;
     list.classList.toggle("earlier", earlier);
     list.dataset["current"] = String(keeper.current);
-    const waiting = standing?.report && !keeper.report && !keeper.failed ? "…" : "";
+    const waiting = standing?.report && !keeper.current && !keeper.failed ? "…" : "";
     for (const panel of panels) panel.show(keeper.report, waiting);
   }
 

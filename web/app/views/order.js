@@ -7,7 +7,7 @@ import { hasOrder } from "../job.js";
 import { noteList } from "../notes.js";
 import { prismGroup } from "../prism-rows.js";
 import { EYES } from "../types.js";
-import { say, shown } from "../words.js";
+import { dateText, say, shown } from "../words.js";
 
 /**
  * @typedef {import("../types.js").Report} Report
@@ -160,7 +160,7 @@ export function orderView({ form, state, line, demonstrate, reopen }) {
       known.hidden = !job || Boolean(entries["signed.at"]);
       if (!job) return [];
       return [
-        el("p", {}, say("page.order.known", { at: job.at, initials: job.initials })),
+        el("p", {}, say("page.order.known", { at: dateText(job.at), initials: job.initials })),
         button(say("page.actions.reopen"), () => reopen(job), { id: "reopen-known" }),
       ];
     },

@@ -1,6 +1,6 @@
 /** The reading: the pair as it lies there, right lens on the left, and everything that is read of it. */
 
-import { card, el, redraw } from "../dom.js";
+import { card, differs, el, redraw } from "../dom.js";
 import * as fields from "../fields.js";
 import { lensCard } from "../lens-card.js";
 import { noteList } from "../notes.js";
@@ -95,13 +95,16 @@ export function readView({ form, state, steps }) {
       pair.classList.toggle("earlier", earlier);
       for (const lens of cards) lens.draw(report);
       const lines = EYES.flatMap((eye) => report?.order_lines?.[eye]?.slice(0, 1) ?? []);
-      redraw(
-        summary,
-        lines.length ? el("p", { class: "order-lines" }, ...lines.map((line) => el("span", {}, shown(line)))) : null,
-        ...(report ? pointLines(report) : []),
-      );
+      const points = EYES.map((eye) => report?.[eye]?.point);
+      if (differs(summary, [lines, points, shown("0.5")])) {
+        redraw(
+          summary,
+          lines.length ? el("p", { class: "order-lines" }, ...lines.map((line) => el("span", {}, shown(line)))) : null,
+          ...(report ? pointLines(report) : []),
+        );
+      }
       const said = (report?.notes ?? []).filter(({ about }) => about === "reading" || about === "instrument");
-      redraw(notes, said.length ? noteList(said) : null);
+      if (differs(notes, [said, shown("0.5")])) redraw(notes, said.length ? noteList(said) : null);
     },
   };
 }
