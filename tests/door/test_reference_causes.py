@@ -17,13 +17,13 @@ import pycore
 from tests.references.bench_reference import power_matrix
 from tests.references.cause_confusion import CODES, LARGEST_ACCUSED, LARGEST_ERROR, LEAST_AMONG_THREE, LEAST_FIRST, Figures, measure
 from tests.references.cause_faults import NOISE
-from tests.references.cause_lenses import Floats, slid_by
-from tests.references.cause_posterior import AS_ORDERED, Entry, posterior
-from tests.references.cause_simulator import Case, draw_case
-from tests.references.cause_statistics import causes_of, listed
+from tests.references.cause_lenses import LAYOUT, OWN, ZERO, Floats, slid_by
+from tests.references.cause_posterior import AS_ORDERED, Entry, as_far_as_read, posterior
+from tests.references.cause_simulator import Case, draw_case, draw_with
+from tests.references.cause_statistics import causes_of, estimates, listed
 
-pytestmark = pytest.mark.slow
-COUNT = 1400
+pytestmark = [pytest.mark.slow, pytest.mark.timeout(900)]  # a minute on two idle processors
+COUNT = 1200
 
 
 @pytest.fixture(scope="module")
@@ -61,7 +61,7 @@ def test_probabilities_sum_to_one(figures: Figures) -> None:
 
 def test_the_simulator_is_calibrated_on_its_own_jobs() -> None:
     """Its exact posterior, put in the program's place, keeps what is promised of the program."""
-    found = measure(500, 11, program=False)
+    found = measure(400, 11, program=False)
     assert found.first.error <= LARGEST_ERROR / 2 + 2 * found.first.by_chance
     assert found.every.error <= 2 * found.every.by_chance + 1e-3
     assert found.ranks.first == 1
@@ -112,6 +112,46 @@ def test_every_cause_is_listed_once() -> None:
             one_lens += 1
             entries = [entry for entry, _ in listed(case.job)]
             assert len(set(entries)) == len(entries)
+
+
+SIZED = (
+    "lens-displaced",
+    "read-elsewhere",
+    "instrument-zero",
+    "layout-pd-wrong",
+    "layout-height-wrong",
+    "lens-rotated",
+    "frame-not-square",
+)
+
+
+def true_size(case: Case, eye: str, name: str) -> float:
+    """The simulated size that the report names so, of a job with one cause."""
+    ((code, eyes),) = case.truth.entry
+    latents, own = case.latents[eye], OWN.start
+    if code.startswith("layout"):
+        towards = -1 if name == "inwards_mm" and eyes == ("left",) else 1
+        return float(latents[LAYOUT] if len(eyes) == 2 else latents[own] * towards)
+    places = {"right_mm": own, "up_mm": own + 1, "x": ZERO.start, "y": ZERO.start + 1}
+    return case.turn_deg[eye] if name == "turn_deg" else float(latents[places[name]])
+
+
+def test_sizes_lie_within_their_uncertainty() -> None:
+    """True size less stated size, over the stated uncertainty: like a standard normal, whatever was read."""
+    rng, scores = np.random.default_rng(9), []
+    for code in SIZED:
+        for _ in range(15):
+            case = draw_with(rng, code)
+            entry = as_far_as_read(case.truth.entry, case.pair.plan.eyes)
+            estimate = estimates(case.job).get(entry)
+            for eye in entry[0][1] if estimate else ():
+                scores += [
+                    (true_size(case, eye, name) - found["mean"]) / found["uncertainty"]
+                    for name, found in estimate.get(eye, {}).items()
+                ]
+    assert len(scores) > 80
+    assert max(map(abs, scores)) < 5
+    assert 0.6 < np.mean(np.square(scores)) < 1.5
 
 
 def test_a_look_entered_changes_the_list_as_bayes_has_it() -> None:

@@ -21,13 +21,10 @@ from tests.references.cause_posterior import prism_variances
 POWER_STEP = {"manual": 0.125, "automatic": 0.01}
 
 
-def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, common: Floats) -> tuple[Floats, Job]:
-    """One lens (one hypothesis) read: its values as the digits say them, and the digits.
-
-    `common`: the latent values that both lenses have in common.
-    """
+def read_lens(rng: Rng, pair: PairOrder, eye: str, lenses: Lenses, latents: Floats) -> tuple[Floats, Job]:
+    """One lens (one hypothesis) read, its latent values given: its values as the digits say them, and the digits."""
     means, loads = predicted(pair, eye, lenses)
-    true = means[0] + loads[0] @ np.concatenate([common, rng.normal(0, np.sqrt(lenses.own_variance[0]))])
+    true = means[0] + loads[0] @ latents
     broad = np.sqrt(lenses.broad[0])
     true[: PLACE.start] += rng.normal(0, broad[: PLACE.start])
     laboratory, _, settling = prism_variances(pair)

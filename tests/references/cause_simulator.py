@@ -44,6 +44,8 @@ class Case:
     truth: Truth
     data: dict[str, Floats]
     job: Job
+    latents: dict[str, Floats]  # of each place: displacements, zero error and the like
+    turn_deg: dict[str, float]  # of each place: by how much the lens or its frame is turned
 
 
 # --- what went wrong ----------------------------------------------------------------------------------------------------------
@@ -100,20 +102,22 @@ def draw_variant(rng: Rng, faults: Any, code: str) -> Any:
     return variants[int(rng.choice(len(variants), p=[fault.share for fault in variants]))]
 
 
-def draw_turn(rng: Rng, code: str) -> Floats:
-    """One angle in degrees."""
-    return np.array([rng.normal(0, parameter(code, "turn_deg"))])
+def draw_turn(rng: Rng, fault: Fault | PairFault) -> float:
+    """One angle in degrees; 0 where nothing is turned."""
+    return float(rng.normal(0, parameter(fault.code, "turn_deg"))) if fault.turns else 0.0
 
 
-def lens_on_table(pair: PairOrder, place: str, shared: PairFault, own: dict[str, Fault], table_turn: Floats, rng: Rng) -> Lenses:
-    """The lens that lies at one place, with all that went wrong with it."""
+def lens_on_table(
+    pair: PairOrder, place: str, shared: PairFault, own: dict[str, Fault], own_deg: float, table_deg: float
+) -> Lenses:
+    """The lens that lies at one place, with all that went wrong with it; `own_deg` and `table_deg`: turned by."""
     source = OTHER[place] if shared.crossed else place
     fault = own[source]
     lens = fault.make(shared.made_as[place](start(pair, source), start(pair, OTHER[source])))
     if fault.turns:
-        lens = turned(lens, draw_turn(rng, fault.code))
+        lens = turned(lens, np.array([own_deg]))
     lens = fault.read(shown(lens))
-    lens = not_square(lens, table_turn) if shared.turns else shared.read[place](lens)
+    lens = not_square(lens, np.array([table_deg])) if shared.turns else shared.read[place](lens)
     return with_zero(lens)
 
 
@@ -126,19 +130,21 @@ def simulate(rng: Rng, pair: PairOrder, hypotheses: Hypotheses, truth: Truth) ->
         pairs = hypotheses.same_variant(truth.right)
         right, left, _ = pairs[int(rng.choice(len(pairs), p=[share for _, _, share in pairs]))]
         own = {"right": variants[0][right], "left": variants[1][left]}
-    table_turn = draw_turn(rng, shared.code) if shared.turns else np.zeros(1)
+    table_deg = draw_turn(rng, shared)
+    own_deg = {eye: draw_turn(rng, own[eye]) for eye in EYES}
     common = rng.normal(0, np.sqrt(common_variance(pair, shared)))
-    data, readings = {}, {}
+    data, readings, latents = {}, {}, {}
     for eye in EYES:
-        lenses = lens_on_table(pair, eye, shared, own, table_turn, rng)
-        data[eye], readings[eye] = read_lens(rng, pair, eye, lenses, common)
+        lenses = lens_on_table(pair, eye, shared, own, own_deg[OTHER[eye] if shared.crossed else eye], table_deg)
+        latents[eye] = np.concatenate([common, rng.normal(0, np.sqrt(lenses.own_variance[0]))])
+        data[eye], readings[eye] = read_lens(rng, pair, eye, lenses, latents[eye])
     too_far = max(far_off(pair, eye, data[eye]) for eye in EYES) > FARTHEST_SLID_MM
     if pair.plan.heights and (too_far or max(np.abs(data[eye][PLACE]).max() for eye in EYES) > OFF_THE_LENS_MM):
         pair = replace(pair, plan=replace(pair.plan, heights=False, distances=False))
         hypotheses = hypotheses_of(pair)
         readings = {eye: {name: typed for name, typed in its.items() if not name.endswith("_mm")} for eye, its in readings.items()}
     job = document(pair) | {"readings": {"at": "marked-point", **{eye: readings[eye] for eye in pair.plan.eyes}}}
-    return Case(pair, hypotheses, truth, data, job)
+    return Case(pair, hypotheses, truth, data, job, latents, {eye: own_deg[eye] + table_deg for eye in EYES})
 
 
 FARTHEST_SLID_MM, OFF_THE_LENS_MM = 10.0, 14.0

@@ -50,19 +50,26 @@ class Judged:
 # --- the program's list ---------------------------------------------------------------------------------------------------
 
 
-def listed(job: dict[str, Any]) -> list[tuple[Entry, float]]:
+def reported(job: dict[str, Any]) -> list[tuple[Entry, dict[str, Any]]]:
     """The program's list of causes of one job, through its door."""
     request = {"format": "wedgewright.request/1", "do": "report", "job": job, "sections": ["causes"]}
     report = json.loads(handle(json.dumps(request)))
     assert "causes" in report, (report, job)
-    return [
-        (tuple(sorted(member_of(part) for part in (entry, *entry.get("with", [])))), entry["probability"])
-        for entry in report["causes"]
-    ]
+    return [(tuple(sorted(member_of(part) for part in (one, *one.get("with", [])))), one) for one in report["causes"]]
+
+
+def listed(job: dict[str, Any]) -> list[tuple[Entry, float]]:
+    """Its probabilities, in its order."""
+    return [(entry, one["probability"]) for entry, one in reported(job)]
+
+
+def estimates(job: dict[str, Any]) -> dict[Entry, dict[str, Any] | None]:
+    """How large each of its causes was, None where that is not worked out."""
+    return {entry: one["estimate"] for entry, one in reported(job)}
 
 
 def causes_of(job: dict[str, Any]) -> dict[Entry, float]:
-    """The same by entry."""
+    """Its probabilities by entry."""
     found: dict[Entry, float] = {}
     for entry, value in listed(job):
         found[entry] = found.get(entry, 0.0) + value
