@@ -46,7 +46,7 @@ def opened(browser: Browser, dist: Path, watched: Callable[[Page], Page]) -> Ite
 
 def worked_out(page: Page) -> None:
     """Wait for the sections of the job as it is now."""
-    expect(page.locator(".panels")).to_have_attribute("data-current", "true", timeout=60_000)
+    expect(page.locator("#view-layout .panels")).to_have_attribute("data-current", "true", timeout=60_000)
 
 
 def demonstration(page: Page) -> None:
@@ -266,13 +266,13 @@ def test_a_wrong_radius_is_said_at_the_list_and_the_earlier_answer_marked(opened
     layout = panel(page, "layout")
     layout.locator(".group > summary").first.click()
     layout.locator("#f-frame-outline_mm").fill("25 24 x 23")
-    expect(page.locator(".panels.earlier")).to_be_visible()
-    expect(page.locator(".layout-said")).to_contain_text("earlier")
+    expect(page.locator("#view-layout .panels.earlier")).to_be_visible()
+    expect(page.locator("#view-layout .panels-said")).to_contain_text("earlier")
     expect(layout.locator("#f-frame-outline_mm")).to_have_attribute("aria-invalid", "true")
     expect(layout.locator(".panel-answer")).to_contain_text("R 3.5 in")
     layout.locator("#f-frame-outline_mm").fill("")
     worked_out(page)
-    expect(page.locator(".panels.earlier")).to_have_count(0)
+    expect(page.locator("#view-layout .panels.earlier")).to_have_count(0)
 
 
 def test_the_answer_comes_first_and_reopening_asks_nothing(opened: Opener) -> None:
@@ -331,7 +331,7 @@ def test_each_opened_panel_is_printed(opened: Opener) -> None:
 def test_without_an_order_the_fields_can_be_typed_and_nothing_is_asked_of_the_core(opened: Opener) -> None:
     page = opened()
     page.locator("#move-layout").click()
-    expect(page.locator(".layout-said")).to_contain_text("Type an order first")
+    expect(page.locator("#view-layout .panels-said")).to_contain_text("Type an order first")
     panel(page, "edge").locator(".group > summary").first.click()
     page.locator("#f-lens-index").fill("1.5")
     expect(page.locator("#panel-edge .panel-answer")).to_have_text("")
