@@ -4,7 +4,8 @@ import math
 from collections.abc import Mapping
 
 from pycore.bench.cause_effect import EFFECTS
-from pycore.bench.cause_lens import Held, Lens, Vector
+from pycore.bench.cause_lens import Held, Lens
+from pycore.bench.cause_seen import Vector
 from pycore.bench.cause_shared import Common, commons, own_causes
 from pycore.bench.cause_table import AS_ORDERED, CauseTable
 from pycore.optics.prism import Eye
