@@ -1,6 +1,6 @@
 """Answers `imagine`: what the dials would show if one cause were the case.
 
-The answer: {`format`, `cause`, `eyes`, `possible`, `sentence`, `right` and `left` PRISM as read
+The answer: {`format`, `cause`, `choices` (the codes there are), `eyes`, `possible`, `sentence`, `right` and `left` PRISM as read
 (null where the eye is not ordered or it cannot happen), `scenes` with the dials}.
 """
 
@@ -40,6 +40,7 @@ def imagined_entry(case: Case, code: str, eye: str) -> Entry:
     entry: Entry = {
         "format": FORMAT,
         "cause": code,
+        "choices": list(imaginable()),
         "eyes": list(eyes),
         "possible": bool(pictures),
         "sentence": say(f"causes.{code}", eye=say(f"eyes.{where}")),

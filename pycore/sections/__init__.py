@@ -78,6 +78,12 @@ def _look(case: Case) -> SectionAnswer:
     return look_section(case)
 
 
+def _remedy(case: Case) -> SectionAnswer:
+    from pycore.sections.remedy import remedy_section
+
+    return remedy_section(case)
+
+
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "layout": _layout,
     "field": _field,
@@ -90,6 +96,7 @@ SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "colour": _colour,
     "causes": _causes,
     "look": _look,
+    "remedy": _remedy,
 }
 
 
