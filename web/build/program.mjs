@@ -80,7 +80,7 @@ function wordsOf(contents) {
 /**
  * @param {Uint8Array} program
  * @param {string} scripts what runs it
- * @returns {Uint8Array}
+ * @returns {Uint8Array<ArrayBuffer>}
  */
 export function withUsedExports(program, scripts) {
   const parts = sections(program);
