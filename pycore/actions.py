@@ -184,6 +184,19 @@ def _changed(job: Source, change: Source) -> Entry:
     return {key: value for key, value in {**job, **inner}.items() if value is not None}
 
 
+def _imagine(envelope: Source, fields: Fields) -> Entry:
+    """What the dials would show if one cause were the case."""
+    from pycore.imagine import BOTH, imaginable, imagined_entry  # not needed at the start
+
+    cause = fields.word("cause", imaginable()) or "as-ordered"
+    eyes = fields.word("eye", (*EYES, BOTH)) or BOTH
+    for key in ("job", "editions"):
+        fields.raw(key)
+    checked(fields)
+    job = read_job(job_source(envelope))
+    return imagined_entry(case_of(job, _edition_for(job, envelope)), cause, eyes)
+
+
 def _read_order(envelope: Source, fields: Fields) -> Entry:
     for key in ("line", "bases"):
         fields.raw(key)
@@ -233,6 +246,7 @@ ACTIONS: Mapping[str, Action] = {
     "touch": touch,
     "step": step,
     "place": place,
+    "imagine": _imagine,
     "check-instrument": check_instrument,
     "check-edition": _check_edition,
     "list-editions": _list_editions,

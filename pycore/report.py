@@ -197,13 +197,14 @@ def _scenes(case: Case, eye: Eye) -> Entry:
         current=reading.prism.lens_prism(job.instrument) if reading.prism else None,
         compensator=taken_by_compensator(reading.compensator, job.instrument.compensator),
         region=region_of(case.matter, eye) if case.matter else None,
-        uncertainty=_uncertainty(case, eye),
+        uncertainty=reading_uncertainty(case, eye),
         axis_deg=float(axis),
     )
     return {"dial": dial_scene(view), "close": close_scene(view)}
 
 
-def _uncertainty(case: Case, eye: Eye) -> float:
+def reading_uncertainty(case: Case, eye: Eye) -> float:
+    """One standard uncertainty of a lens's reading, prism dioptres. Arguments: `case`; `eye`."""
     if case.matter:
         return lens_uncertainty(case.matter, eye)
     return repeated_of(case.job, eye).uncertainty

@@ -7,6 +7,7 @@ import * as fields from "../fields.js";
 import { benchRecord } from "../bench-record.js";
 import { instrumentCheck } from "../instrument-check.js";
 import { readFile } from "../job.js";
+import { startSentences } from "../start-words.js";
 import { say } from "../words.js";
 
 /**
@@ -35,6 +36,7 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
     control.show(settings[name]);
     return control.node;
   };
+  const started = el("p", { class: "help", id: "started" });
   const confirm = el(
     "div",
     { class: "confirm", hidden: true },
@@ -51,6 +53,8 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
   );
   return {
     showEditions: shop.show,
+    /** @param {import("../engine.js").Start} start */
+    started: (start) => (started.textContent = startSentences(start).join(" ")),
     openStore: record.open,
     draw() {
       record.draw();
@@ -91,6 +95,7 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
         setting("date", ["iso", "day", "day-point", "month"]),
         setting("paper", ["any", "a4", "letter"]),
       ),
+      card("bench-start", say("page.bench.start"), started),
       card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),
   };

@@ -76,8 +76,9 @@ function pointLines(report) {
  * @param {State} tools.state
  * @param {ReturnType<typeof import("../steps.js").createSteps>} tools.steps
  * @param {import("../settings.js").Settings} tools.settings
+ * @param {{node: HTMLElement, chooser: HTMLElement}} tools.imagine what would be seen if
  */
-export function readView({ form, state, steps, settings }) {
+export function readView({ form, state, steps, settings, imagine }) {
   const summary = el("div", { class: "order-summary" });
   const compensators = { right: compensatorFields("right", form), left: compensatorFields("left", form) };
   const typed = EYES.map((eye) => readingCard(eye, form, state, compensators[eye]));
@@ -93,8 +94,10 @@ export function readView({ form, state, steps, settings }) {
     el("h2", { class: "hidden" }, say("page.nav.read")),
     large.node,
     summary,
+    imagine.node,
     pair,
     notes,
+    imagine.chooser,
     el("div", { class: "pair" }, ...typed),
     card(
       "read-how",
