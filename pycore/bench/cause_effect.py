@@ -10,7 +10,8 @@ from collections.abc import Callable, Iterator, Mapping
 from functools import lru_cache
 
 from pycore.angles import cosine, sine
-from pycore.bench.cause_lens import Lens, Site, Vector
+from pycore.bench.cause_lens import Lens, Site
+from pycore.bench.cause_seen import Vector
 from pycore.bench.cause_table import Cause
 
 Variants = list[tuple[float, Lens]]

@@ -4,8 +4,8 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from pycore.bench.cause import Bench, Story
-from pycore.bench.cause_fit import dot, inverse_root
+from pycore.bench.cause_algebra import dot, inverse_root
+from pycore.bench.cause_bench import Bench, Story
 from pycore.optics.prism import Eye
 
 

@@ -7,16 +7,15 @@ Source of the algebra: Gaussian linear models (matrix determinant lemma, Woodbur
 """
 
 import math
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
-from operator import mul
 from typing import NamedTuple
 
-from pycore.bench.cause_lens import Lens, Seen, Vector
+from pycore.bench.cause_algebra import Fit, Rows, dot, inverse_root, less, slopes, times
+from pycore.bench.cause_lens import Lens
+from pycore.bench.cause_seen import Seen, Vector
 from pycore.bench.cause_table import Scatter
 
-Numbers = tuple[float, ...]
-Rows = list[list[float]]
 Key = tuple[float | None, ...]
 ALIKE = 6  # decimals to which predictions count as equal, in their own units
 SAME = 1e-6
@@ -31,16 +30,6 @@ class Column(NamedTuple):
     read: Vector
     made: Vector
     power: tuple[float, float, float] = NO_POWER
-
-
-class Fit(NamedTuple):
-    """The fit of one lens. `density` the logarithm of the probability density with the common
-    parameters at zero (without the constant that all causes share); `pull` and `grip` its slope
-    and curvature in the common parameters."""
-
-    density: float
-    pull: Numbers = ()
-    grip: tuple[Numbers, ...] = ()
 
 
 @dataclass(slots=True)
@@ -75,7 +64,7 @@ class Gauge:
         if not common:
             return Fit(density)
         columns = [self._prism_scaled(lens, column) for column in common]
-        return Fit(density, *_slopes(columns, misfit))
+        return Fit(density, *slopes(columns, misfit))
 
     def _fit_turned(self, lens: Lens, common: Sequence[Column]) -> Fit:
         """The fit where a parameter changes prism and power together."""
@@ -86,11 +75,11 @@ class Gauge:
             turn = self.scaled(lens, turn_column(lens, lens.turn_rad))
             size = dot(turn, turn)
             narrower = (1.0 - 1.0 / math.sqrt(1.0 + size)) / size if size else 0.0
-            misfit = _less(misfit, turn, narrower)
-            columns = [_less(column, turn, narrower) for column in columns]
+            misfit = less(misfit, turn, narrower)
+            columns = [less(column, turn, narrower) for column in columns]
             log_width += 0.5 * math.log1p(size)
         density = -0.5 * dot(misfit, misfit) - log_width
-        return Fit(density, *_slopes(columns, misfit)) if columns else Fit(density)
+        return Fit(density, *slopes(columns, misfit)) if columns else Fit(density)
 
     def misfit(self, lens: Lens) -> tuple[list[float], float]:
         """What was read less what `lens` predicts, in independent standard deviations, and the
@@ -121,7 +110,7 @@ class Gauge:
             if seen.place[1] is not None:
                 rest.append(seen.place[1] + self.due[1] - y)
         inverse, log_width = self._width(lens)
-        return _times(inverse, rest), log_width
+        return times(inverse, rest), log_width
 
     def _power_fit(self, lens: Lens) -> tuple[list[float], float]:
         """The power's misfit and its log density; the same for most causes, so kept."""
@@ -131,7 +120,7 @@ class Gauge:
             assert self.seen.power is not None  # asked only where it was read
             rows, log_width = self._power_width(lens)
             power = [a - b for a, b in zip(self.seen.power, lens[4:7], strict=True)]
-            misfit = _times(rows, power)
+            misfit = times(rows, power)
             found = self._fits[key] = misfit, -0.5 * dot(misfit, misfit) - log_width
         return found
 
@@ -148,7 +137,7 @@ class Gauge:
         """A parameter's column in the independent standard deviations of `misfit`."""
         scaled = list(self._prism_scaled(lens, column))
         if self.seen.power is not None:
-            scaled += _times(self._power_width(lens)[0], column.power)
+            scaled += times(self._power_width(lens)[0], column.power)
         if self.seen.add is not None:
             scaled.append(0.0)
         return scaled
@@ -158,7 +147,7 @@ class Gauge:
         found = self._columns.get(key)
         if found is None:
             part = self._prism_part(column.read, column.made)
-            found = self._columns[key] = _times(self._width(lens)[0], part)
+            found = self._columns[key] = times(self._width(lens)[0], part)
         return found
 
     @property
@@ -293,72 +282,3 @@ def turn_column(lens: Lens, turn_rad: float) -> Column:
 def _differ(one: Sequence[float], two: Sequence[float]) -> bool:
     """Tell whether two predictions differ visibly."""
     return any(abs(a - b) > SAME for a, b in zip(one, two, strict=True))
-
-
-def dot(one: Sequence[float], two: Sequence[float]) -> float:
-    """The sum of products."""
-    return sum(map(mul, one, two), 0.0)
-
-
-def _slopes(
-    columns: Sequence[Sequence[float]], misfit: Sequence[float]
-) -> tuple[Numbers, tuple[Numbers, ...]]:
-    pull = tuple([dot(column, misfit) for column in columns])
-    return pull, tuple([tuple([dot(one, two) for two in columns]) for one in columns])
-
-
-def _times(rows: Rows, vector: Sequence[float]) -> list[float]:
-    return [sum(map(mul, row, vector)) for row in rows]
-
-
-def _less(vector: Sequence[float], along: Sequence[float], narrower: float) -> list[float]:
-    factor = narrower * dot(vector, along)
-    return [part - factor * other for part, other in zip(vector, along, strict=True)]
-
-
-def root(rows: Iterable[Sequence[float]]) -> Rows:
-    """The lower triangle L with L L' = `rows`, a positive definite matrix (Cholesky)."""
-    lower: Rows = []
-    for at, row in enumerate(rows):
-        made: list[float] = []
-        for column in range(at):
-            other = lower[column]
-            made.append((row[column] - dot(made, other[:column])) / other[column])
-        made.append(math.sqrt(row[at] - dot(made, made)))
-        lower.append(made)
-    return lower
-
-
-def inverse_root(rows: Iterable[Sequence[float]]) -> tuple[Rows, float]:
-    """The inverse of `root`, and the logarithm of half the determinant's power: log det L."""
-    lower = root(rows)
-    size = len(lower)
-    inverse: Rows = []
-    for at, row in enumerate(lower):
-        made = [
-            -sum([row[k] * inverse[k][column] for k in range(column, at)]) / row[at]
-            for column in range(at)
-        ]
-        inverse.append([*made, 1.0 / row[at], *[0.0] * (size - at - 1)])
-    return inverse, sum([math.log(row[at]) for at, row in enumerate(lower)])
-
-
-def joined(one: Fit, two: Fit | None = None) -> float:
-    """The logarithm of the density of one lens, or of both together, with the common parameters
-    (standard normal) integrated out."""
-    pull, grip, density = one.pull, one.grip, one.density
-    if two is not None:
-        density += two.density
-        pull = tuple([a + b for a, b in zip(pull, two.pull, strict=True)])
-        grip = tuple(
-            [
-                tuple([a + b for a, b in zip(row, other, strict=True)])
-                for row, other in zip(grip, two.grip, strict=True)
-            ]
-        )
-    if not pull:
-        return density
-    rows = [[part + (at == one_) for at, part in enumerate(row)] for one_, row in enumerate(grip)]
-    inverse, log_root = inverse_root(rows)
-    moved = _times(inverse, pull)
-    return density + 0.5 * dot(moved, moved) - log_root

@@ -3,7 +3,7 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
-from pycore.bench.cause import Bench, Story
+from pycore.bench.cause_bench import Bench, Story
 from pycore.bench.cause_fit import Key
 from pycore.bench.cause_table import AS_ORDERED, NONE_OF_THESE, PLACES, CauseTable
 from pycore.optics.prism import Eye

@@ -10,7 +10,8 @@ from itertools import product
 from math import prod
 
 from pycore.bench.cause_effect import EFFECTS, turned, turns
-from pycore.bench.cause_lens import OTHER, Held, Lens, Vector
+from pycore.bench.cause_lens import OTHER, Held, Lens
+from pycore.bench.cause_seen import Vector
 from pycore.bench.cause_table import AS_ORDERED, Cause, CauseTable
 from pycore.optics.prism import Eye
 

@@ -3,7 +3,8 @@
 from collections.abc import Mapping
 from dataclasses import dataclass
 
-from pycore.bench.cause import Bench, Story, bench_of, weigh
+from pycore.bench.cause import weigh
+from pycore.bench.cause_bench import Bench, Story, bench_of
 from pycore.bench.cause_rank import Ranking, rank
 from pycore.bench.expected import Due
 from pycore.bench.look import leverage, looked

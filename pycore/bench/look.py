@@ -12,7 +12,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from functools import cache, lru_cache
 
-from pycore.bench.cause import Story
+from pycore.bench.cause_bench import Story
 from pycore.bench.cause_rank import Label, label_of
 from pycore.bench.cause_table import AS_ORDERED
 from pycore.data import package_text

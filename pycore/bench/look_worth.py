@@ -5,7 +5,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 from operator import mul
 
-from pycore.bench.cause import Bench
+from pycore.bench.cause_bench import Bench
 from pycore.bench.cause_lens import Held, Lens
 from pycore.bench.cause_rank import Label, Ranked
 from pycore.bench.cause_weighing import Weighing

@@ -254,8 +254,7 @@ class _Active:
 
 
 def _solved(rows: list[list[float]]) -> list[float]:
-    """Solve a small symmetric positive system by elimination. Arguments: rows with their right
-    side."""
+    """Solve a small symmetric positive system, given as rows with their right side."""
     size = len(rows)
     for at in range(size):
         pivot = rows[at]

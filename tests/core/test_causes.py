@@ -14,7 +14,9 @@ import pytest
 from scipy.stats import multivariate_normal
 
 from pycore.bench import cause as cause_module
-from pycore.bench.cause import NO_CAUSE, Bench, Own, Story, bench_of, weigh
+from pycore.bench.cause import weigh
+from pycore.bench.cause_algebra import joined
+from pycore.bench.cause_bench import NO_CAUSE, Bench, Own, Story, bench_of
 from pycore.bench.cause_effect import turns
 from pycore.bench.cause_estimate import estimate, size_of
 from pycore.bench.cause_rank import Named, Ranking, label_of, rank
@@ -765,7 +767,7 @@ def test_a_pair_with_common_parameters_fits_as_scipy_says(code: str) -> None:
     common = next(one for one in found.commons() if one.code == code and one.variant == (1 if code == "frame-not-square" else 0))
     fits = [found.fit(common, eye, NO_CAUSE) for eye in ("right", "left")]
     assert None not in fits
-    assert cause_module.joined(*fits) == pytest.approx(reference, abs=1e-9)  # type: ignore[arg-type]
+    assert joined(*fits) == pytest.approx(reference, abs=1e-9)  # type: ignore[arg-type]
 
 
 def test_what_is_left_out_hardly_matters(monkeypatch: pytest.MonkeyPatch) -> None:

@@ -476,7 +476,7 @@ def test_the_picture_shows_where_a_dot_would_pass(job: Job) -> None:
         roles = {shape["role"]: shape for shape in scenes[eye]["shapes"]}
         dot = -least.move[2 * at], -least.move[2 * at + 1]
         assert ("new-dot" in roles) == (eye in least.eyes)
-        reach = scenes[eye]["extent"][2] * 2.9
+        reach = 2.99 * max(1.0, *map(abs, least.move))  # farther it is not drawn
         for x, y in roles["region"]["points"]:
             if math.hypot(x - dot[0], y - dot[1]) > reach:
                 continue  # not limited that way
