@@ -81,7 +81,9 @@ class Bench:
         columns = []
         zero = math.hypot(self.zero, common.zero)
         if zero:
-            columns += [Column((zero, 0.0), (zero, 0.0)), Column((0.0, zero), (0.0, zero))]
+            # What is due beside an existing lens has the zero in its own vertical: it cancels.
+            up = 0.0 if self.held[eye].site.partnered else zero
+            columns += [Column((zero, 0.0), (zero, 0.0)), Column((0.0, up), (0.0, up))]
         if self.free_thinning:
             columns.append(Column((0.0, lens.t_spread), (0.0, lens.t_spread)))
         if self.free_height:
