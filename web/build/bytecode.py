@@ -11,6 +11,7 @@ import io
 import sys
 import zipfile
 from pathlib import Path, PurePosixPath
+from types import CodeType
 
 CORE = Path("/core")
 # Imported by the library itself at the moment of use, so not seen in sys.modules after a start.
@@ -55,10 +56,16 @@ def without_docstrings(tree: ast.Module) -> ast.Module:
     return tree
 
 
+def without_lines(code: CodeType) -> CodeType:
+    """The same code without the table of its lines (a tenth of it): there are no sources whose lines could be named."""
+    inner = tuple(without_lines(value) if isinstance(value, CodeType) else value for value in code.co_consts)
+    return code.replace(co_consts=inner, co_linetable=b"")
+
+
 def byte_code(source: bytes, name: str) -> bytes:
     """The unchecked .pyc of a source: never compared with a source file, since there is none."""
     tree = without_docstrings(ast.parse(source, name))
-    code = compile(tree, name, "exec", dont_inherit=True, optimize=0)
+    code = without_lines(compile(tree, name, "exec", dont_inherit=True, optimize=0))
     digest = importlib.util.source_hash(source)
     return bytes(importlib._bootstrap_external._code_to_hash_pyc(code, digest, False))  # type: ignore[attr-defined]
 
