@@ -89,7 +89,7 @@ def test_what_is_public_is_described(path: Path) -> None:
 # --- the page's scripts ----------------------------------------------------------------------------------------------
 
 SCRIPTS = sorted(
-    path for folder in ("app", "worker") for path in (ROOT / "web" / folder).rglob("*.js") if "generated" not in path.parts
+    path for folder in ("app", "worker", "served") for path in (ROOT / "web" / folder).rglob("*.js") if "generated" not in path.parts
 )
 
 BANNED = {
@@ -109,6 +109,8 @@ MEANT = {
     "app/dial.js": (r"toFixed", "the place of a touch, told to the core as text"),
     "app/job.js": (r"Number\(step\)", "a place in a list"),
     "app/prism-rows.js": (r"Number\.parseInt\(place", "a place in a list"),
+    "app/served.js": (r"navigator\.serviceWorker", "keeps the page that came from a server, and is not begun elsewhere"),
+    "served/sw.js": (r"fetch\(addressOf\(name\)|fetch\(request\)|fetch(?=\")", "reads the page's own files from its own server"),
     "worker/python.js": (r'"https://offline\.invalid/"|fetch', "what Pyodide sees in place of the network"),
 }
 

@@ -107,6 +107,10 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
       const slow = code === "ready" && mode === "main-thread" ? say("page.engine.main_thread") : "";
       starting.textContent = code === "failed" ? say("page.engine.failed") : slow;
     },
+    /** Whether something typed is still on its way into the store. */
+    get saving() {
+      return save.dataset["status"] === "saving";
+    },
     /** @param {import("./keeping.js").SaveStatus} status */
     saved(status) {
       save.textContent = say(`page.saving.${status}`);

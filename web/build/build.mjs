@@ -11,6 +11,7 @@ import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
 import { base64OfGzip, buildPythonZip } from "./python.mjs";
+import { servedFiles } from "./served.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
 
@@ -33,6 +34,13 @@ async function notices(folder) {
   const names = ["bundled.txt", "mpl-2.0.txt", "python-3.13.txt"];
   const texts = await Promise.all(names.map((name) => readFile(join(folder, name), "utf8")));
   return texts.join(`\n${"=".repeat(120)}\n\n`);
+}
+
+/** The program's version, as the core says it. @param {string} core */
+async function versionOf(core) {
+  const found = /^__version__ = "([^"]+)"$/m.exec(await readFile(join(core, "__init__.py"), "utf8"));
+  if (!found) throw new Error("__init__.py does not say the program's version.");
+  return found[1];
 }
 
 async function main() {
@@ -59,17 +67,19 @@ async function main() {
     wasm,
     python,
   };
-  await writeFolder(resolve(values.out), {
+  const files = {
     "index.html": folderPage(page),
     "app.js": page.app,
     "app.css": page.style,
     "print.css": page.printStyle,
+    "styles.js": `globalThis.wedgewrightStyles = ${JSON.stringify({ screen: page.style, print: page.printStyle })};\n`,
     "engine/worker.js": engine,
     "engine/wasm.js": `globalThis.wedgewrightWasm = "${wasm}";\n`,
     "engine/python.js": `globalThis.wedgewrightPython = "${python}";\n`,
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),
-  });
+  };
+  await writeFolder(resolve(values.out), { ...files, ...(await servedFiles(web, files, await versionOf(core))) });
   await writeFolder(resolve(values.single), { "wedgewright.html": singlePage(page) });
 }
 

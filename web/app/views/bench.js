@@ -72,7 +72,14 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         setting("date", ["iso", "day", "day-point", "month"]),
         setting("paper", ["any", "a4", "letter"]),
       ),
-      card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
+      card(
+        "bench-data",
+        say("page.bench.data"),
+        el("p", { class: "help" }, say("page.bench.data_help")),
+        el("div", { id: "served" }),
+        eraseKey,
+        confirm,
+      ),
     ),
   };
 }
