@@ -87,13 +87,12 @@ def build_packages(web: Path) -> list[str]:
 
 def licence_of(package: Distribution) -> str:
     """The SPDX expression of an installed package."""
-    stated: str | None = package.metadata.get("License-Expression")
-    if stated:
-        return stated
-    classified = [CLASSIFIED[line] for line in package.metadata.get_all("Classifier") or () if line in CLASSIFIED]
-    if len(classified) != 1:
+    stated = package.metadata.get_all("License-Expression") or []
+    classified = [CLASSIFIED[line] for line in package.metadata.get_all("Classifier") or [] if line in CLASSIFIED]
+    found: list[str] = stated or classified
+    if len(found) != 1:
         raise LookupError(f"The licence of {package.metadata['Name']} is not clear: look, and say it in CLASSIFIED.")
-    return classified[0]
+    return found[0]
 
 
 def python_packages(listed: Path, installed: Path) -> Iterator[Component]:

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import io
 import json
+import os
 import subprocess
 import sys
 import tempfile
@@ -44,10 +45,11 @@ def zip_of(folder: Path, top: str) -> bytes:
 
 
 def wheel() -> tuple[str, bytes]:
-    """The core's wheel: its name and content. Hatchling fixes the times in it by itself."""
+    """The core's wheel: its name and content. Hatchling fixes the times in it by itself, unless it is told a time."""
+    environment = {name: value for name, value in os.environ.items() if name != "SOURCE_DATE_EPOCH"}
     with tempfile.TemporaryDirectory() as folder:
         make = [sys.executable, "-S", "-m", "hatchling", "build", "--target", "wheel", "--directory", folder]
-        subprocess.run(make, cwd=ROOT, check=True, stdout=subprocess.DEVNULL)
+        subprocess.run(make, cwd=ROOT, env=environment, check=True, stdout=subprocess.DEVNULL)
         (path,) = Path(folder).glob("*.whl")
         return path.name, path.read_bytes()
 

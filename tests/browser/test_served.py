@@ -39,7 +39,7 @@ class Server:
                 self.send_header("X-Content-Type-Options", "nosniff")
                 super().end_headers()
 
-            def log_request(self, code: int | str = "-", size: int | str = "-") -> None:
+            def log_request(self, code: int | str = "-", _size: int | str = "-") -> None:
                 status = code.value if isinstance(code, HTTPStatus) else code
                 server.asked.append(f"{self.command} {self.path} {status}")
 
