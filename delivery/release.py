@@ -49,7 +49,9 @@ def wheel() -> tuple[str, bytes]:
     environment = {name: value for name, value in os.environ.items() if name != "SOURCE_DATE_EPOCH"}
     with tempfile.TemporaryDirectory() as folder:
         make = [sys.executable, "-S", "-m", "hatchling", "build", "--target", "wheel", "--directory", folder]
-        subprocess.run(make, cwd=ROOT, env=environment, check=True, stdout=subprocess.DEVNULL)
+        made = subprocess.run(make, cwd=ROOT, env=environment, check=False, capture_output=True, text=True)
+        if made.returncode != 0:
+            raise SystemExit(made.stderr)
         (path,) = Path(folder).glob("*.whl")
         return path.name, path.read_bytes()
 

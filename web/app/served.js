@@ -76,10 +76,10 @@ export function serverFollower({ state, unsaved }) {
     draw();
   }
 
-  function watchInstalling() {
-    const installing = registration?.installing;
-    installing?.addEventListener("statechange", () => {
-      if (installing.state === "activated") look();
+  function watchComing() {
+    const coming = registration?.installing ?? registration?.waiting;
+    coming?.addEventListener("statechange", () => {
+      if (coming.state === "activated") look();
     });
   }
 
@@ -91,8 +91,8 @@ export function serverFollower({ state, unsaved }) {
       registration = await register();
       if (!registration) return;
       byId("offer").append(offered, key, reason);
-      registration.addEventListener("updatefound", watchInstalling);
-      watchInstalling();
+      registration.addEventListener("updatefound", watchComing);
+      watchComing();
       look();
       state.subscribe(draw);
       // Other windows may have been closed meanwhile.

@@ -11,10 +11,11 @@ const KEY = "wedgewright.settings";
  * @property {"360"|"180"} bases
  * @property {"iso"|"day"|"day-point"|"month"} date order and signs of day, month and year
  * @property {"any"|"a4"|"letter"} paper
+ * @property {"right"|"left"} hand the side of the large eyepiece's keys
  */
 
 /** @type {Settings} */
-const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360", date: "iso", paper: "any" };
+const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360", date: "iso", paper: "any", hand: "right" };
 
 /** @returns {Settings} */
 export function loadSettings() {

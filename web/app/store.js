@@ -1,22 +1,27 @@
 /**
- * What this tablet keeps: the draft in two slots by turns, the signed jobs, and the shop's own editions. Strict durability; a promise is kept only
+ * What this tablet keeps: the draft in two slots by turns, the signed jobs, the shop's own editions, and what the
+ * check of its lens meter found. Strict durability; a promise is kept only
  * when the write is complete. Storage is shared by all pages opened from disk, hence the name.
  */
 
 const NAME = "wedgewright";
-const STORES = ["drafts", "jobs", "editions"];
+const STORES = ["drafts", "jobs", "editions", "bench"];
 
 /** @typedef {Awaited<ReturnType<typeof openStore>>} Store */
 
-/** Of the way in which all this is laid down: one more with each change that an older program would not understand. */
-const DATA_VERSION = 1;
+/**
+ * Of the way in which all this is laid down: one more with each change that an older program would not understand.
+ * 1 had no place for the bench.
+ */
+const DATA_VERSION = 2;
 
 /** @param {number} [version] without it, whatever is there @returns {Promise<IDBDatabase>} */
 function open(version) {
   return new Promise((resolve, reject) => {
     const request = indexedDB.open(NAME, version);
     request.onupgradeneeded = () => {
-      for (const name of STORES) request.result.createObjectStore(name);
+      const { objectStoreNames: there } = request.result;
+      for (const name of STORES) if (!there.contains(name)) request.result.createObjectStore(name);
     };
     request.onsuccess = () => resolve(request.result);
     request.onerror = () => reject(request.error);

@@ -4,12 +4,12 @@ import { createHash } from "node:crypto";
 import { readFile } from "node:fs/promises";
 import { join } from "node:path";
 
-/** @param {string} text */
-const digestOf = (text) => createHash("sha256").update(text, "utf8").digest("hex");
+/** @param {string | Uint8Array} content */
+const digestOf = (content) => createHash("sha256").update(content).digest("hex");
 
 /**
  * @param {string} web
- * @param {Record<string, string>} files every other file of the folder, by its name
+ * @param {Record<string, string | Uint8Array>} files every other file of the folder, by its name
  * @param {string} program the program's version
  * @returns {Promise<Record<string, string>>}
  */
@@ -20,7 +20,7 @@ export async function servedFiles(web, files, program) {
     "install.html": page.replace(/\{\{(\w+)\}\}/g, (_mark, name) => words[name]),
     "install.json": await readFile(join(web, "served", "install.json"), "utf8"),
   };
-  /** @type {Record<string, string>} */
+  /** @type {Record<string, string | Uint8Array>} */
   const all = { ...files, ...added };
   const digests = Object.fromEntries(Object.keys(all).sort().map((name) => [name, digestOf(all[name])]));
   const bundle = await build({

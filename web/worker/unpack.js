@@ -1,19 +1,27 @@
-/** From the text of a payload to its bytes. */
+/** From the text of a payload to its bytes: each character is two bytes of gzip. Made by build/payload.mjs. */
+
+/** Before a character that stands for one that cannot be in a text. */
+export const ESCAPE = 0xe000;
+/** What makes the one of the other. */
+export const MASK = 0x4a00;
 
 /**
  * @param {string} text
  * @returns {Uint8Array<ArrayBuffer>}
  */
 export function bytesOf(text) {
-  if ("fromBase64" in Uint8Array) {
-    return /** @type {any} */ (Uint8Array).fromBase64(text);
+  const units = new Uint16Array(text.length);
+  let length = 0;
+  for (let index = 1; index < text.length; index += 1) {
+    let unit = text.charCodeAt(index);
+    if (unit === ESCAPE) {
+      index += 1;
+      unit = text.charCodeAt(index) ^ MASK;
+    }
+    units[length] = unit;
+    length += 1;
   }
-  const characters = atob(text); // older browsers: some 10 ms slower
-  const bytes = new Uint8Array(characters.length);
-  for (let index = 0; index < characters.length; index += 1) {
-    bytes[index] = characters.charCodeAt(index);
-  }
-  return bytes;
+  return new Uint8Array(units.buffer, 0, 2 * length - Number(text[0]));
 }
 
 /**
