@@ -26,8 +26,7 @@ BOTH = "both"
 
 def imaginable() -> tuple[str, ...]:
     """The codes of all causes that can be imagined."""
-    codes = [cause.code for cause in cause_table().causes.values() if cause.place != "none"]
-    return (AS_ORDERED, *codes)
+    return (AS_ORDERED, *cause_table().causes)
 
 
 def imagined_entry(case: Case, code: str, eye: str) -> Entry:

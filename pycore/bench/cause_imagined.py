@@ -7,7 +7,7 @@ from pycore.bench.cause_effect import EFFECTS
 from pycore.bench.cause_lens import Held, Lens
 from pycore.bench.cause_seen import Vector
 from pycore.bench.cause_shared import Common, commons, own_causes
-from pycore.bench.cause_table import AS_ORDERED, CauseTable
+from pycore.bench.cause_table import AS_ORDERED, NONE_OF_THESE, CauseTable
 from pycore.optics.prism import Eye
 
 Pictures = dict[Eye, tuple[Lens, Vector]]
@@ -23,9 +23,11 @@ def imagined(
 
     Arguments: `held` lenses; `table`; `code` of the cause; `eyes` whose lenses it is in. What is
     not known of it stands at one standard deviation (a turn at the middle of its outer part).
-    Empty where it cannot happen.
+    Empty where it cannot happen, and for none of these, which looks like nothing.
     """
     none, *shared = commons(held, table)
+    if code == NONE_OF_THESE:
+        return {}
     if code == AS_ORDERED:
         return {eye: _picture(none, eye, one, one.due) for eye, one in held.items()}
     if len(eyes) == 1:

@@ -13,7 +13,7 @@ from collections.abc import Iterator
 from dataclasses import dataclass, field
 from decimal import ROUND_HALF_EVEN, Decimal
 
-from pycore.angles import wrap
+from pycore.angles import direction, wrap
 from pycore.bench.repeats import ENOUGH, pooled_scatter, uncertainty_of_one
 from pycore.job.bench import AWAY, TOWARDS, Instrument
 from pycore.optics.prism import NO_PRISM, Prism, from_base
@@ -21,7 +21,8 @@ from pycore.optics.prism import NO_PRISM, Prism, from_base
 SUGGESTED_BASE_DEG = Decimal(40)
 OBLIQUE_DEG = 25.0  # at least so far from 0, 90, 180 and 270
 NEAR_DEG = 20.0  # so far a prism laid by hand may be turned
-NEAR_SHARE, NEAR = Decimal("0.15"), Decimal("0.5")  # of the amount, but at least so many Δ
+# So far two amounts may differ: up to half a prism dioptre, where that is no great part of both.
+NEAR, LEAST_SHARE, MOST_SHARE = Decimal("0.5"), Decimal("0.15"), Decimal("0.35")
 LEAST_STEPS = 4  # of the instrument's, that the known prism must make
 MOST_SCATTER = 0.5  # Δ, of one reading
 WAYS = ((TOWARDS, False), (TOWARDS, True), (AWAY, False), (AWAY, True))
@@ -180,13 +181,12 @@ def _sense(prism: Prism, scale: Prism) -> tuple[str | None, list[str]]:
 
 
 def _same_amount(one: Prism, other: Prism) -> bool:
-    return abs(one.amount - other.amount) <= max(NEAR, NEAR_SHARE * other.amount)
+    allowed = max(LEAST_SHARE * other.amount, min(NEAR, MOST_SHARE * other.amount))
+    return abs(one.amount - other.amount) <= allowed
 
 
 def _apart_deg(one: Prism, other: Prism) -> float:
-    """The angle between two prisms, in degrees, 180 where one has no base."""
-    first, second = one.base_deg, other.base_deg
-    if first is None or second is None:
-        return 180.0
+    """The angle between two prisms of like amount, neither of them none, in degrees."""
+    first, second = (direction(float(prism.x), float(prism.y)) for prism in (one, other))
     turn = wrap(first - second)
     return min(turn, 360.0 - turn)

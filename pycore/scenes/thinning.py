@@ -11,7 +11,6 @@ from decimal import Decimal
 from pycore.bench.edge import FramedLens
 from pycore.bench.thinning import Choice
 from pycore.decimals import fixed, from_float
-from pycore.names import thinning_text
 from pycore.optics.prism import Eye, Prism
 from pycore.scenes.body import cut_ends, framed_depths, stations, tidy
 from pycore.scenes.dial import Scene, Shape
@@ -27,11 +26,12 @@ def thinning_scene(
     prescribed: Mapping[Eye, Prism],
     before: Choice,
     after: Choice,
+    amount: str,
 ) -> Scene:
     """The picture of the pair, or of the lens there is.
 
-    Arguments: `lenses`; `prescribed` prism dioptres; the choices `before` and `after`. Returns
-    the scene, in mm, y up from the boxing centres.
+    Arguments: `lenses`; `prescribed` prism dioptres; the choices `before` and `after`, and
+    the `amount` of that one as text. Returns the scene, in mm, y up from the boxing centres.
     """
     shapes: list[Shape] = []
     for number, (eye, lens) in enumerate(lenses.items()):
@@ -45,7 +45,7 @@ def thinning_scene(
         max(across) + BESIDE_MM,
         max(along) + 1.5 * ROOM_MM,
     ]
-    words = say(f"section_rows.thinning.choice-{after.rule}"), thinning_text(after.up)
+    words = say(f"section_rows.thinning.choice-{after.rule}"), amount
     middle = (extent[0] + extent[2]) / 2.0
     shapes.append(
         {

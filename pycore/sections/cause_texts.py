@@ -30,22 +30,36 @@ def eyes_code(one: Named) -> str:
     return "both" if len(one.eyes) > 1 else one.eyes[0]
 
 
+def cause_sentence(label: Label) -> Entry:
+    """What happened, as a code of the words `causes` and its parameters. Arguments: `label`."""
+    first, *others = (_sentence(one) for one in label)
+    if not others:
+        return first
+    texts = {"first": _say(first), "second": _say(others[0])}
+    return {"code": "together", "params": texts}
+
+
+def _sentence(one: Named) -> Entry:
+    return {"code": one.code, "params": {"eye": say(f"eyes.{eyes_code(one)}")}}
+
+
+def _say(sentence: Entry) -> str:
+    return say(f"causes.{sentence['code']}", **sentence["params"])
+
+
 def cause_text(label: Label) -> str:
     """What happened, in words. Arguments: `label` of one cause, or two together."""
-    parts = [say(f"causes.{one.code}", eye=say(f"eyes.{eyes_code(one)}")) for one in label]
-    text = parts[0]
-    for part in parts[1:]:
-        text = say("cause_texts.together", first=text, second=part)
-    return text
+    return _say(cause_sentence(label))
 
 
 def named_entry(label: Label) -> Entry:
-    """A cause, with a second that came along, as the report writes it. Arguments: `label`."""
+    """A cause, with a second that came along, as the report names it. Arguments: `label`."""
     first, *others = label
     return {
         "code": first.code,
         "eyes": list(first.eyes),
         "with": [{"code": other.code, "eyes": list(other.eyes)} for other in others],
+        "sentence": cause_sentence(label),
     }
 
 

@@ -22,7 +22,6 @@ from pycore.names import Entry
 from pycore.sections.answer import Ask, Row, SectionAnswer
 from pycore.sections.cause_texts import (
     cause_text,
-    eyes_code,
     named_entry,
     percent,
     size_entry,
@@ -89,7 +88,7 @@ def _entries(weighing: Weighing, offered: Sequence[Offer]) -> Iterator[Entry]:
     rest = max(0.0, 1.0 - sum([one.probability for one in shown]))
     yield {
         "code": "all-others",
-        "eyes": list(weighing.bench.gauges),
+        "eyes": [],
         "with": [],
         "probability": rest,
         "residual": None,
@@ -122,7 +121,6 @@ def _entry(weighing: Weighing, one: Ranked, offered: Sequence[Offer]) -> Entry:
         "tied_with": [named_entry(label) for label in one.tied_with],
         "place": place,
         "tell_apart": _tell_apart(one, weighing.ranking, offered) if sized else None,
-        "sentence": {"code": first.code, "params": {"eye": say(f"eyes.{eyes_code(first)}")}},
         "shown": {"probability": percent(one.probability), "text": cause_text(one.label)},
     }
 

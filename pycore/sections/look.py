@@ -2,12 +2,12 @@
 
 In the report, under `look`: {`look`, `eye` (null: the bench or the pair), `sentence`,
 `information_bits` (about what happened), `group_bits` (of it, about which group of causes),
-`results` [{`result`, `probability`, `sentence`, `leads_to` [{`code`, `eyes`, `with`,
-`probability`}]}], `others` [{`look`, `eye`, `information_bits`}]}; absent where no look tells
+`results` [{`result`, `probability`, `sentence`, `leads_to` [{`code`, `eyes`, `with`, `sentence`,
+`probability`, `shown`, `text`}]}], `others` [{`look`, `eye`, `information_bits`}]}; absent where no look tells
 anything more.
 """
 
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Iterator, Sequence
 
 from pycore.bench.cause_rank import Label, Ranking
 from pycore.bench.cause_weighing import weighing_of
@@ -40,7 +40,7 @@ def look_section(case: Case) -> SectionAnswer:
         own={
             **_worth_entry(best),
             "group_bits": group_bits(best.offer, weighing),
-            "sentence": look_text(best.offer),
+            "sentence": look_sentence(best.offer),
             "results": results,
             "others": [_worth_entry(worth) for worth in others[:OTHERS]],
         },
@@ -49,10 +49,16 @@ def look_section(case: Case) -> SectionAnswer:
     )
 
 
+def look_sentence(offer: Offer) -> Entry:
+    """A look as a code of the words `looks` and its parameters. Arguments: `offer`."""
+    params = {"eye": say(f"eyes.{offer.eye}")} if offer.eye else {}
+    return {"code": offer.table.code, "params": params}
+
+
 def look_text(offer: Offer) -> str:
     """A look as an instruction. Arguments: `offer`."""
-    eye = say(f"eyes.{offer.eye}") if offer.eye else ""
-    return say(f"looks.{offer.table.code}", eye=eye)
+    sentence = look_sentence(offer)
+    return say(f"looks.{sentence['code']}", **sentence["params"])
 
 
 def _worth_entry(worth: Worth) -> Entry:
@@ -73,24 +79,24 @@ def _results(offer: Offer, ranking: Ranking) -> Iterator[Entry]:
         yield {
             "result": result,
             "probability": whole,
-            "sentence": say(f"look_results.{offer.table.code}.{result}"),
+            "sentence": {"code": f"{offer.table.code}.{result}", "params": {}},
             "leads_to": [_lead(label, shares[label] / whole) for label in leading],
         }
 
 
 def _lead(label: Label, probability: float) -> Entry:
-    shown = say(
-        "cause_texts.with-probability", text=cause_text(label), probability=percent(probability)
-    )
-    return {**named_entry(label), "probability": probability, "shown": shown}
+    shown = percent(probability)
+    text = say("cause_texts.with-probability", text=cause_text(label), probability=shown)
+    return {**named_entry(label), "probability": probability, "shown": shown, "text": text}
 
 
-def _rows(results: Sequence[Mapping[str, object]], others: Sequence[Worth]) -> Iterator[Row]:
+def _rows(results: Sequence[Entry], others: Sequence[Worth]) -> Iterator[Row]:
     for entry in results:
-        lead: Entry = entry["leads_to"][0]  # type: ignore[index]
+        lead = entry["leads_to"][0]
+        result = say(f"look_results.{entry['sentence']['code']}")
         yield Row(
             code="result",
-            pair=say("cause_texts.leads-to", result=str(entry["sentence"]), lead=lead["shown"]),
+            pair=say("cause_texts.leads-to", result=result, lead=lead["text"]),
         )
     for worth in others[:2]:
         bits = fixed(from_float(worth.bits), 2)

@@ -57,7 +57,7 @@ def thinning_section(case: Case) -> SectionAnswer:
     except OutsideSurfaceError:
         return SectionAnswer(title="beyond-surface", asks=asks)
     title, params = _title(found)
-    bare = found.choices[0]
+    bare, drawn = found.choices[0], _to_be_drawn(case, found)
     return SectionAnswer(
         title=title,
         title_params=params,
@@ -65,7 +65,9 @@ def thinning_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(found, framings)),
         asks=asks,
         notes=tuple(_notes(case, found, framings)),
-        draw=lambda: {"pair": thinning_scene(lenses, prescribed, bare, _to_be_drawn(case, found))},
+        draw=lambda: {
+            "pair": thinning_scene(lenses, prescribed, bare, drawn, thinning_text(drawn.up))
+        },
     )
 
 

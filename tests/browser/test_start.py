@@ -13,6 +13,8 @@ from typing import Any
 import pytest
 from playwright.sync_api import Browser, BrowserType, Page, expect
 
+from tests.payloads import read_payload, write_payload
+
 # W3C Content Security Policy Level 3 and Trusted Types name these directives; what they must hold back is tried below.
 POLICY = (
     "default-src 'none'; script-src 'self' 'wasm-unsafe-eval'; worker-src 'self' blob:; style-src 'self'; img-src data:; "
@@ -106,10 +108,18 @@ def test_starts_from_the_kept_memory(dist: Path, tmp_path: Path, page: Page, eng
     assert page.locator(".statuses .engine").inner_text() == ""
 
 
-DAMAGES: dict[str, Callable[[Path], None]] = {
-    "missing": lambda file: file.unlink(),
-    "cut short": lambda file: file.write_bytes(file.read_bytes()[: file.stat().st_size // 2]),
-    "of another build": lambda file: shutil.copy(file.with_name("python.js"), file),
+def of_another_build(file: Path) -> None:
+    """The memory of a Pyodide whose build has another name (words 4 to 11 of the head)."""
+    memory = bytearray(read_payload(file))
+    memory[16:48] = bytes(reversed(memory[16:48]))
+    write_payload(file, bytes(memory))
+
+
+DAMAGES: dict[str, Callable[[Path], object]] = {
+    "missing": Path.unlink,
+    "cut short": lambda file: file.write_bytes(file.read_bytes()[: file.stat().st_size // 4 * 2]),
+    "of another build": of_another_build,
+    "something else": lambda file: write_payload(file, b"PK" + bytes(100_000)),
 }
 
 
@@ -118,10 +128,7 @@ def test_a_damaged_memory_is_replaced_by_the_library(
     dist: Path, tmp_path: Path, page: Page, engine_ready: Ready, damage: str
 ) -> None:
     copy = copy_of(dist, tmp_path)
-    file = copy / "engine" / "snapshot.js"
-    DAMAGES[damage](file)
-    if damage == "of another build":
-        file.write_bytes(file.read_bytes().replace(b"wedgewrightPython", b"wedgewrightSnapshot"))
+    DAMAGES[damage](copy / "engine" / "snapshot.js")
     page.goto((copy / "index.html").as_uri())
     engine_ready(page)
     demonstration_drawn(page)

@@ -37,7 +37,7 @@ def test_the_keys_of_the_contract() -> None:
         assert entry["place"] in PLACES
         assert "{" not in entry["shown"]["text"] + entry["shown"]["probability"]
         sentence = entry["sentence"]
-        assert say(f"causes.{sentence['code']}", **sentence["params"]) in entry["shown"]["text"]
+        assert say(f"causes.{sentence['code']}", **sentence["params"]) == entry["shown"]["text"]
     first = report["causes"][0]
     assert [tie["code"] for tie in first["tied_with"]] == ["side-word-wrong", "angle-not-carried"]
     assert first["residual"] < 1.0
@@ -117,7 +117,7 @@ def test_nothing_read_asks_for_the_readings() -> None:
 
 def test_an_existing_partner_is_not_in_question() -> None:
     report = causes(patched(REVERSED, left__partner=True))
-    assert all(entry["eyes"] == ["right"] for entry in report["causes"])
+    assert {tuple(entry["eyes"]) for entry in report["causes"]} == {("right",), ()}
     assert "causes.partner" in [note["code"] for note in report["sections"]["causes"]["notes"]]
 
 
@@ -125,12 +125,12 @@ def test_the_next_look_and_what_each_result_would_mean() -> None:
     look = causes(REVERSED)["look"]
     assert look["look"] == "order-slip"
     assert look["eye"] is None
-    assert look["sentence"] == say("looks.order-slip")
+    assert look["sentence"] == {"code": "order-slip", "params": {}}
     assert 0 <= look["group_bits"] <= look["information_bits"]
     assert math.isclose(sum(result["probability"] for result in look["results"]), 1.0, abs_tol=1e-9)
     for result in look["results"]:
-        assert result["sentence"] == say(f"look_results.order-slip.{result['result']}")
-        assert {"code", "eyes", "with", "probability", "shown"} == set(result["leads_to"][0])
+        assert result["sentence"] == {"code": f"order-slip.{result['result']}", "params": {}}
+        assert {"code", "eyes", "with", "sentence", "probability", "shown", "text"} == set(result["leads_to"][0])
     worth = [look["information_bits"], *(other["information_bits"] for other in look["others"])]
     assert worth == sorted(worth, reverse=True)
 
@@ -169,7 +169,7 @@ def test_every_cause_look_and_result_has_its_words() -> None:
     from pycore.job.looks import LOOKS
 
     said = table()
-    assert {"as-ordered", "all-others", *cause_table().causes} == set(said["causes"])
+    assert {"as-ordered", "all-others", "together", *cause_table().causes} == set(said["causes"])
     assert set(said["cause_places"]) == PLACES
     assert set(said["looks"]) == set(LOOKS)
     assert set(said["look_results"]) == {f"{look}.{result}" for look, results in LOOKS.items() for result in results}
@@ -206,7 +206,7 @@ def test_every_cause_has_a_picture_or_says_that_it_cannot_be(eye: str) -> None:
         assert answer["possible"] == (answer["right"] is not None) == bool(answer["scenes"])
         possible |= {cause} if answer["possible"] else set()
     assert {"as-ordered", "instrument-zero", "frame-upside-down", "layout-pd-wrong", "lens-rotated", "base-flipped"} <= possible
-    assert not possible & {"read-at-segment", "meter-key-wrong", "compensator-wrong-sense", "as-worn-ignored"}
+    assert not possible & {"none-of-these", "read-at-segment", "meter-key-wrong", "compensator-wrong-sense", "as-worn-ignored"}
 
 
 def test_pictures_of_each_kind() -> None:

@@ -99,7 +99,7 @@ def test_program_and_simulator_agree_job_by_job() -> None:
         case = draw_case(rng, faulty=number % 2 == 0)
         own, program = posterior(case.pair, case.hypotheses, case.data).entries, causes_of(case.job)
         apart.append(sum(abs(own.get(entry, 0.0) - program.get(entry, 0.0)) for entry in own.keys() | program.keys()) / 2)
-    assert np.median(apart) < 0.01
+    assert np.median(apart) < 0.005
     assert max(apart) < 0.1
 
 

@@ -15,7 +15,6 @@ from multiprocessing import get_context
 
 from tests.references.cause_faults import CAUSES
 from tests.references.cause_statistics import (
-    ALL_OTHERS,
     AS_ORDERED,
     Judged,
     Ranks,
@@ -26,7 +25,7 @@ from tests.references.cause_statistics import (
     from_priors,
     ranks,
     reliability,
-)  # fmt: skip
+)
 
 # Promised: what stands first, among the first three; calibration; accusing a correct pair.
 LEAST_FIRST, LEAST_AMONG_THREE, LARGEST_ERROR, LARGEST_ACCUSED = 0.95, 0.995, 0.03, 0.01
@@ -50,20 +49,19 @@ class Figures:
 
     def failures(self) -> list[str]:
         """The promises that do not hold."""
-        held = {
-            f"first in {self.ranks.first:.4f}": self.ranks.first >= LEAST_FIRST,
-            f"among the first three in {self.ranks.among_three:.4f}": self.ranks.among_three >= LEAST_AMONG_THREE,
-            f"calibration error {self.first.error:.4f}": self.first.error <= LARGEST_ERROR,
-            f"calibration error of accusations {self.accusing.error:.4f}": self.accusing.error
-            <= LARGEST_ERROR + self.accusing.by_chance,
-            f"correct pairs accused {self.accused:.4f}": self.accused <= LARGEST_ACCUSED,
-        }
-        return [figure for figure, holds in held.items() if not holds]
+        figures = (
+            ("first", self.ranks.first, self.ranks.first >= LEAST_FIRST),
+            ("among the first three", self.ranks.among_three, self.ranks.among_three >= LEAST_AMONG_THREE),
+            ("calibration error", self.first.error, self.first.error <= LARGEST_ERROR),
+            ("the same of accusations", self.accusing.error, self.accusing.error <= LARGEST_ERROR + self.accusing.by_chance),
+            ("correct pairs accused", self.accused, self.accused <= LARGEST_ACCUSED),
+        )
+        return [f"{name} {value:.4f}" for name, value, holds in figures if not holds]
 
 
 def figures_of(drawn: list[Judged], stratified: list[Judged]) -> Figures:
     """The figures of judged jobs: drawn from the priors, and the same number for each cause."""
-    accusing = [job for job in drawn if job.groups()[0][1].isdisjoint({AS_ORDERED, ALL_OTHERS})]
+    accusing = [job for job in drawn if job.accuses()]
     return Figures(
         drawn,
         stratified,
@@ -85,9 +83,8 @@ def piece(task: tuple[str, int, int, bool]) -> tuple[bool, list[Judged]]:
 
 def measure(count: int, seed: int, *, program: bool = True) -> Figures:
     """Simulate about `count` jobs in all and judge them, in as many processes as there are processors."""
-    os.environ.setdefault(
-        "OPENBLAS_NUM_THREADS", "1"
-    )  # small matrices: threads get in one another's way; read at a process's start
+    # The matrices are small, and threads get in one another's way; read when a process starts.
+    os.environ.setdefault("OPENBLAS_NUM_THREADS", "1")
     each = max(1, round(count / 2 / len(CODES)))
     pieces = max(1, round(count / 2 / PIECE))
     tasks = [("", PIECE, 1000 * seed + number, program) for number in range(pieces)]

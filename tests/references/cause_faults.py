@@ -29,7 +29,7 @@ from tests.references.cause_lenses import (
     read_from_front,
     read_mirrored,
     read_off,
-)  # fmt: skip
+)
 from tests.references.cause_orders import (
     EYES,
     SEGMENT_BELOW_MM,
@@ -37,7 +37,7 @@ from tests.references.cause_orders import (
     SEGMENT_INSET_MM,
     LensOrder,
     PairOrder,
-)  # fmt: skip
+)
 
 TABLE: dict[str, Any] = json.loads((Path(pycore.__file__).parent / "bench" / "cause_table.json").read_text("utf-8"))
 CAUSES: dict[str, dict[str, Any]] = {entry["code"]: entry for entry in TABLE["causes"]}

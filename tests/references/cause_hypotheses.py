@@ -30,7 +30,7 @@ from tests.references.cause_lenses import (
     slid_by,
     turned,
     with_zero,
-)  # fmt: skip
+)
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault, pair_faults
 
@@ -198,12 +198,10 @@ class Rows:
 
 @dataclass(frozen=True)
 class Context:
-    """One fault of the pair, at one angle where it turns both lenses. `alone`: only without a fault of a lens beside it."""
+    """One fault of the pair, at one angle where it turns both lenses: its log weight; `beside`: only with a fault of one lens."""
 
-    fault: PairFault
     weight: float
-    alone: bool = False
-    beside: bool = False  # only with a fault of a lens beside it
+    beside: bool = False
 
 
 def start(pair: PairOrder, eye: str) -> Lenses:
@@ -242,13 +240,11 @@ def contexts_of(hypotheses: Hypotheses) -> list[list[Context]]:
     for fault in hypotheses.pair:
         if fault.turns:
             fine, coarse = angles(fault.code, FINE), angles(fault.code, COARSE)
-            found.append(
-                [Context(fault, math.log(weight), alone=True) for weight in fine[1]]
-                + [Context(fault, math.log(weight), beside=True) for weight in coarse[1]]
-            )
+            alone, beside = ([math.log(weight) for weight in weights] for _, weights in (fine, coarse))
+            found.append([Context(weight) for weight in alone] + [Context(weight, beside=True) for weight in beside])
         else:
-            found.append([Context(fault, math.log(fault.share))])
-    return found + [[Context(fault, math.log(fault.share), beside=True)] for fault in hypotheses.beside]
+            found.append([Context(math.log(fault.share))])
+    return found + [[Context(math.log(fault.share), beside=True)] for fault in hypotheses.beside]
 
 
 def read_at_places(sources: dict[str, Rows], shared: list[PairFault], contexts: list[list[Context]]) -> dict[str, Rows]:
@@ -265,12 +261,11 @@ def read_at_places(sources: dict[str, Rows], shared: list[PairFault], contexts: 
                 lenses = with_zero(fault.read[place](rows.lenses.take(here)))
                 parts[place].append((np.full(len(here), first), rows.fault[here], rows.weight[here], lenses))
         first += len(contexts[number])
-    return {
-        place: Rows(
-            *(np.concatenate([part[field] for part in of_place]) for field in range(3)), joined([part[3] for part in of_place])
-        )  # type: ignore[misc]
-        for place, of_place in parts.items()
-    }
+    found = {}
+    for place, of_place in parts.items():
+        context, fault_number, weight, lenses = zip(*of_place, strict=True)
+        found[place] = Rows(np.concatenate(context), np.concatenate(fault_number), np.concatenate(weight), joined(list(lenses)))
+    return found
 
 
 def turned_on_table(rows: Rows, here: Places, code: str, first: int) -> list[tuple[Places, Places, Floats, Lenses]]:

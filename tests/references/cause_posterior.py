@@ -29,6 +29,7 @@ from tests.references.cause_lenses import (
     ADD,
     COMMON,
     CYLINDER,
+    LAYOUT,
     MEAN,
     MEASURED,
     PLACE,
@@ -39,7 +40,7 @@ from tests.references.cause_lenses import (
     Lenses,
     cylinder_parts,
     slid_by,
-)  # fmt: skip
+)
 from tests.references.cause_orders import EYES, PairOrder
 from tests.references.cause_pair_faults import PairFault
 
@@ -115,7 +116,7 @@ def common_variance(pair: PairOrder, fault: PairFault) -> Floats:
     """Prior variance of the latents that both lenses have in common."""
     variance = np.zeros(COMMON)
     variance[ZERO] = pair.bench.zero**2 + fault.zero_variance
-    variance[2] = fault.layout_variance
+    variance[LAYOUT] = fault.layout_variance
     if pair.thinning_amount is None:
         variance[THINNING] = (pair.right.add / 3) ** 2
     return variance

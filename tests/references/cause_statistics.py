@@ -24,27 +24,38 @@ ALL_OTHERS: Entry = (("all-others", EYES),)
 BINS = np.array([0.0, 0.02, 0.05, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 0.95, 0.98, 1.0])
 
 
+Group = frozenset[Entry]
+
+
 @dataclass(frozen=True)
 class Judged:
-    """One job: its weight, what went wrong, the simulator's own posterior, the list that is tested."""
+    """One job: its weight, what went wrong, the probability of that one's group by the simulator's own posterior, the list that
+    is tested, and the same by the simulator's groups of equal predictions, likeliest first."""
 
     weight: float
     truth: Entry
-    own: Posterior
+    sure: float
     tested: dict[Entry, float]
+    groups: list[tuple[float, Group]]
 
-    def groups(self) -> list[tuple[float, frozenset[Entry]]]:
-        """The tested list by the simulator's groups of equal predictions, likeliest first."""
-        left, found = dict(self.tested), []
-        while left:
-            entry = next(iter(left))
-            group = self.own.groups.get(entry, frozenset([entry]))
-            found.append((sum(left.pop(member, 0.0) for member in group), group))
-        return sorted(found, key=lambda item: -item[0])
+    def accuses(self) -> bool:
+        """Tell whether a cause stands first."""
+        return self.groups[0][1].isdisjoint({AS_ORDERED, ALL_OTHERS})
 
-    def holds(self, group: frozenset[Entry]) -> bool:
+    def holds(self, group: Group) -> bool:
         """Tell whether a group of the tested list holds what went wrong; the rest of the list holds what is not in it."""
-        return self.truth in group or (group == {ALL_OTHERS} and self.truth not in self.tested)
+        return self.truth in group or (group == {ALL_OTHERS} and not any(self.truth in other for _, other in self.groups))
+
+
+def grouped(own: Posterior, truth: Entry, tested: dict[Entry, float]) -> list[tuple[float, Group]]:
+    """A tested list by the simulator's groups, likeliest first (of each group, what is listed, and what went wrong)."""
+    left, found = dict(tested), []
+    while left:
+        entry = next(iter(left))
+        group = own.groups.get(entry, frozenset([entry]))
+        told = frozenset(member for member in group if member in tested or member == truth)
+        found.append((sum(left.pop(member, 0.0) for member in group), told))
+    return sorted(found, key=lambda item: -item[0])
 
 
 # --- the program's list ---------------------------------------------------------------------------------------------------
@@ -90,7 +101,15 @@ def judge(case: Case, weight: float, *, program: bool) -> Judged:
     """One job judged by the simulator and by the program (or by the simulator alone, to prove itself)."""
     own = posterior(case.pair, case.hypotheses, case.data)
     truth = as_far_as_read(case.truth.entry, case.pair.plan.eyes)
-    return Judged(weight, truth, own, causes_of(case.job) if program else own.entries)
+    tested = causes_of(case.job) if program else in_short(own.entries)
+    sure = sum(own.entries[entry] for entry in own.groups[truth])
+    return Judged(weight, truth, sure, tested, grouped(own, truth, tested))
+
+
+def in_short(entries: dict[Entry, float], least: float = 1e-4) -> dict[Entry, float]:
+    """A posterior as a list that people could read: what is hardly probable as one."""
+    told = {entry: value for entry, value in entries.items() if value >= least}
+    return told | {ALL_OTHERS: 1 - sum(told.values())}
 
 
 def from_priors(count: int, seed: int, *, program: bool) -> list[Judged]:
@@ -131,8 +150,7 @@ def reliability(judged: list[Judged], *, top_only: bool) -> Reliability:
     """Stated probability against frequency, of the first group of each job or of all groups."""
     told, true, weight = [], [], []
     for job in judged:
-        groups = job.groups()
-        for value, group in groups[:1] if top_only else groups:
+        for value, group in job.groups[:1] if top_only else job.groups:
             told.append(value)
             true.append(job.holds(group))
             weight.append(job.weight)
@@ -167,27 +185,24 @@ def ranks(judged: list[Judged], sure: float = 0.9) -> Ranks:
     """Rank of the injected group in the tested list."""
     places = []
     for job in judged:
-        group = job.own.groups[job.truth]
-        if sum(job.own.entries[entry] for entry in group) >= sure:
-            ranked = [job.truth in tested for _, tested in job.groups()]
+        if job.sure >= sure:
+            ranked = [job.truth in group for _, group in job.groups]
             places.append(ranked.index(True) if any(ranked) else len(ranked))
     found = np.array(places)
     return Ranks(len(found), float((found == 0).mean()), float((found < 3).mean()))
 
 
 def falsely_accused(judged: list[Judged]) -> float:
-    """Share of correct pairs for which some cause stands above one half."""
+    """Share of correct pairs for which some cause (with all that predict the same) stands above one half."""
     good = [job for job in judged if job.truth == AS_ORDERED]
-    return sum(
-        any(value > 0.5 for entry, value in job.tested.items() if entry not in (AS_ORDERED, ALL_OTHERS)) for job in good
-    ) / len(good)
+    return sum(job.accuses() and job.groups[0][0] > 0.5 for job in good) / len(good)
 
 
 def confusion(judged: list[Judged]) -> dict[str, dict[str, int]]:
     """Injected cause → what stands first → in how many jobs. A first group that holds the injected cause counts as it."""
     table: dict[str, dict[str, int]] = {}
     for job in judged:
-        _, first = job.groups()[0]
+        _, first = job.groups[0]
         injected = code_of(job.truth)
         stated = injected if job.holds(first) else code_of(max(first, key=lambda entry: job.tested.get(entry, 0.0)))
         row = table.setdefault(injected, {})

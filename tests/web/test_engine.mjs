@@ -1,7 +1,9 @@
 // The worker client: who is answered, who is superseded, and what happens when a worker dies. No Python runs here.
 import assert from "node:assert/strict";
 import { afterEach, beforeEach, test } from "node:test";
+import { gzipSync } from "node:zlib";
 import { startEngine } from "../../web/app/engine.js";
+import { textOf } from "../../web/build/payload.mjs";
 import { createKeeper } from "../../web/app/panels/keeper.js";
 import { NAMES } from "../../web/app/section-names.js";
 
@@ -52,7 +54,8 @@ let states;
 async function start(options = {}) {
   states = [];
   const engine = startEngine({ onState: (state) => states.push(state), ...options });
-  await settle();
+  do await settle();
+  while (!FakeWorker.refuse && (FakeWorker.last?.sent.length ?? 0) < 2);
   return engine;
 }
 
@@ -73,7 +76,7 @@ beforeEach(() => {
   globalThis.document = { visibilityState: "hidden", readyState: "complete", documentElement: { dataset: {} } };
   globalThis.wedgewrightEngine = function () {};
   globalThis.wedgewrightWasm = "the program";
-  globalThis.wedgewrightSnapshot = "the memory";
+  globalThis.wedgewrightSnapshot = textOf(gzipSync("the memory"));
   globalThis.wedgewrightPython = "the library";
 });
 
@@ -87,8 +90,8 @@ test("the worker is given both payloads, and what was asked before it was ready 
   const engine = await start();
   const answer = engine.ask({ do: "early" }, { lane: "a" });
   assert.deepEqual(FakeWorker.last.sent, [
-    { kind: "wasm", text: "the program" },
-    { kind: "snapshot", text: "the memory" },
+    { kind: "wasm", body: "the program" },
+    { kind: "snapshot", body: new TextEncoder().encode("the memory") },
   ]);
   FakeWorker.last.say({ kind: "ready" });
   assert.deepEqual(FakeWorker.last.asked, [{ id: 1, format: "wedgewright.request/1", sequence: 1, do: "early" }]);
@@ -240,8 +243,8 @@ test("a keystroke waits behind one section at most", async () => {
 });
 
 const LIBRARY = [
-  { kind: "wasm", text: "the program" },
-  { kind: "python", text: "the library" },
+  { kind: "wasm", body: "the program" },
+  { kind: "python", body: "the library" },
 ];
 
 test("an engine that does not start from the kept memory starts from the library, and says why", async () => {
@@ -261,7 +264,7 @@ test("an engine that does not start from the kept memory starts from the library
 
 test("a kept memory that takes too long is given up for the library", async () => {
   const engine = await start({ startLimitsMs: { snapshot: 10, python: 60_000 } });
-  await new Promise((resolve) => setTimeout(resolve, 30));
+  while (FakeWorker.made.length < 2 || FakeWorker.last.sent.length < 2) await settle();
   assert.equal(FakeWorker.made.length, 2);
   assert.deepEqual(FakeWorker.last.sent, LIBRARY);
   assert.equal(engine.start.why, "slow");

@@ -127,8 +127,9 @@ export function eyepiece({ state, steps, settings, compensators, changed }) {
     el("div", { class: "eyepiece-bar" }, other, hand, shut),
     ...stages.map((stage) => stage.node),
   );
-  node.addEventListener("keydown", (event) => {
-    if (event.key === "Escape") close();
+  // A touch on the dial leaves the focus nowhere, so the whole page is listened to.
+  document.addEventListener("keydown", (event) => {
+    if (event.key === "Escape" && !node.closest("[hidden]")) close();
   });
 
   /** The keys change sides: whoever holds the tablet in the other hand reaches them with that thumb. */

@@ -239,7 +239,10 @@ export function instrumentCheck({ form, state, engine, taken }) {
     body.hidden = !began;
   }
 
-  state.subscribe(draw);
+  state.subscribe((entries) => {
+    draw(entries);
+    if (!body.hidden) ask();
+  });
   draw(state.entries);
   return { node: el("div", { class: "instrument-check" }, begin, body), ask };
 }

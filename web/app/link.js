@@ -1,9 +1,10 @@
 /** Opens the engine: in a worker or on this thread, from the kept memory or from the library's byte code. */
+import { bytesOf, inflatedInPieces } from "../worker/unpack.js";
 import { payload, scriptUrl } from "./boot.js";
 
 /** @typedef {"worker" | "main-thread"} Mode */
 /** @typedef {"snapshot" | "python"} Source what it starts from: the memory the build has kept, or the library */
-/** @typedef {{postMessage: (message: object) => void, end: () => void}} Link */
+/** @typedef {{postMessage: (message: object, transfer?: Transferable[]) => void, end: () => void}} Link */
 /** @typedef {{message: (data: any) => void, crash: (error: unknown) => void}} Listener */
 
 /**
@@ -24,7 +25,7 @@ function linkTo(engine, listener) {
       worker.terminate();
       URL.revokeObjectURL(url);
     };
-    return { link: { postMessage: (message) => worker.postMessage(message), end }, mode: "worker" };
+    return { link: { postMessage: (message, transfer = []) => worker.postMessage(message, transfer), end }, mode: "worker" };
   } catch {
     const { port1, port2 } = new MessageChannel();
     port1.onmessage = ({ data }) => listener.message(data);
@@ -33,25 +34,32 @@ function linkTo(engine, listener) {
       port1.onmessage = null;
       port1.close();
     };
-    return { link: { postMessage: (message) => port1.postMessage(message), end }, mode: "main-thread" };
+    return { link: { postMessage: (message, transfer = []) => port1.postMessage(message, transfer), end }, mode: "main-thread" };
   }
+}
+
+/** The memory kept by the build, inflated here while the worker is busy with the program. */
+async function keptMemory() {
+  return inflatedInPieces(bytesOf(await payload("snapshot")));
 }
 
 /**
  * @param {Source} source
  * @param {Listener} listener
- * @returns {Promise<{link: Link, mode: Mode, given: Promise<void>}>} the link, and when the engine has all it starts from
+ * @returns {Promise<{link: Link, mode: Mode, given: Promise<unknown>}>} the link, and when the engine has all it starts from
  */
 export async function openLink(source, listener) {
   // Read side by side, the one that is needed first begun first.
-  const [engine, wasm, memory] = [payload("worker"), payload("wasm"), payload(source)];
-  for (const read of [wasm, memory]) {
+  const engine = payload("worker");
+  const start = source === "snapshot" ? keptMemory() : payload("python");
+  const program = payload("wasm");
+  for (const read of [start, program]) {
     read.catch(() => {}); // said where it is awaited, below
   }
-  const opened = linkTo(await engine, listener);
-  const give = async () => {
-    opened.link.postMessage({ kind: "wasm", text: await wasm });
-    opened.link.postMessage({ kind: source, text: await memory });
-  };
-  return { ...opened, given: give() };
+  const { link, mode } = linkTo(await engine, listener);
+  const given = Promise.all([
+    program.then((body) => link.postMessage({ kind: "wasm", body })),
+    start.then((body) => link.postMessage({ kind: source, body }, body.buffer ? [body.buffer] : [])),
+  ]);
+  return { link, mode, given };
 }

@@ -29,18 +29,21 @@ const isForbidden = (unit) =>
  *
  * @param {Uint8Array} bytes
  */
-export function packed(bytes) {
-  const small = gzip(bytes);
-  const odd = small.length % 2;
-  const even = Buffer.alloc(small.length + odd);
-  small.copy(even);
-  /** @type {string[]} */
+export function textOf(bytes) {
+  const odd = bytes.length % 2;
+  const even = Buffer.alloc(bytes.length + odd);
+  even.set(bytes);
   const characters = [String(odd)];
   for (let index = 0; index < even.length; index += 2) {
     const unit = even.readUInt16LE(index);
     characters.push(isForbidden(unit) ? String.fromCharCode(ESCAPE, unit ^ MASK) : String.fromCharCode(unit));
   }
   return characters.join("");
+}
+
+/** @param {Uint8Array} bytes */
+export function packed(bytes) {
+  return textOf(gzip(bytes));
 }
 
 /** A file's bytes: two to a character, with the mark that every browser heeds before whatever a server says. @param {string} text */

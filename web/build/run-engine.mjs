@@ -2,6 +2,7 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { runInThisContext } from "node:vm";
+import { bytesOf, inflatedInPieces } from "../worker/unpack.js";
 import { dressAsWorker } from "./dress.mjs";
 
 /** A script as a browser reads it, by its first bytes. @param {string} file */
@@ -35,9 +36,10 @@ export async function startBuiltEngine(folder, source) {
     };
   });
   page.wedgewrightEngine(port);
-  port.onmessage({ data: { kind: "wasm", text: page.wedgewrightWasm } });
-  const memory = source === "snapshot" ? page.wedgewrightSnapshot : page.wedgewrightPython;
-  port.onmessage({ data: { kind: source, text: memory } });
+  port.onmessage({ data: { kind: "wasm", body: page.wedgewrightWasm } });
+  const body =
+    source === "snapshot" ? await inflatedInPieces(bytesOf(page.wedgewrightSnapshot)) : page.wedgewrightPython;
+  port.onmessage({ data: { kind: source, body } });
   await ready;
 
   let id = 0;

@@ -32,14 +32,11 @@ function clearFreeMemory(runtime) {
  */
 export async function serve({ program, library, warm }, pyodideBehind) {
   let untouched = new Uint32Array();
-  const load = offlinePyodide(pyodideBehind, {
-    program: WebAssembly.compile(program),
-    library,
-    fresh: async (memory) => {
-      untouched = new Uint32Array(memory.buffer.slice(0));
-    },
-  });
-  const pyodide = await load({ _makeSnapshot: true });
+  const fresh = (/** @type {WebAssembly.Memory} */ memory) => {
+    untouched = new Uint32Array(memory.buffer.slice(0));
+  };
+  const load = offlinePyodide(pyodideBehind, WebAssembly.compile(program));
+  const pyodide = await load({ library, fresh }, { _makeSnapshot: true });
   pyodide.runPython(warm);
   clearFreeMemory(pyodide._module);
   const snapshot = pyodide.makeMemorySnapshot();

@@ -24,7 +24,8 @@ export async function buildSnapshot(engine, program, library) {
       await writeFile(join(folder, name), contents);
     }
     const snapshot = join(folder, "snapshot");
-    await promisify(execFile)(process.execPath, [beside("make-snapshot.mjs"), ...files, beside("warm.py"), snapshot]);
+    const env = { ...process.env, TZ: "UTC", LC_ALL: "C" }; // both would stay in the memory
+    await promisify(execFile)(process.execPath, [beside("make-snapshot.mjs"), ...files, beside("warm.py"), snapshot], { env });
     return await readFile(snapshot);
   } finally {
     await rm(folder, { recursive: true });

@@ -2,10 +2,10 @@
  * The engine's side of the conversation with the page. It runs in a worker, or on the page's own thread where workers are
  * refused; it knows a port to listen at and nothing of the page.
  *
- * From the page: {kind: "wasm", text} and one of {kind: "snapshot" | "python", text}, then {kind: "ask", id, text}.
+ * From the page: {kind: "wasm", body} and one of {kind: "snapshot" | "python", body}, then {kind: "ask", id, text}.
  * To the page: {kind: "ready", times}, {kind: "answer", id, text}, {kind: "failed", message}.
  */
-import { compiled, startFromLibrary, startFromSnapshot } from "./python.js";
+import { compiled, offlinePyodide, startFromLibrary, startFromSnapshot } from "./python.js";
 
 /**
  * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
@@ -22,16 +22,17 @@ function times() {
  * @param {import("./python.js").PyodideBehind} pyodideBehind
  */
 export function serve(port, pyodideBehind) {
-  /** @type {Record<string, (text: string) => void>} */
+  /** @type {Record<string, (body: any) => void>} */
   const arrived = {};
-  /** @type {(kind: string) => Promise<string>} */
+  /** @type {(kind: string) => Promise<any>} */
   const payload = (kind) => new Promise((resolve) => (arrived[kind] = resolve));
   const program = payload("wasm").then(compiled);
   program.catch(() => {}); // reported where it is awaited
+  const load = Promise.resolve().then(() => offlinePyodide(pyodideBehind, program));
   // Whichever of the two comes says which way to start.
   const handle = Promise.race([
-    payload("snapshot").then((text) => startFromSnapshot(pyodideBehind, program, text)),
-    payload("python").then((text) => startFromLibrary(pyodideBehind, program, text)),
+    payload("snapshot").then(async (kept) => startFromSnapshot(await load, kept)),
+    payload("python").then(async (text) => startFromLibrary(await load, text)),
   ]);
   handle.then(
     () => port.postMessage({ kind: "ready", times: times() }),
@@ -40,7 +41,7 @@ export function serve(port, pyodideBehind) {
   port.onmessage = async ({ data }) => {
     const take = arrived[data.kind];
     if (take) {
-      take(data.text);
+      take(data.body);
       return;
     }
     try {

@@ -7,6 +7,11 @@ import { addFresh } from "./memory.js";
  * Pyodide's scripts, seeing these instead of the real ones; gives loadPyodide.
  */
 /** @typedef {(request: string) => string} Handle the core's door */
+/**
+ * What there is when Pyodide is loaded: the library's zip, if any, and who sees the memory before the program has run.
+ * @typedef {{library?: Uint8Array<ArrayBuffer>, fresh?: (memory: WebAssembly.Memory) => void}} World
+ */
+/** @typedef {(world: World, options?: object) => Promise<any>} Load */
 
 /** The canvas's functions, of which the program wants an address each, and which nothing here calls. */
 const GRAPHICS = /^(emscripten_)?gl[A-Z]/;
@@ -26,27 +31,28 @@ function withoutGraphics(addresses) {
 }
 
 /**
- * Pyodide's loadPyodide, for which there is a program, a library and nothing else in the world.
+ * Pyodide's loadPyodide, for which there is a program, a library and nothing else in the world. Its scripts are run here
+ * and now, so this is best called while the rest is still on its way.
  *
  * @param {PyodideBehind} pyodideBehind
- * @param {object} world
- * @param {Promise<WebAssembly.Module>} world.program
- * @param {Uint8Array<ArrayBuffer>} world.library a zip; empty where a snapshot holds all that is imported
- * @param {(memory: WebAssembly.Memory) => Promise<void>} [world.fresh] sees the memory before the program has run
- * @returns {(options: object) => Promise<any>}
+ * @param {Promise<WebAssembly.Module>} program
+ * @returns {Load}
  */
-export function offlinePyodide(pyodideBehind, { program, library, fresh = async () => {} }) {
+export function offlinePyodide(pyodideBehind, program) {
+  /** @type {Required<World>} */
+  const world = { library: new Uint8Array(), fresh: () => {} };
   // Where the program cannot be made, Pyodide waits for ever; so it is said here.
   /** @type {(error: unknown) => void} */
   let fail = () => {};
   const failed = new Promise((_, reject) => (fail = reject));
+  failed.catch(() => {}); // said by `load`
   // What Pyodide's scripts see under the name `fetch`: the two files it asks for at a start, and nothing else.
   const offlineFetch = async (/** @type {string | URL} */ url) => {
     if (String(url).endsWith("pyodide.asm.wasm")) {
       return new Response(null, { headers: { "Content-Type": "application/wasm" } });
     }
     if (String(url).endsWith("python_stdlib.zip")) {
-      return new Response(library);
+      return new Response(world.library);
     }
     throw new TypeError("There is no network here.");
   };
@@ -54,7 +60,7 @@ export function offlinePyodide(pyodideBehind, { program, library, fresh = async 
     try {
       const module = await program;
       const instance = await WebAssembly.instantiate(module, { ...imports, "GOT.func": withoutGraphics(imports["GOT.func"]) });
-      await fresh(imports.env.memory);
+      world.fresh(imports.env.memory);
       return { module, instance };
     } catch (error) {
       fail(error);
@@ -67,19 +73,20 @@ export function offlinePyodide(pyodideBehind, { program, library, fresh = async 
   });
   // The scripts try for `exports`; where there is none that costs more time than one would think.
   const loadPyodide = pyodideBehind(offlineFetch, offlineAssembly, {});
-  return (options) =>
-    Promise.race([
-      failed,
-      loadPyodide({
-        indexURL: NOWHERE,
-        packageBaseUrl: NOWHERE,
-        stdLibURL: `${NOWHERE}python_stdlib.zip`,
-        lockFileContents: { info: PYODIDE_LOCK_INFO, packages: {} },
-        env: { HOME: "/home/pyodide", LANG: "C.UTF-8", PYTHONHASHSEED: "0" },
-        stdin: () => null,
-        ...options,
-      }),
-    ]);
+  performance.mark("scripts-run");
+  return (given, options = {}) => {
+    Object.assign(world, given);
+    const loaded = loadPyodide({
+      indexURL: NOWHERE,
+      packageBaseUrl: NOWHERE,
+      stdLibURL: `${NOWHERE}python_stdlib.zip`,
+      lockFileContents: { info: PYODIDE_LOCK_INFO, packages: {} },
+      env: { HOME: "/home/pyodide", LANG: "C.UTF-8", PYTHONHASHSEED: "0" },
+      stdin: () => null,
+      ...options,
+    });
+    return Promise.race([failed, loaded]);
+  };
 }
 
 /**
@@ -98,27 +105,20 @@ export async function compiled(text) {
 /**
  * The core's door, out of the memory that the build has kept: everything imported, the first calls made.
  *
- * @param {PyodideBehind} pyodideBehind
- * @param {Promise<WebAssembly.Module>} program
- * @param {string} snapshot payload
+ * @param {Load} load
+ * @param {Uint8Array<ArrayBuffer>} kept the memory, less what the program has in it when it is new
  * @returns {Promise<Handle>}
  */
-export async function startFromSnapshot(pyodideBehind, program, snapshot) {
-  const kept = readAll(inflated(bytesOf(snapshot)));
-  kept.then(() => performance.mark("memory-inflated"));
-  const load = offlinePyodide(pyodideBehind, {
-    program,
-    library: new Uint8Array(),
-    fresh: async (memory) => {
-      performance.mark("program-instantiated");
-      addFresh(await kept, memory);
-      performance.mark("memory-whole");
-    },
-  });
-  performance.mark("scripts-run");
-  const pyodide = await load({ _loadSnapshot: kept });
+export async function startFromSnapshot(load, kept) {
+  performance.mark("memory-there");
+  const fresh = (/** @type {WebAssembly.Memory} */ memory) => {
+    performance.mark("program-instantiated");
+    addFresh(kept, memory);
+  };
+  const pyodide = await load({ fresh }, { _loadSnapshot: kept });
   performance.mark("pyodide-loaded");
-  // The build has left this out, because what it sets is not in the memory (see worker.mjs); without it calls are slower.
+  // The build has left this out, because what it sets is not in the memory (see build/scripts.mjs); without it calls are
+  // slower.
   pyodide._module.initTrampoline();
   // What the build's own randomness has left must not be the same on every bench.
   pyodide.pyimport("random").seed();
@@ -128,14 +128,13 @@ export async function startFromSnapshot(pyodideBehind, program, snapshot) {
 /**
  * The core's door, imported anew from byte code: slower, by documented means alone.
  *
- * @param {PyodideBehind} pyodideBehind
- * @param {Promise<WebAssembly.Module>} program
+ * @param {Load} load
  * @param {string} python payload: the zip with library and core
  * @returns {Promise<Handle>}
  */
-export async function startFromLibrary(pyodideBehind, program, python) {
+export async function startFromLibrary(load, python) {
   const library = await readAll(inflated(bytesOf(python)));
-  const pyodide = await offlinePyodide(pyodideBehind, { program, library })({});
+  const pyodide = await load({ library });
   performance.mark("pyodide-loaded");
   // What is loaded now stays; looking it over again and again would only make the start and some keystrokes late.
   const collector = pyodide.pyimport("gc");

@@ -44,3 +44,49 @@ export function inflated(bytes) {
 export async function readAll(stream) {
   return new Uint8Array(await new Response(stream).arrayBuffer());
 }
+
+/** Some milliseconds of work. */
+const PIECE = 200_000;
+
+/** Lets everything else that waits for this thread go first. */
+function others() {
+  return new Promise((resolve) => {
+    const { port1, port2 } = new MessageChannel();
+    port1.onmessage = () => {
+      port1.close();
+      resolve(undefined);
+    };
+    port2.postMessage(null);
+  });
+}
+
+/**
+ * The same as reading all that is inflated, in pieces, for the thread on which somebody may be typing.
+ *
+ * @param {Uint8Array<ArrayBuffer>} bytes gzip
+ * @returns {Promise<Uint8Array<ArrayBuffer>>}
+ */
+export async function inflatedInPieces(bytes) {
+  const length = new DataView(bytes.buffer, bytes.byteOffset, bytes.length).getUint32(bytes.length - 4, true); // by RFC 1952
+  const gunzip = new DecompressionStream("gzip");
+  const write = async () => {
+    const writer = gunzip.writable.getWriter();
+    for (let at = 0; at < bytes.length; at += PIECE) {
+      await writer.write(bytes.subarray(at, at + PIECE));
+      await others();
+    }
+    await writer.close();
+  };
+  const read = async () => {
+    const whole = new Uint8Array(length);
+    const reader = gunzip.readable.getReader();
+    let at = 0;
+    for (let next = await reader.read(); !next.done; next = await reader.read()) {
+      whole.set(next.value, at);
+      at += next.value.length;
+    }
+    return whole;
+  };
+  const [whole] = await Promise.all([read(), write()]);
+  return whole;
+}

@@ -5,7 +5,7 @@ import { removeBranch } from "../job.js";
 import { usedRows } from "../prism-rows.js";
 import { say, shown } from "../words.js";
 
-/** @typedef {{result: string, sentence: string, leads_to: {shown: string}[]}} Result */
+/** @typedef {{result: string, sentence: import("../types.js").Said, leads_to: {text: string}[]}} Result */
 
 /** @param {string} code @param {string|undefined} eye */
 const lookText = (code, eye) => say(`looks.${code}`, { eye: eye ? say(`eyes.${eye}`) : "" });
@@ -31,8 +31,8 @@ export function lookCard({ state }) {
     return el(
       "li",
       { class: "look-result" },
-      button(shown(sentence), () => enter(look, result), { "data-key": `look-${look.look}-${result}` }),
-      el("span", { class: "more" }, leads.map((one) => shown(one.shown)).join("; ")),
+      button(say(`look_results.${sentence.code}`, sentence.params), () => enter(look, result), { "data-key": `look-${look.look}-${result}` }),
+      el("span", { class: "more" }, leads.map((one) => shown(one.text)).join("; ")),
     );
   }
 
@@ -45,7 +45,7 @@ export function lookCard({ state }) {
         next,
         ...(look?.look
           ? [
-              el("p", { class: "look-said" }, shown(look.sentence)),
+              el("p", { class: "look-said" }, say(`looks.${look.sentence.code}`, look.sentence.params)),
               el("ul", { class: "look-results" }, ...look.results.map((/** @type {Result} */ one) => resultNode(look, one))),
             ]
           : []),
