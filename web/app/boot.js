@@ -97,6 +97,7 @@ export async function payload(name) {
   const { file, id, global } = PAYLOADS[name];
   if (document.documentElement.dataset.single !== undefined) {
     await wholePage();
+    performance.mark(`payload-${name}`);
     return id ? document.getElementById(id)?.textContent : /** @type {any} */ (globalThis)[global];
   }
   if (!(global in globalThis)) {
