@@ -18,6 +18,7 @@ import { drawSheet } from "./print.js";
 import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
+import { serverFollower } from "./served.js";
 import { openStore } from "./store.js";
 import { outcomeOf, sentenceOf, verdictStrip } from "./verdict.js";
 import { benchView } from "./views/bench.js";
@@ -62,8 +63,10 @@ export function startPage(startEngine) {
       standing.engine = code;
       if (head) showStart();
       foot?.draw(standing);
+      if (code === "ready") server.follow();
     },
   });
+  const server = serverFollower({ state, unsaved: () => head?.saving ?? false });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
   const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
@@ -169,6 +172,7 @@ export function startPage(startEngine) {
   }
 
   function newJob() {
+    server.update();
     state.replace(nextJob(state.entries));
     top.show("order");
     byId("f-id").focus();
@@ -212,7 +216,7 @@ export function startPage(startEngine) {
       edition: standing.report?.verdict?.edition.name ?? "",
       entries,
     };
-    store?.put("jobs", kept.key, kept).then(showJobs);
+    store?.put("jobs", kept.key, kept).then(showJobs, () => top.saved(store?.newer ? "newer" : "off"));
   }
 
   async function showJobs() {
