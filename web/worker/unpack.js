@@ -21,7 +21,7 @@ export function bytesOf(text) {
     units[length] = unit;
     length += 1;
   }
-  return new Uint8Array(units.buffer, 0, 2 * length - Number(text[0]));
+  return new Uint8Array(units.buffer, 0, 2 * length - (text[0] === "1" ? 1 : 0));
 }
 
 /**
