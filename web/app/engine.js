@@ -63,9 +63,10 @@ function refusal(code) {
 }
 
 /**
- * @param {{onState?: (state: EngineState) => void, timeLimitMs?: number, quietMs?: number}} [options]
+ * @param {{onState?: (state: EngineState) => void, language?: string, timeLimitMs?: number, quietMs?: number}} [options]
+ * `language` in which the core answers
  */
-export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS, quietMs = QUIET_MS } = {}) {
+export function startEngine({ onState = () => {}, language = "en", timeLimitMs = TIME_LIMIT_MS, quietMs = QUIET_MS } = {}) {
   /** @type {EngineState} */
   let state = "reading";
   /** @type {"worker" | "main-thread"} */
@@ -232,7 +233,7 @@ export function startEngine({ onState = () => {}, timeLimitMs = TIME_LIMIT_MS, q
       if (running?.lane === lane) {
         running.resolve(null);
       }
-      const text = JSON.stringify({ format: "wedgewright.request/1", sequence, ...request });
+      const text = JSON.stringify({ format: "wedgewright.request/1", sequence, language, ...request });
       waiting.delete(lane); // so that the newer one takes its place at the end of the queue
       waiting.set(lane, { id: sequence, lane, text, idle, resolve });
       if (!idle) {

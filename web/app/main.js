@@ -1,8 +1,10 @@
 import "./boot.js";
 import { startEngine } from "./engine.js";
 import { startPage } from "./page.js";
-import { useWords } from "./words.js";
-import words from "./generated/words.js";
+import { languageOf, speak } from "./language.js";
+import { loadSettings } from "./settings.js";
 
-useWords(words);
-startPage(startEngine);
+const settings = loadSettings();
+const language = languageOf(settings);
+speak(language);
+startPage((options) => startEngine({ ...options, language }), settings);

@@ -11,9 +11,10 @@ import { fromJob, guestJob, hasOrder, nextJob, readJobFile, toJob } from "./job.
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
+import { languageOf } from "./language.js";
 import { orderLine } from "./order-line.js";
 import { drawSheet } from "./print.js";
-import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { applyLook, eraseSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
 import { openStore } from "./store.js";
@@ -32,10 +33,12 @@ import { say, writeWith } from "./words.js";
  * @typedef {import("./keeping.js").KeptJob} KeptJob
  */
 
-/** @param {typeof import("./engine.js").startEngine} startEngine */
-export function startPage(startEngine) {
+/**
+ * @param {typeof import("./engine.js").startEngine} startEngine
+ * @param {import("./settings.js").Settings} settings
+ */
+export function startPage(startEngine, settings) {
   const root = document.documentElement;
-  const settings = loadSettings();
   applyLook(settings);
   writeWith(settings);
 
@@ -250,6 +253,7 @@ export function startPage(startEngine) {
     top.keypad();
     line.ask();
     draw();
+    if (languageOf(settings) !== root.lang) top.openAnew();
   }
 
   /** @param {string} path leads to the field that is to be mended */

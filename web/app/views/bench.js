@@ -5,6 +5,7 @@ import { faultText } from "../faults.js";
 import { choiceControl } from "../controls.js";
 import * as fields from "../fields.js";
 import { readFile } from "../job.js";
+import { LANGUAGES } from "../language.js";
 import { say } from "../words.js";
 
 /**
@@ -17,7 +18,7 @@ import { say } from "../words.js";
  */
 export function benchView({ form, settings, settingsChanged, erase, editions }) {
   const shop = shopCard(editions);
-  /** @param {"theme"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
+  /** @param {"theme"|"language"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
   const setting = (name, values) => {
     const control = choiceControl(
       { path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values },
@@ -66,7 +67,9 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         "bench-screen",
         say("page.bench.screen"),
         setting("theme", ["auto", "light", "dark"]),
-        setting("decimal", ["point", "comma"]),
+        setting("language", ["auto", ...LANGUAGES]),
+        el("p", { class: "help" }, say("page.bench.language_help")),
+        setting("decimal", ["language", "point", "comma"]),
         setting("keypad", ["auto", "on", "off"]),
         setting("bases", ["360", "180"]),
         setting("date", ["iso", "day", "day-point", "month"]),
