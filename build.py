@@ -113,6 +113,7 @@ def run_node(*arguments: str | Path, folder: Path = ROOT) -> None:
     program = node()
     path = os.pathsep.join([str(program.parent), os.environ.get("PATH", os.defpath)])
     settings = {"PATH": path, "NODE_USE_SYSTEM_CA": "1", "npm_config_cache": str(TOOLS / "npm-cache")}
+    settings |= {"WEDGEWRIGHT_PYTHON": sys.executable, "PYTHONPATH": str(TOOLS / "build")}
     run([program, *arguments], folder=folder, environment=settings)
 
 

@@ -1,55 +1,28 @@
 """What the door can be asked to do; each action takes the envelope and answers with an entry."""
 
 import json
-from collections.abc import Callable, Mapping
-from decimal import Decimal
-from typing import Any, NoReturn
+from collections.abc import Mapping
+from typing import Any
 
-from pycore.bench.setting import snap_to_step
 from pycore.case import case_of
-from pycore.contract import JOB_FORMAT, check_job_size
 from pycore.data import package_text
-from pycore.decimals import decimal_places, fixed
 from pycore.echo import echo_of
 from pycore.editions.edition import OPTIONS, Edition
 from pycore.editions.reader import BUILT_IN, built_in, read_edition
+from pycore.envelope import Action, Source, checked, job_source, refuse
 from pycore.errors import Fault, Note, RefusedError
-from pycore.job.bench import Instrument, read_instrument, taken_by_compensator
 from pycore.job.body import Lens
 from pycore.job.document import PAIR_PD_MM, Job, read_job
 from pycore.job.fields import Fields
 from pycore.job.order import EyeOrder, read_eye
 from pycore.names import Entry
-from pycore.optics.prism import EYES, Eye, Prism, horizontal_word, vertical_word
+from pycore.optics.prism import EYES
+from pycore.reading_actions import check_instrument, place, step, touch
 from pycore.report import note_entry, order_lines, report_of
 from pycore.result import result_text
 from pycore.sections import SECTIONS, add_sections
 
-Source = Mapping[str, Any]
-Action = Callable[[Source, Fields], Entry]
 MAXIMUM_EDITIONS = 20
-MAXIMUM_STEPS = "400"
-
-
-def _refuse(code: str, field: str, given: str, fix: str, **params: str) -> NoReturn:
-    raise RefusedError((Fault(code=code, field=field, given=given[:64], params=params, fix=fix),))
-
-
-def _job_source(envelope: Source) -> Source:
-    job = envelope.get("job")
-    if not isinstance(job, Mapping):
-        _refuse("object-expected", "job", str(job), "send-again")
-    check_job_size(job)
-    if "format" not in job:
-        _refuse("format-unknown", "format", "", "use-format", format=JOB_FORMAT)
-    return job
-
-
-def _checked(fields: Fields) -> None:
-    """Refuse the envelope where one of its keys is wrong or unknown."""
-    fields.finish()
-    if fields.faults:
-        raise RefusedError(tuple(fields.faults))
 
 
 def _report(envelope: Source, fields: Fields) -> Entry:
@@ -57,8 +30,8 @@ def _report(envelope: Source, fields: Fields) -> Entry:
     for key in ("job", "editions", "sections"):
         fields.raw(key)
     wanted = _wanted_sections(envelope.get("sections"))
-    _checked(fields)
-    source = _job_source(envelope)
+    checked(fields)
+    source = job_source(envelope)
     try:
         job = read_job(source)
         edition = _edition_for(job, envelope)
@@ -78,10 +51,10 @@ def _wanted_sections(sections: Any) -> tuple[str, ...]:
     if sections is None:
         return tuple(SECTIONS)
     if not isinstance(sections, list):
-        _refuse("list-expected", "sections", "", "send-again")
+        refuse("list-expected", "sections", "", "send-again")
     for name in sections:
         if not isinstance(name, str) or name not in SECTIONS:
-            _refuse(
+            refuse(
                 "choice-unknown",
                 "sections",
                 str(name),
@@ -98,7 +71,7 @@ def _edition_for(job: Job, envelope: Source) -> Edition | None:
     shop = _shop_editions(envelope)
     if job.edition not in (*BUILT_IN, *shop):
         allowed = ", ".join((*BUILT_IN, *shop))
-        _refuse("edition-unknown", "edition", job.edition, "choose-one", allowed=allowed)
+        refuse("edition-unknown", "edition", job.edition, "choose-one", allowed=allowed)
     edition = shop.get(job.edition) or built_in(job.edition)
     faults = [*_option_faults(job, edition)]
     if job.state not in edition.states:
@@ -137,30 +110,30 @@ def _shop_editions(envelope: Source) -> dict[str, Edition]:
     if given is None:
         return {}
     if not isinstance(given, list) or len(given) > MAXIMUM_EDITIONS:
-        _refuse("list-expected", "editions", "", "send-again")
+        refuse("list-expected", "editions", "", "send-again")
     editions = {}
     for source in given:
         edition = read_edition(source, local=True)
         if edition.id in BUILT_IN:
-            _refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
+            refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
         if edition.id in editions:
-            _refuse("edition-id-twice", "edition.id", edition.id, "rename-edition")
+            refuse("edition-id-twice", "edition.id", edition.id, "rename-edition")
         editions[edition.id] = edition
     return editions
 
 
 def _check_edition(envelope: Source, fields: Fields) -> Entry:
     fields.raw("edition")
-    _checked(fields)
+    checked(fields)
     edition = read_edition(envelope.get("edition") or {}, local=True)
     if edition.id in BUILT_IN:
-        _refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
+        refuse("edition-id-taken", "edition.id", edition.id, "rename-edition")
     return {"format": "wedgewright.edition-check/1", "edition": _edition_entry(edition)}
 
 
 def _list_editions(envelope: Source, fields: Fields) -> Entry:
     fields.raw("editions")
-    _checked(fields)
+    checked(fields)
     editions = [*map(built_in, BUILT_IN), *_shop_editions(envelope).values()]
     return {"format": "wedgewright.editions/1", "editions": list(map(_edition_entry, editions))}
 
@@ -189,7 +162,7 @@ def _demonstration(_envelope: Source, fields: Fields) -> Entry:
     """An invented pair; `pair` names one that fails, by what is wrong with it."""
     kept = json.loads(package_text("job/demonstration.json"))
     pair = fields.word("pair", tuple(kept["changes"])) or "within"
-    _checked(fields)
+    checked(fields)
     job = _changed(kept["pair"], kept["changes"][pair])
     names = list(kept["changes"])
     following = names[(names.index(pair) + 1) % len(names)]
@@ -211,15 +184,28 @@ def _changed(job: Source, change: Source) -> Entry:
     return {key: value for key, value in {**job, **inner}.items() if value is not None}
 
 
+def _imagine(envelope: Source, fields: Fields) -> Entry:
+    """What the dials would show if one cause were the case."""
+    from pycore.imagine import BOTH, imaginable, imagined_entry  # not needed at the start
+
+    cause = fields.word("cause", imaginable()) or "as-ordered"
+    eyes = fields.word("eye", (*EYES, BOTH)) or BOTH
+    for key in ("job", "editions"):
+        fields.raw(key)
+    checked(fields)
+    job = read_job(job_source(envelope))
+    return imagined_entry(case_of(job, _edition_for(job, envelope)), cause, eyes)
+
+
 def _read_order(envelope: Source, fields: Fields) -> Entry:
     for key in ("line", "bases"):
         fields.raw(key)
-    _checked(fields)
+    checked(fields)
     line, bases = envelope.get("line"), envelope.get("bases", "360")
     if not isinstance(line, str):
-        _refuse("text-expected", "line", str(line), "type-text")
+        refuse("text-expected", "line", str(line), "type-text")
     if bases not in ("360", "180"):
-        _refuse("choice-unknown", "bases", str(bases), "choose-one", allowed="360, 180")
+        refuse("choice-unknown", "bases", str(bases), "choose-one", allowed="360, 180")
     from pycore.job.line import read_line  # here, so that the start does not wait for it
 
     reading = read_line(line, bases)
@@ -254,71 +240,14 @@ def _try_order(found: Source, pd_mm: str | None) -> tuple[list[EyeOrder], list[N
     return orders, notes
 
 
-def _eye(envelope: Source) -> Eye:
-    eye = envelope.get("eye")
-    if eye not in EYES:
-        _refuse("choice-unknown", "eye", str(eye), "choose-one", allowed=", ".join(EYES))
-    return "right" if eye == "right" else "left"
-
-
-def _touch(envelope: Source, fields: Fields) -> Entry:
-    """Where the target was touched on the dial, as a reading at the instrument's step."""
-    eye = _eye(envelope)
-    job = fields.raw("job")
-    given = job.get("instrument") if isinstance(job, Mapping) else None
-    instrument = read_instrument(Fields(given or {}, "instrument", fields.faults))
-    x, y = fields.number("x", "-60", "60"), fields.number("y", "-60", "60")
-    for name in ("x", "y"):
-        if not fields.has(name):
-            fields.refuse("number-missing", name, "", "type-number")
-    fields.raw("eye")
-    _checked(fields)
-    seen = Prism(x or Decimal(0), y or Decimal(0))
-    return _reading(eye, snap_to_step(seen, instrument.prism_step), instrument)
-
-
-def _step(envelope: Source, fields: Fields) -> Entry:
-    """The reading moved by whole steps; where nothing is read yet, from the expected point."""
-    eye = _eye(envelope)
-    right = fields.count("right", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
-    up = fields.count("up", "-" + MAXIMUM_STEPS, MAXIMUM_STEPS) or Decimal(0)
-    fine = fields.flag("fine")
-    for key in ("job", "eye"):
-        fields.raw(key)
-    _checked(fields)
-    job = read_job(_job_source(envelope))
-    due = case_of(job, None).dues.get(eye)
-    if due is None:
-        _refuse("eye-not-there", eye, "", "order-eye-first")
-    step = job.instrument.fine_step if fine else job.instrument.prism_step
-    reading = job.readings.of(eye)
-    if reading.prism:
-        start = reading.prism.seen
-    else:
-        taken = taken_by_compensator(reading.compensator, job.instrument.compensator)
-        start = snap_to_step(due.expected - taken, step)
-    return _reading(eye, start + Prism(right * step, up * step), job.instrument)
-
-
-def _reading(eye: Eye, seen: Prism, instrument: Instrument) -> Entry:
-    """A reading as the job document writes it, horizontal first, both always there."""
-    places = max(2, *(decimal_places(part) for part in (seen.x, seen.y, instrument.prism_step)))
-    across, along = horizontal_word(eye, seen.x) or "in", vertical_word(seen.y) or "up"
-    return {
-        "format": "wedgewright.reading/1",
-        "eye": eye,
-        "prism": [
-            {"amount": fixed(abs(seen.x), places), "base": across},
-            {"amount": fixed(abs(seen.y), places), "base": along},
-        ],
-    }
-
-
 ACTIONS: Mapping[str, Action] = {
     "report": _report,
     "read-order": _read_order,
-    "touch": _touch,
-    "step": _step,
+    "touch": touch,
+    "step": step,
+    "place": place,
+    "imagine": _imagine,
+    "check-instrument": check_instrument,
     "check-edition": _check_edition,
     "list-editions": _list_editions,
     "demonstration": _demonstration,

@@ -1,8 +1,11 @@
 """Reads the package's own data files, from a folder or a zip alike."""
 
+from functools import cache
+
 import pycore
 
 
+@cache  # a page that starts from a kept memory has no files any more
 def package_text(path: str) -> str:
     """The text of a data file of this package.
 

@@ -21,9 +21,11 @@ _PRISM = (
     "compensator_maximum",
     "prism_step",
     "zero_uncertainty",
+    "x",
+    "y",
 )
 _DEGREES = ("axis", "degrees")
-_TEXTS = ("format", "id", "edition", "initials", "at", "state", "design")
+_TEXTS = ("format", "id", "edition", "initials", "at", "state", "design", "checked_on")
 
 
 def echo_of(job: Mapping[str, Any]) -> dict[str, str]:

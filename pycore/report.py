@@ -12,6 +12,7 @@ from pycore.bench.expected import (
     sightings_of,
     thinning_found,
 )
+from pycore.bench.matter import repeated_of
 from pycore.bench.order_check import order_notes
 from pycore.bench.point import point_of
 from pycore.bench.region import region_of
@@ -41,6 +42,7 @@ from pycore.names import (
 )
 from pycore.optics.power import Power, point_with_prism
 from pycore.optics.prism import EYES, Eye, Prism
+from pycore.report_instrument import instrument_entry, spread_entry, step_bases
 from pycore.report_verdict import pair_entry, verdict_entry
 from pycore.scenes.dial import DialView, close_scene, dial_scene
 from pycore.words import say
@@ -62,6 +64,7 @@ def report_of(case: Case, *, scenes: bool) -> Entry:
         },
         "state": job.state,
         "demonstration": job.demonstration,
+        "instrument": instrument_entry(job.instrument),
     }
     for eye in EYES:
         order = job.order(eye)
@@ -93,6 +96,7 @@ def _lens_entry(case: Case, order: EyeOrder) -> Entry:
         "power": power_entry(due_.power) if due_.power else None,
         "add": None if due_.add is None else number(due_.add),
         "point": {"task": point.task, "code": point.code, "params": point.params},
+        "step_bases": step_bases(eye, job.instrument),
         "on_rings": on_rings(due_.expected, job.instrument),
         "compensator": _compensator_entry(case, due_),
         "oc_from_prp_mm": _optical_centre(order, due_),
@@ -102,22 +106,10 @@ def _lens_entry(case: Case, order: EyeOrder) -> Entry:
     if job.instrument.kind == "automatic":
         shown = automatic_display(due_, job.instrument)
         entry["meter"] = {"key": eye, **prism_entry(eye, shown)}
-    sightings = sightings_of(job, eye)
-    if len(sightings) > 1:
-        entry["spread"] = _spread(sightings)
+    spread = spread_entry(job, eye)
+    if spread:
+        entry["spread"] = spread
     return entry
-
-
-def _spread(sightings: tuple[Prism, ...]) -> Entry:
-    """How far apart repeated readings of one lens lie, in prism dioptres."""
-    across = max(prism.x for prism in sightings) - min(prism.x for prism in sightings)
-    along = max(prism.y for prism in sightings) - min(prism.y for prism in sightings)
-    return {
-        "count": len(sightings),
-        "horizontal": number(across),
-        "vertical": number(along),
-        "shown": {"horizontal": fixed(across, 2), "vertical": fixed(along, 2)},
-    }
 
 
 def _compensator_entry(case: Case, due_: Due) -> Entry:
@@ -202,18 +194,20 @@ def _scenes(case: Case, eye: Eye) -> Entry:
         instrument=job.instrument,
         read=read_prism(job, eye),
         sightings=sightings_of(job, eye),
+        current=reading.prism.lens_prism(job.instrument) if reading.prism else None,
         compensator=taken_by_compensator(reading.compensator, job.instrument.compensator),
         region=region_of(case.matter, eye) if case.matter else None,
-        uncertainty=_uncertainty(case, eye),
+        uncertainty=reading_uncertainty(case, eye),
         axis_deg=float(axis),
     )
     return {"dial": dial_scene(view), "close": close_scene(view)}
 
 
-def _uncertainty(case: Case, eye: Eye) -> float:
+def reading_uncertainty(case: Case, eye: Eye) -> float:
+    """One standard uncertainty of a lens's reading, prism dioptres. Arguments: `case`; `eye`."""
     if case.matter:
         return lens_uncertainty(case.matter, eye)
-    return float(case.job.instrument.uncertainty.prism)
+    return repeated_of(case.job, eye).uncertainty
 
 
 def _notes(case: Case) -> list[Note]:
@@ -230,6 +224,12 @@ def _notes(case: Case) -> list[Note]:
         notes += notes_on_thinning_found(case.dues, found, thinning_text(found))
     for eye in case.dues:
         notes += _notes_on_instrument(case, eye)
+    if job.instrument.signs != (1, 1):
+        notes.append(
+            Note(
+                code="target-not-with-base", field="instrument.target_direction", about="instrument"
+            )
+        )
     return notes
 
 

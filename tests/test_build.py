@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import gzip
 import json
 import os
 import re
@@ -10,13 +9,13 @@ import shutil
 import subprocess
 import sys
 import zipfile
-from base64 import b64decode
 from io import BytesIO
 from pathlib import Path
 
 import pytest
 
 import build
+from tests.payloads import read_payload
 
 MEGABYTE = 1_000_000
 
@@ -26,10 +25,9 @@ def tree(folder: Path) -> dict[str, bytes]:
     return {path.relative_to(folder).as_posix(): path.read_bytes() for path in sorted(folder.rglob("*")) if path.is_file()}
 
 
-def python_payload(folder: Path) -> zipfile.ZipFile:
+def library(folder: Path) -> zipfile.ZipFile:
     """The zip of byte code inside a built folder."""
-    text = (folder / "engine" / "python.js").read_text("ascii")
-    return zipfile.ZipFile(BytesIO(gzip.decompress(b64decode(text.split('"')[1]))))
+    return zipfile.ZipFile(BytesIO(read_payload(folder / "engine" / "python.js")))
 
 
 def test_folder_holds_what_a_browser_reads_from_disk(dist: Path) -> None:
@@ -41,6 +39,7 @@ def test_folder_holds_what_a_browser_reads_from_disk(dist: Path) -> None:
         "print.css",
         "engine/worker.js",
         "engine/wasm.js",
+        "engine/snapshot.js",
         "engine/python.js",
         "LICENSE.txt",
         "NOTICES.txt",
@@ -49,42 +48,73 @@ def test_folder_holds_what_a_browser_reads_from_disk(dist: Path) -> None:
 
 
 def test_single_file_stands_alone(single_file: Path) -> None:
-    html = single_file.read_text("utf-8")
+    html = single_file.read_text("utf-16")
     head = html[: html.index("</head>")]
     assert re.search(r"<(?:link|script)[^>]*\b(?:href|src)=", head) is None
     assert "'self'" not in re.findall(r"script-src [^;]*|style-src [^;]*", head)[0]
-    assert single_file.stat().st_size <= 9.5 * MEGABYTE
+    assert single_file.stat().st_size <= 11 * MEGABYTE
 
 
-def test_bundle_is_pyodide_unaltered(dist: Path) -> None:
-    package = build.WEB / "node_modules" / "pyodide"
+def test_program_is_pyodides_with_fewer_exports(dist: Path) -> None:
+    """Before and after the list of exports (WebAssembly Core Specification 2.0, section 5.5.10) every byte is the same."""
+    stock = (build.WEB / "node_modules" / "pyodide" / "pyodide.asm.wasm").read_bytes()
+    ours = read_payload(dist / "engine" / "wasm.js")
+    before = len(os.path.commonprefix([stock, ours]))
+    after = len(os.path.commonprefix([stock[:before:-1], ours[:before:-1]]))
+    assert before + after > len(ours) - 0.02 * MEGABYTE
+    assert len(stock) - before - after < 0.6 * MEGABYTE
+
+
+def test_scripts_are_cut_and_changed_in_one_place(dist: Path) -> None:
     engine = (dist / "engine" / "worker.js").read_text("utf-8")
-    for name in ("pyodide.asm.js", "pyodide.js"):
-        assert (package / name).read_text("utf-8") in engine
-    wasm = (dist / "engine" / "wasm.js").read_text("ascii")
-    assert gzip.decompress(b64decode(wasm.split('"')[1])) == (package / "pyodide.asm.wasm").read_bytes()
+    assert len(engine) <= 0.55 * MEGABYTE
+    assert engine.count("Module.initTrampoline=_PyEM_InitTrampoline_js") == 1
 
 
 def test_nothing_of_this_machine_is_in_the_bundle(dist: Path, single_file: Path) -> None:
-    needles = [os.fsencode(build.ROOT), os.fsencode(Path.home())]
-    with python_payload(dist) as payload:
-        contents = {**tree(dist), "single": single_file.read_bytes()} | {name: payload.read(name) for name in payload.namelist()}
+    needles = [os.fsencode(build.ROOT), os.fsencode(Path.home()), b"wedgewright-"]  # the last: where the snapshot is made
+    with library(dist) as names:
+        contents = {**tree(dist), "single": single_file.read_bytes()} | {name: names.read(name) for name in names.namelist()}
+    contents["memory"] = read_payload(dist / "engine" / "snapshot.js")
     for name, content in contents.items():
-        assert not [needle for needle in needles if len(needle) > 4 and needle in content], name
+        assert not [needle for needle in needles[:2] if len(needle) > 4 and needle in content], name
+    assert needles[2] not in contents["memory"]
 
 
 def test_core_is_there_as_byte_code_only(dist: Path) -> None:
-    with python_payload(dist) as payload:
+    with library(dist) as payload:
         names = set(payload.namelist())
     sources = {path.relative_to(build.ROOT).as_posix() for path in (build.ROOT / "pycore").rglob("*.py")}
     assert {f"{name}c" for name in sources} <= names
     assert not [name for name in names if name.endswith(".py")]
 
 
+ANOTHER_YEAR = """
+const Real = Date;
+const now = () => Real.now() + 4e10;
+globalThis.Date = class extends Real { constructor(...given) { super(...(given.length ? given : [now()])); } static now = now; };
+"""
+
+
 @pytest.mark.slow
-def test_another_build_elsewhere_is_the_same(dist: Path, single_file: Path, tmp_path: Path) -> None:
+def test_another_build_elsewhere_is_the_same(
+    dist: Path, single_file: Path, tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """In another folder, year, time zone, language and home, byte for byte, the kept memory included."""
     core = tmp_path / "elsewhere" / "pycore"
     shutil.copytree(build.ROOT / "pycore", core, ignore=shutil.ignore_patterns("__pycache__"))
+    (tmp_path / "year.mjs").write_text(ANOTHER_YEAR)
+    (tmp_path / "scratch").mkdir()
+    for name, value in {
+        "NODE_OPTIONS": f"--import={(tmp_path / 'year.mjs').as_uri()}",
+        "TZ": "Pacific/Kiritimati",
+        "LANG": "tr_TR.UTF-8",
+        "LC_ALL": "tr_TR.UTF-8",
+        "HOME": str(tmp_path),
+        "USER": "somebody",
+        "TMPDIR": str(tmp_path / "scratch"),
+    }.items():
+        monkeypatch.setenv(name, value)
     out, single = tmp_path / "out", tmp_path / "single"
     build.run_node(build.WEB / "build" / "build.mjs", "--core", core, "--out", out, "--single", single)
     assert tree(out) == tree(dist)
@@ -101,10 +131,11 @@ def test_a_step_is_done_once(dist: Path) -> None:
 
 
 @pytest.mark.slow
-def test_bundle_computes_the_demonstration_as_the_core_does(dist: Path) -> None:
-    """The page's Python against this one: the same text, figure for figure."""
+@pytest.mark.parametrize("source", ["snapshot", "python"])
+def test_bundle_computes_the_demonstration_as_the_core_does(dist: Path, source: str) -> None:
+    """The page's Python, started either way, against this one: the same text, figure for figure."""
     shown = subprocess.run(
-        [build.node(), build.WEB / "build" / "report.mjs", dist], capture_output=True, text=True, encoding="utf-8", check=True
+        [build.node(), build.WEB / "build" / "report.mjs", dist, source], capture_output=True, text=True, encoding="utf-8", check=True
     ).stdout
     from pycore.api import handle
 

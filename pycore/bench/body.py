@@ -8,6 +8,7 @@ so that it is asked for where it is used and never taken silently.
 from collections.abc import Mapping
 from dataclasses import dataclass
 from decimal import ROUND_HALF_EVEN, Decimal
+from functools import lru_cache
 
 from pycore.job.body import Frame
 from pycore.job.order import EyeOrder
@@ -77,10 +78,12 @@ def usual_minimum_centre_mm(index: Decimal) -> Decimal:
     return Decimal("2.0") if index < LOW_INDEX else Decimal("1.5")
 
 
+@lru_cache(maxsize=8)
 def body_values(order: EyeOrder, frame: Frame) -> BodyValues | None:
     """One lens's body from the order, with usual values where it says nothing.
 
-    Arguments: `order` of the eye; `frame`. Returns the values, or None without a power.
+    Arguments: `order` of the eye; `frame`. Returns the values, or None without a power. (A pure
+    function, kept because most sections ask the same.)
     """
     power = order.verified.power
     if power is None:
@@ -101,7 +104,7 @@ def body_values(order: EyeOrder, frame: Frame) -> BodyValues | None:
     if material:
         density = taken("density_g_cm3", density, material.density_g_cm3)
         abbe = taken("abbe", abbe, material.abbe)
-    estimate = _estimated_thickness_mm(power, index, centre_mm, edge_mm, frame)
+    estimate = _estimated_thickness_mm(order, power, index, centre_mm, edge_mm, frame)
     return BodyValues(
         index=index,
         front_curve=taken("front_curve", lens.front_curve, usual_front_curve(power)),
@@ -118,11 +121,17 @@ def body_values(order: EyeOrder, frame: Frame) -> BodyValues | None:
 
 
 def _estimated_thickness_mm(
-    power: Power, index: Decimal, centre_mm: Decimal, edge_mm: Decimal, frame: Frame
+    order: EyeOrder,
+    power: Power,
+    index: Decimal,
+    centre_mm: Decimal,
+    edge_mm: Decimal,
+    frame: Frame,
 ) -> Decimal:
-    """Centre thickness of a lens that just keeps both minima, by the parabola: an estimate for
-    where the thickness hardly matters. The section `edge` works it out."""
+    """Centre thickness of a lens that just keeps both minima, by the parabola and the thin wedge:
+    an estimate for where the thickness hardly matters. The section `edge` works it out."""
     radius_mm = frame.ed_mm / 2 if frame.ed_mm else USUAL_RADIUS_MM
     strongest_plus = max(power.principal)
     rise_mm = strongest_plus * radius_mm * radius_mm / (2000 * (index - 1))
-    return max(centre_mm, edge_mm + rise_mm).quantize(Decimal("0.1"), ROUND_HALF_EVEN)
+    wedge_mm = order.verified.prism_total.amount * radius_mm / (100 * (index - 1))
+    return max(centre_mm, edge_mm + rise_mm + wedge_mm).quantize(Decimal("0.1"), ROUND_HALF_EVEN)

@@ -17,10 +17,9 @@ from pycore.bench.rim import MOST_RIM_POINTS, Placed, Rim, placed, rim_of
 from pycore.job.document import Job
 from pycore.job.order import EyeOrder
 from pycore.optics.material import usual_material
-from pycore.optics.power import point_with_prism
 from pycore.optics.prism import NO_PRISM, Prism
 from pycore.optics.surface import OutsideSurfaceError, true_front_d
-from pycore.optics.thickness import Solid, Spot, Spots, spots_of, thicknesses_at
+from pycore.optics.thickness import Solid, Spot, Spots, meridians, spots_of, thicknesses_at
 
 COARSE = 24  # points of the rim, where only comparisons are made
 THICKEST_MM = 60.0  # no blank is thicker
@@ -192,11 +191,15 @@ def _beside(indices: Sequence[int], found: Sequence[float], count: int) -> list[
 def _thinnest_inside(lens: FramedLens, prism: Prism) -> Spots:
     """Where a minus lens with prism is thinnest, if that lies inside its rim: at the optical
     centre. A plus lens is thickest there; between both the thinnest place is on the rim."""
-    power = lens.solid.power
-    if prism == NO_PRISM or max(power.principal) >= 0:
+    along_d, across_d, axis_x, axis_y = meridians(lens.solid.power)
+    if prism == NO_PRISM or max(along_d, across_d) >= 0.0:
         return ()
-    place = point_with_prism(prism, NO_PRISM, power)
-    return spots_of(lens.solid, [place]) if place and lens.rim.holds(place) else ()
+    x_mm, y_mm = 10.0 * float(prism.x), 10.0 * float(prism.y)
+    # F⁻¹ p, meridian by meridian.
+    along = (x_mm * axis_x + y_mm * axis_y) / along_d
+    across = (y_mm * axis_x - x_mm * axis_y) / across_d
+    place = along * axis_x - across * axis_y, along * axis_y + across * axis_x
+    return spots_of(lens.solid, [place]) if lens.rim.holds(place) else ()
 
 
 def _thickness(

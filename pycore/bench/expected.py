@@ -136,10 +136,9 @@ def read_prism(job: Job, eye: Eye) -> Prism | None:
 
 
 def sightings_of(job: Job, eye: Eye) -> tuple[Prism, ...]:
-    """Each reading of one lens's prism with the compensator taken out, in prism dioptres."""
+    """Each reading of one lens's prism, compensator and zero taken out, in prism dioptres."""
     reading: EyeReading = job.readings.of(eye)
-    sense = job.instrument.compensator
-    return tuple(sighting.lens_prism(sense) for sighting in reading.sightings)
+    return tuple(sighting.lens_prism(job.instrument) for sighting in reading.sightings)
 
 
 def thinning_found(dues: Mapping[Eye, Due], reads: Mapping[Eye, Prism | None]) -> Decimal | None:

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 from decimal import Decimal
 
 from pycore.bench.expected import Due, due, has_marked_height, read_prism, sightings_of
+from pycore.bench.repeats import Repeated, repeated
 from pycore.editions.edition import Edition, Row
 from pycore.job.bench import Uncertainty
 from pycore.job.body import SEGMENTED
@@ -69,7 +70,7 @@ class Matter:
     designs: Mapping[Eye, str]
     dues: Mapping[Eye, Due]
     reads: Mapping[Eye, Prism]
-    counts: Mapping[Eye, int]
+    repeats: Mapping[Eye, Repeated]
 
     @property
     def uncertainty(self) -> Uncertainty:
@@ -151,6 +152,12 @@ class Matter:
         return (marked or self.place == "first-lens-set") and len(known) == 1
 
 
+def repeated_of(job: Job, eye: Eye) -> Repeated:
+    """What the readings of one lens say of their mean. Arguments: `job`; `eye`."""
+    instrument = job.instrument
+    return repeated(sightings_of(job, eye), instrument.uncertainty.prism, instrument.prism_step)
+
+
 def design_group(design: str | None) -> str:
     """The edition's group of a design; single vision where nothing is said.
 
@@ -176,5 +183,5 @@ def matter_of(job: Job, edition: Edition) -> Matter:
         },
         dues=dues,
         reads={eye: read for eye in dues if (read := read_prism(job, eye)) is not None},
-        counts={eye: len(sightings_of(job, eye)) for eye in dues},
+        repeats={eye: repeated_of(job, eye) for eye in dues},
     )

@@ -46,11 +46,8 @@ def judge(matter: Matter) -> Verdict:
     Source: the edition's rows; decision rules by JCGM 106:2012.
     """
     checks = (*prism_checks(matter), *power_checks(matter))
-    by_group: dict[str, list[Check]] = {}
-    for check in checks:
-        if check.counts:
-            by_group.setdefault(check.group, []).append(check)
-    groups = {name: _group(matter, members) for name, members in by_group.items()}
+    by_group = _by_group(checks)
+    groups = groups_of(matter, checks)
     missing = missing_of(matter, checks)
     outcomes = [outcome for outcome, _ in groups.values()]
     if any(item.code == "to-be-read" for item in missing):
@@ -64,6 +61,19 @@ def judge(matter: Matter) -> Verdict:
         missing=missing,
         notes=tuple(verdict_notes(matter, checks, groups)),
     )
+
+
+def groups_of(matter: Matter, checks: Sequence[Check]) -> dict[str, tuple[str, float]]:
+    """Each group's outcome and doubt. Arguments: `matter`; `checks` that were made."""
+    return {name: _group(matter, members) for name, members in _by_group(checks).items()}
+
+
+def _by_group(checks: Sequence[Check]) -> dict[str, list[Check]]:
+    by_group: dict[str, list[Check]] = {}
+    for check in checks:
+        if check.counts:
+            by_group.setdefault(check.group, []).append(check)
+    return by_group
 
 
 def _group(matter: Matter, members: Sequence[Check]) -> tuple[str, float]:

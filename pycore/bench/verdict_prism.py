@@ -7,6 +7,7 @@ from decimal import Decimal
 
 from pycore.bench.doubt import chance_within, chance_within_circle
 from pycore.bench.matter import MERIDIAN, PAIR, Check, Matter, component_of
+from pycore.bench.repeats import uncertainty_of_mean
 from pycore.bench.verdict_position import (
     distance_check,
     height_check,
@@ -56,19 +57,27 @@ def pair_row(matter: Matter, component: str) -> tuple[Row, Decimal] | None:
 def pair_uncertainty(matter: Matter, repeats: int = 0) -> float:
     """Standard uncertainty of the pair's difference, in prism dioptres; the zero cancels.
 
-    Arguments: `matter`; `repeats` readings of each lens, or 0 for as many as were taken.
+    Arguments: `matter`; `repeats` readings of each lens, or 0 for those that were taken.
     """
-    one = float(matter.uncertainty.prism)
-    counts = [repeats or matter.counts.get(eye) or 1 for eye in EYES]
-    return one * math.sqrt(sum(1.0 / count for count in counts))
+    right, left = (_of_mean(matter, eye, repeats) for eye in EYES)
+    return math.hypot(right, left)
 
 
 def lens_uncertainty(matter: Matter, eye: Eye, repeats: int = 0) -> float:
-    """Standard uncertainty of one lens's prism component, with the zero, in prism dioptres."""
-    count = repeats or matter.counts.get(eye) or 1
-    return math.hypot(
-        float(matter.uncertainty.prism) / math.sqrt(count), float(matter.uncertainty.zero)
-    )
+    """Standard uncertainty of one lens's prism component, with the zero, in prism dioptres.
+
+    Arguments: as `pair_uncertainty`; `eye` the lens's.
+    """
+    return math.hypot(_of_mean(matter, eye, repeats), float(matter.uncertainty.zero))
+
+
+def _of_mean(matter: Matter, eye: Eye, repeats: int) -> float:
+    """Without the zero: of the mean of as many readings, by the bench's figure for one, or of
+    those that were taken, by their own scatter where there are enough."""
+    if not repeats and eye in matter.repeats:
+        return matter.repeats[eye].uncertainty
+    step = matter.job.instrument.prism_step
+    return uncertainty_of_mean(repeats or 1, matter.uncertainty.prism, step)
 
 
 def _powers(matter: Matter) -> list[Power]:

@@ -9,7 +9,10 @@ from pycore.job.order import Component, read_component, read_components
 from pycore.optics.prism import NO_PRISM, Eye, Prism, from_base, total
 
 MAXIMUM_REPEATS = 20
+MOST_ON_RINGS = "60"  # prism dioptres; no lens meter's rings reach so far
 SENSES = ("lens-prism", "own-base", "none")
+TENTH = Decimal("0.1")  # prism dioptres: a nudge of the target, whatever the step
+TOWARDS, AWAY = "towards-base", "away-from-base"
 PLACES = ("marked-point", "first-lens-set")
 
 
@@ -35,7 +38,9 @@ class Instrument:
 
     `rings` a count, `ring_step` prism dioptres between rings, `compensator` the sense of its
     scale (None while not yet known), `compensator_maximum` and `prism_step` prism dioptres.
-    The defaults (5 rings, 1 apart, quarter steps) are common practice.
+    `target_direction` and `mirrored` say how the target moves, `zero` where it stands with
+    nothing in (prism dioptres on the rings), `checked_on` when that was found out.
+    The defaults (5 rings, 1 apart, quarter steps, towards the base) are common practice.
     """
 
     kind: str = "manual"
@@ -45,6 +50,10 @@ class Instrument:
     compensator_maximum: Decimal | None = None
     prism_step: Decimal = Decimal("0.25")
     target: str = "cross"
+    target_direction: str = TOWARDS
+    mirrored: bool = False
+    zero: Prism = NO_PRISM
+    checked_on: str | None = None
     uncertainty: Uncertainty = Uncertainty()
 
     @property
@@ -57,10 +66,45 @@ class Instrument:
         """The small step of a nudge, in prism dioptres."""
         return min(self.prism_step, Decimal("0.05"))
 
+    @property
+    def signs(self) -> tuple[int, int]:
+        """Whether the target goes with (1) or against (-1) the base, across and upwards.
+
+        An automatic lens meter has no target: its numbers name the base.
+        """
+        if self.kind == "automatic":
+            return (1, 1)
+        sign = -1 if self.target_direction == AWAY else 1
+        return (-sign if self.mirrored else sign, sign)
+
+    def turned(self, prism: Prism) -> Prism:
+        """A prism as a shift of the target, or a shift as the prism it means: its own inverse.
+
+        Arguments and return in prism dioptres.
+
+        >>> Instrument(mirrored=True).turned(Prism(Decimal(3), Decimal(1)))
+        Prism(x=Decimal('-3'), y=Decimal('1'))
+        """
+        across, along = self.signs
+        return Prism(prism.x * across + 0, prism.y * along + 0)
+
+    def place_of(self, prism: Prism) -> Prism:
+        """Where on the rings the target stands for a prism, in prism dioptres.
+
+        >>> meter = Instrument(target_direction="away-from-base",
+        ...                    zero=Prism(Decimal("0.1"), Decimal(0)))
+        >>> meter.place_of(Prism(Decimal(3), Decimal(-1)))
+        Prism(x=Decimal('-2.9'), y=Decimal('1'))
+        """
+        return self.turned(prism) + self.zero
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Sighting:
-    """One look at one lens: the prism seen on the rings and what the compensator stood at."""
+    """One look at one lens: the prism seen on the rings and what the compensator stood at.
+
+    The prism is named by its base, whichever way the target moves on this instrument.
+    """
 
     prism: tuple[Component, ...]
     compensator: Component | None = None
@@ -75,12 +119,13 @@ class Sighting:
         """What is seen on the rings, in prism dioptres, the compensator not taken out."""
         return total(from_base(part.amount, part.base_deg) for part in self.prism)
 
-    def lens_prism(self, sense: str | None) -> Prism:
-        """The lens's prism in prism dioptres: what is seen, with the compensator taken out.
+    def lens_prism(self, instrument: Instrument) -> Prism:
+        """The lens's prism in prism dioptres: what is seen, compensator and zero taken out.
 
-        Arguments: `sense` of the compensator's scale. Source: facts section 5 (from memory).
+        Arguments: `instrument` it was seen on. Source: facts section 5 (from memory).
         """
-        return self.seen + taken_by_compensator(self.compensator, sense)
+        taken = taken_by_compensator(self.compensator, instrument.compensator)
+        return self.seen + taken - instrument.turned(instrument.zero)
 
 
 def taken_by_compensator(compensator: Component | None, sense: str | None) -> Prism:
@@ -142,6 +187,7 @@ def read_instrument(fields: Fields) -> Instrument:
     """Read an instrument object. Arguments: `fields`. Returns the instrument."""
     kind = fields.word("kind", ("manual", "automatic")) or "manual"
     step = Decimal("0.25") if kind == "manual" else Decimal("0.01")
+    zero = fields.child("zero")
     instrument = Instrument(
         kind=kind,
         rings=fields.count("rings", "1", "20") or Decimal(5),
@@ -150,10 +196,31 @@ def read_instrument(fields: Fields) -> Instrument:
         compensator_maximum=fields.number("compensator_maximum", "0", "40"),
         prism_step=fields.number("prism_step", "0.01", "1") or step,
         target=fields.word("target", ("cross", "dots")) or "cross",
+        target_direction=fields.word("target_direction", (TOWARDS, AWAY)) or TOWARDS,
+        mirrored=fields.flag("mirrored"),
+        zero=read_place_object(zero) if zero else NO_PRISM,
+        checked_on=fields.text("checked_on"),
         uncertainty=_read_uncertainty(fields),
     )
     fields.finish()
     return instrument
+
+
+def read_place(fields: Fields) -> Prism:
+    """A place on the rings: `x` to the right and `y` up of their middle, where nothing is said 0.
+
+    Arguments: `fields` that hold it. Returns prism dioptres.
+    """
+    low, high = "-" + MOST_ON_RINGS, MOST_ON_RINGS
+    x, y = fields.number("x", low, high), fields.number("y", low, high)
+    return Prism(x or Decimal(0), y or Decimal(0))
+
+
+def read_place_object(fields: Fields) -> Prism:
+    """A place on the rings that is an object of its own. Arguments and return: `read_place`."""
+    place = read_place(fields)
+    fields.finish()
+    return place
 
 
 def _read_uncertainty(fields: Fields) -> Uncertainty:

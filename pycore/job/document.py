@@ -18,6 +18,7 @@ from pycore.job.body import (
     read_wear,
 )
 from pycore.job.fields import Fields
+from pycore.job.looks import Look, read_looks
 from pycore.job.order import EyeOrder, read_eye
 from pycore.optics.prism import EYES, Eye
 
@@ -64,6 +65,7 @@ class Job:
     field_limit: Decimal | None
     instrument: Instrument
     readings: Readings
+    looks: tuple[Look, ...]
     demonstration: bool
     notes: tuple[Note, ...]
 
@@ -132,6 +134,7 @@ def read_fields(fields: Fields) -> Job:
         field_limit=fields.number("field_limit", "0.1", "10"),
         instrument=instrument,
         readings=read_readings(readings, instrument, notes) if readings else Readings(),
+        looks=read_looks(fields),
         demonstration=fields.flag("demonstration"),
         notes=tuple(notes),
     )

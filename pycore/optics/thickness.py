@@ -123,7 +123,7 @@ def _thicknesses(solid: Solid, centre_mm: float, spots: Spots) -> list[float]:
     # As `optics.surface.back_surface`, with the axis looked up.
     to_curvature = 1.0 / (1000.0 * (solid.index - 1.0))
     at_back_d = through_front_d(solid.front_d, centre_mm, solid.index)
-    along_d, across_d, axis_x, axis_y = _meridians(solid.power)
+    along_d, across_d, axis_x, axis_y = meridians(solid.power)
     steep, along_x, along_y = (at_back_d - across_d) * to_curvature, -axis_y, axis_x
     flat = (at_back_d - along_d) * to_curvature
     if abs(flat) > abs(steep):
@@ -166,8 +166,12 @@ def _thicknesses(solid: Solid, centre_mm: float, spots: Spots) -> list[float]:
 
 
 @lru_cache(maxsize=16)
-def _meridians(power: Power) -> tuple[float, float, float, float]:
-    """Both principal powers (along the axis, across it) and the axis as cosine and sine."""
+def meridians(power: Power) -> tuple[float, float, float, float]:
+    """Both principal powers (along the axis, across it), dioptres, and the axis as cosine and sine.
+
+    >>> meridians(Power(sphere=-2, cylinder=1, axis=90))
+    (-2.0, -1.0, 0.0, 1.0)
+    """
     along, across = power.principal
     axis_deg = float(power.axis)
     return float(along), float(across), cosine(axis_deg), sine(axis_deg)

@@ -95,6 +95,12 @@ def crossed(back: Surface, prism: Vector, glass: Glass, tilt: Tilt) -> Crossing:
 
     Arguments: as `prism_as_worn`. Returns the Crossing. Raises OutsideSurfaceError and
     TotalReflectionError. Source: law of refraction.
+
+    >>> from pycore.optics.tilt import tilt_of
+    >>> glass = Glass(index=1.5, front_d=5.0, thickness_mm=2.0)
+    >>> straight = tilt_of("right", 0, 0)
+    >>> crossed(glass.back(Power(sphere=0)), (0.0, 0.0), glass, straight).along_mm
+    2.0
     """
     inside = refract(tilt.light(), (0.0, 0.0, -1.0), 1.0 / glass.index)
     axes = right, up, out = _turned_to(prism, glass.index)

@@ -1,7 +1,9 @@
 """The dial of one lens: the instrument's rings with what is due, what passes and what is read.
 
 Coordinates are the instrument's view in prism dioptres, x to the observer's right, y up: a
-compensator that is set shifts everything seen.
+compensator that is set shifts everything seen, and so does a zero that is off. Where the target
+moves away from the base, or left and right are changed over, the picture does too; the base
+scale then names the base, not the side.
 """
 
 import math
@@ -20,13 +22,18 @@ from pycore.optics.prism import NO_PRISM, Eye, Prism, horizontal_word
 
 Shape = dict[str, Any]
 Scene = dict[str, Any]
+Ends = tuple[Decimal | None, Decimal | None]
 TICKS_EVERY_DEG = 15
 LABEL_ROOM = 1.22  # of the outermost ring: room for the base scale and its words
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class DialView:
-    """What a dial shows; prisms in prism dioptres, `compensator` what it takes away."""
+    """What a dial shows; prisms in prism dioptres, `compensator` what it takes away.
+
+    `read` is the mean of all `sightings`, `current` the one being taken now (None where it has
+    been put aside, or where there is but one).
+    """
 
     due: Due
     instrument: Instrument
@@ -36,6 +43,7 @@ class DialView:
     region: Region | None
     uncertainty: float
     axis_deg: float
+    current: Prism | None = None
 
     @property
     def eye(self) -> Eye:
@@ -44,7 +52,27 @@ class DialView:
 
     def seen(self, prism: Prism) -> Prism:
         """Where a prism of the lens stands in the instrument's view."""
-        return prism - self.compensator
+        return self.instrument.place_of(prism - self.compensator)
+
+    @property
+    def target_deg(self) -> float:
+        """The axis as the target shows it: changed over with left and right, else as it is."""
+        across, along = self.instrument.signs
+        return self.axis_deg if across == along else 180.0 - self.axis_deg
+
+    @property
+    def edges(self) -> tuple[Ends, Ends]:
+        """The region's ends in the instrument's view: left and down, then right and up."""
+        region = self.region or Region(centre=NO_PRISM)
+        offset, signs = self.seen(NO_PRISM), self.instrument.signs
+        spans = []
+        for low, high, shift, sign in zip(
+            region.low, region.high, (offset.x, offset.y), signs, strict=True
+        ):
+            ends = [None if end is None else end * sign + shift for end in (low, high)]
+            spans.append(ends if sign > 0 else ends[::-1])
+        (left, right), (down, up) = spans
+        return (left, down), (right, up)
 
 
 def dial_scene(view: DialView) -> Scene:
@@ -52,7 +80,11 @@ def dial_scene(view: DialView) -> Scene:
     points = [view.seen(view.due.expected), *map(view.seen, view.sightings)]
     outermost = float(view.instrument.outermost_ring)
     reach = max([outermost, *(float(point.amount) for point in points)]) * LABEL_ROOM
-    shapes = [*_rings(view), *_scale(view.eye, outermost), *_content(view)]
+    shapes = [
+        *rings(view.instrument),
+        *scale(view.eye, outermost, view.instrument.signs),
+        *_content(view),
+    ]
     return {"unit": "\u0394", "extent": [-reach, -reach, reach, reach], "shapes": shapes}
 
 
@@ -80,11 +112,10 @@ def _reach_of_region(view: DialView, centre: Prism) -> float:
         return 0.0
     if region.radius is not None:
         return float(region.radius)
-    offset = view.seen(NO_PRISM)
     ends = [
-        abs(end + shift - middle)
-        for pair in (region.low, region.high)
-        for end, shift, middle in zip(pair, (offset.x, offset.y), (centre.x, centre.y), strict=True)
+        abs(end - middle)
+        for pair in view.edges
+        for end, middle in zip(pair, (centre.x, centre.y), strict=True)
         if end is not None
     ]
     return float(max(ends, default=Decimal(0)))
@@ -94,9 +125,10 @@ def _xy(prism: Prism) -> tuple[float, float]:
     return float(snap(prism.x)), float(snap(prism.y))
 
 
-def _rings(view: DialView) -> Iterator[Shape]:
-    step = view.instrument.ring_step
-    for number in range(1, int(view.instrument.rings) + 1):
+def rings(instrument: Instrument) -> Iterator[Shape]:
+    """The rings of an instrument with their amounts. Arguments: `instrument`."""
+    step = instrument.ring_step
+    for number in range(1, int(instrument.rings) + 1):
         radius = float(step * number)
         yield {"role": "ring", "kind": "circle", "x": 0.0, "y": 0.0, "radius": radius}
         text = format((step * number).normalize(), "f")
@@ -104,11 +136,16 @@ def _rings(view: DialView) -> Iterator[Shape]:
 
 
 @cache  # the same at every keystroke
-def _scale(eye: Eye, outermost: float) -> tuple[Shape, ...]:
-    return tuple(_scale_shapes(eye, outermost))
+def scale(eye: Eye | None, outermost: float, signs: tuple[int, int]) -> tuple[Shape, ...]:
+    """The base scale around the rings.
+
+    Arguments: `eye` whose in and out it names, or None; `outermost` ring in prism dioptres;
+    `signs` whether the target goes with the base, across and upwards.
+    """
+    return tuple(_scale_shapes(eye, outermost, signs))
 
 
-def _scale_shapes(eye: Eye, outermost: float) -> Iterator[Shape]:
+def _scale_shapes(eye: Eye | None, outermost: float, signs: tuple[int, int]) -> Iterator[Shape]:
     for degrees in range(0, 360, TICKS_EVERY_DEG):
         x, y = cosine(degrees), sine(degrees)
         length = 1.08 if degrees % 45 == 0 else 1.04
@@ -121,8 +158,9 @@ def _scale_shapes(eye: Eye, outermost: float) -> Iterator[Shape]:
             "y2": y * outermost * length,
         }
     for degrees in (0, 90, 180, 270):
-        x, y = cosine(degrees) * outermost, sine(degrees) * outermost
-        word = horizontal_word(eye, Decimal(int(cosine(degrees))))
+        across, along = cosine(degrees) * signs[0] + 0.0, sine(degrees) * signs[1] + 0.0
+        x, y = across * outermost, along * outermost
+        word = horizontal_word(eye, Decimal(int(cosine(degrees)))) if eye else None
         label = {"role": "base-label", "kind": "label", "x": x, "y": y, "text": str(degrees)}
         yield label | {"word": f"directions.{word}"} if word else label
 
@@ -144,24 +182,36 @@ def _content(view: DialView) -> Iterator[Shape]:
     origin, ordered = view.seen(NO_PRISM), view.seen(view.due.prescribed)
     expected = view.seen(view.due.expected)
     if view.compensator != NO_PRISM:
-        yield _line("compensator", NO_PRISM, origin)
+        yield _line("compensator", view.instrument.place_of(NO_PRISM), origin)
     if ordered != origin:
         yield _line("ordered", origin, ordered)
-        yield _point("ordered", ordered)
+        yield shape_at("ordered", ordered)
     if expected != ordered:
         yield _line("thinning", ordered, expected) | {"dashed": True}
-    yield _point("expected", expected) | {"dashed": not view.due.vertical_known}
-    for sighting in view.sightings[1:]:
-        yield _point("repeat", view.seen(sighting))
-    if view.read is not None:
-        seen = view.seen(view.read)
-        radius = 2.0 * view.uncertainty
-        yield _point("uncertainty", seen) | {"kind": "circle", "radius": radius, "dashed": True}
-        target = {"kind": "crosses", "angle_deg": view.axis_deg, "style": view.instrument.target}
-        yield _point("target", seen) | target
+    yield shape_at("expected", expected) | {"dashed": not view.due.vertical_known}
+    yield from _readings(view)
 
 
-def _point(role: str, at: Prism) -> Shape:
+def _readings(view: DialView) -> Iterator[Shape]:
+    """The target where it is seen now; of several readings also each one and their mean."""
+    if view.read is None:
+        return
+    several = len(view.sightings) > 1
+    mean = view.seen(view.read)
+    radius = 2.0 * view.uncertainty
+    yield shape_at("uncertainty", mean) | {"kind": "circle", "radius": radius, "dashed": True}
+    if several:
+        for sighting in view.sightings[view.current is not None :]:
+            yield shape_at("repeat", view.seen(sighting))
+        yield shape_at("mean", mean)
+    now = view.current if several else view.read
+    if now is not None:
+        target = {"kind": "crosses", "angle_deg": view.target_deg, "style": view.instrument.target}
+        yield shape_at("target", view.seen(now)) | target
+
+
+def shape_at(role: str, at: Prism) -> Shape:
+    """A point of a role. Arguments: `role`; `at` in prism dioptres."""
     x, y = _xy(at)
     return {"role": role, "kind": "point", "x": x, "y": y}
 
@@ -177,19 +227,13 @@ def _region(view: DialView, region: Region) -> Shape:
     if region.radius is not None:
         return look | {"kind": "circle", "x": x, "y": y, "radius": float(region.radius)}
     far = float(view.instrument.outermost_ring) * 3
-    ends = [
-        view.seen(Prism(end_x or Decimal(0), end_y or Decimal(0)))
-        for end_x, end_y in (region.low, region.high)
-    ]
     names = (("left", "down"), ("right", "up"))
     edges: list[float] = []
     free: list[str] = []
-    for pair, end, names_of_end, sign in zip(
-        (region.low, region.high), ends, names, (-1, 1), strict=True
-    ):
-        for value, seen, name, middle in zip(pair, _xy(end), names_of_end, (x, y), strict=True):
-            edges.append(middle + sign * far if value is None else seen)
-            free += [name] * (value is None)
+    for ends, sides, sign in zip(view.edges, names, (-1, 1), strict=True):
+        for end, side, middle in zip(ends, sides, (x, y), strict=True):
+            edges.append(middle + sign * far if end is None else float(snap(end)))
+            free += [side] * (end is None)
     return look | {
         "kind": "rect",
         "x": edges[0],

@@ -66,6 +66,24 @@ def _colour(case: Case) -> SectionAnswer:
     return colour_section(case)
 
 
+def _causes(case: Case) -> SectionAnswer:
+    from pycore.sections.causes import causes_section
+
+    return causes_section(case)
+
+
+def _look(case: Case) -> SectionAnswer:
+    from pycore.sections.look import look_section
+
+    return look_section(case)
+
+
+def _remedy(case: Case) -> SectionAnswer:
+    from pycore.sections.remedy import remedy_section
+
+    return remedy_section(case)
+
+
 SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "layout": _layout,
     "field": _field,
@@ -76,6 +94,9 @@ SECTIONS: Mapping[str, Callable[[Case], SectionAnswer]] = {
     "wear": _wear,
     "surfacing": _surfacing,
     "colour": _colour,
+    "causes": _causes,
+    "look": _look,
+    "remedy": _remedy,
 }
 
 
@@ -88,6 +109,7 @@ def add_sections(report: Entry, case: Case, wanted: Sequence[str], *, scenes: bo
         answer = SECTIONS[name](case)
         if answer.own is not None:
             report[name] = answer.own
+        report.update(answer.more)
         for eye, entry in answer.eyes.items():
             report[eye][name] = entry
         report.setdefault("sections", {})[name] = {

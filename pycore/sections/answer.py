@@ -47,7 +47,8 @@ class Ask:
 class SectionAnswer:
     """A section's answer.
 
-    `own` goes under the section's key of the report, `eyes` under the eyes' key of that name;
+    `own` goes under the section's key of the report, `more` beside it under keys of its own,
+    `eyes` under the eyes' key of that name;
     `title` is a code of words `section_titles` and says the answer in one line; `notes` are
     codes of words `section_notes` with their texts; `draw` makes the pictures.
     """
@@ -55,6 +56,7 @@ class SectionAnswer:
     title: str
     title_params: Mapping[str, str] = field(default_factory=dict)
     own: Entry | list[Entry] | None = None
+    more: Entry = field(default_factory=dict)
     eyes: Mapping[Eye, Entry] = field(default_factory=dict)
     rows: tuple[Row, ...] = ()
     asks: tuple[Ask, ...] = ()

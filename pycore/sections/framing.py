@@ -2,22 +2,26 @@
 
 import math
 from collections.abc import Iterable, Mapping
+from dataclasses import replace
 from decimal import Decimal
 from functools import lru_cache
 
-from pycore.bench.edge import Edge, Framing, framing_of
+from pycore.bench.body import BodyValues
+from pycore.bench.edge import Edge, Framing, edge_of, framing_of
 from pycore.bench.outline import outline_of
 from pycore.case import Case
 from pycore.decimals import fixed, from_float
 from pycore.job.document import Job
 from pycore.names import Entry, plain
 from pycore.optics.prism import EYES, Eye
+from pycore.optics.surface import OutsideSurfaceError
 from pycore.sections.answer import Ask, Row
 from pycore.sections.body_asks import body_asks
 from pycore.words import say
 
 PLACES = ("nasal", "top-nasal", "top", "top-temporal", "temporal", "bottom-temporal", "bottom")
 MATERIAL = ("index", "front_curve", "minimum_centre_mm", "minimum_edge_mm", "density_g_cm3")
+TENTH = Decimal("0.1")
 BOX = ("frame.a_mm", "frame.b_mm")
 
 
@@ -34,6 +38,24 @@ def framings_of(case: Case) -> Mapping[Eye, Framing]:
         if framing:
             found[eye] = framing
     return found
+
+
+def body_in_rim(case: Case, eye: Eye, body: BodyValues) -> BodyValues:
+    """A lens's body with the thickness that its rim wants, where a rim is known and no thickness.
+
+    Arguments: `case`; `eye`; `body` of the lens. Returns the body, its thickness to 0.1 mm in
+    place of the estimate. Source: the section `edge`.
+    """
+    framing = framings_of(case).get(eye)
+    if framing is None or body.thickness_given:
+        return body
+    try:
+        edge = edge_of(framing.lens, case.dues[eye].expected)
+    except OutsideSurfaceError:
+        return body
+    thickness_mm = from_float(edge.centre_mm).quantize(TENTH)
+    usual = {**body.usual, "lens.centre_thickness_mm": format(thickness_mm, "f")}
+    return replace(body, thickness_mm=thickness_mm, usual=usual)
 
 
 def asks_for(framings: Iterable[Framing], job: Job) -> tuple[Ask, ...]:

@@ -13,6 +13,7 @@ from pycore.bench.decentring import LARGEST_BLANK_MM
 from pycore.bench.layout import Box, Spot, box_of, inwards
 from pycore.bench.lens_layout import LensLayout, lens_layout
 from pycore.bench.outline import Outline, outline_of
+from pycore.bench.segment import segment_of
 from pycore.case import Case
 from pycore.names import Entry, number
 from pycore.scenes.dial import Scene
@@ -117,6 +118,9 @@ def _asks(rim: Outline | None, lenses: list[LensLayout]) -> Iterator[Ask]:
     asked: dict[str, Ask] = {}
     for lens in lenses:
         asked |= {field: Ask(field=field) for field in lens.place.missing}
+        if lens.place.segment_top and _lacks_width(lens):
+            field = f"{lens.eye}.segment.width_mm"
+            asked[field] = Ask(field=field)
         asked |= {
             field: Ask(field=field, usual=usual, used=True) for field, usual in lens.place.assumed
         }
@@ -126,3 +130,9 @@ def _asks(rim: Outline | None, lenses: list[LensLayout]) -> Iterator[Ask]:
     for field, usual in rim.assumed if rim else ():
         asked[field] = Ask(field=field, usual=usual, used=True)
     yield from asked.values()
+
+
+def _lacks_width(lens: LensLayout) -> bool:
+    """Tell whether a segment cannot be drawn because nobody said how wide it is."""
+    place = segment_of(lens.order)
+    return place is not None and place.width_mm is None and bool(place.centre_below_top_mm)

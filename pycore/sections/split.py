@@ -15,6 +15,7 @@ from pycore.decimals import snap
 from pycore.names import Entry, prism_entry
 from pycore.optics.prism import EYES, Eye, Prism
 from pycore.optics.surface import OutsideSurfaceError
+from pycore.scenes.split import split_scene
 from pycore.sections.answer import Row, SectionAnswer
 from pycore.sections.framing import (
     asks_for,
@@ -59,6 +60,7 @@ def split_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(found, entries)),
         asks=asks_for(framings.values(), case.job),
         notes=(*_notes(case, found, ordered), *extra),
+        draw=lambda: {"pair": split_scene(lenses, found)} if found[0].edges else {},
     )
 
 

@@ -20,6 +20,7 @@ from pycore.job.document import Job
 from pycore.names import Entry, thinning_text
 from pycore.optics.prism import EYES, Eye, Prism
 from pycore.optics.surface import OutsideSurfaceError
+from pycore.scenes.thinning import thinning_scene
 from pycore.sections.answer import Row, SectionAnswer
 from pycore.sections.framing import (
     asks_for,
@@ -56,6 +57,7 @@ def thinning_section(case: Case) -> SectionAnswer:
     except OutsideSurfaceError:
         return SectionAnswer(title="beyond-surface", asks=asks)
     title, params = _title(found)
+    bare, drawn = found.choices[0], _to_be_drawn(case, found)
     return SectionAnswer(
         title=title,
         title_params=params,
@@ -63,6 +65,9 @@ def thinning_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(found, framings)),
         asks=asks,
         notes=tuple(_notes(case, found, framings)),
+        draw=lambda: {
+            "pair": thinning_scene(lenses, prescribed, bare, drawn, thinning_text(drawn.up))
+        },
     )
 
 
@@ -91,7 +96,16 @@ def _title(found: Thinnings) -> tuple[str, Mapping[str, str]]:
     if max(thinner_mm, weight or 0.0) < WORTH:
         return "saves-little", amount
     texts = {"number": tenths(thinner_mm), "weight": grams(weight) or say("text.not-known")}
-    return "fits", amount | texts
+    return ("fits" if len(found.each) == len(EYES) else "fits-one"), amount | texts
+
+
+def _to_be_drawn(case: Case, found: Thinnings) -> Choice:
+    """What fits; where nothing does, what the order says, or else the first rule of thumb."""
+    choices = {choice.rule: choice for choice in found.choices}
+    if found.fits:
+        return choices["fits"]
+    rule = case.job.thinning.rule if case.job.thinning else ""
+    return choices.get("ordered") or choices.get(rule) or choices["two-thirds"]
 
 
 def _less(before: float | None, after: float | None) -> float | None:

@@ -21,6 +21,8 @@ from pycore.optics.prism import NO_PRISM, Eye, Prism
 from pycore.optics.tilt import BeyondError
 from pycore.sections.answer import Ask, Row, SectionAnswer
 from pycore.sections.body_asks import body_asks
+from pycore.sections.framing import body_in_rim
+from pycore.sections.wear_picture import wear_pictures
 from pycore.words import say
 
 # The usual figures to offer where nobody measured (facts section 6, from memory).
@@ -89,7 +91,7 @@ def wear_section(case: Case) -> SectionAnswer:
         if order is None or body is None or due_.power is None:
             continue
         try:
-            lenses[eye] = _lens(case.job, order, due_, body, fit)
+            lenses[eye] = _lens(case.job, order, due_, body_in_rim(case, eye, body), fit)
         except BeyondError:
             beyond.append(eye)
     worst = max(lenses.values(), key=lambda lens: lens.off_power + lens.off_prism, default=None)
@@ -101,6 +103,9 @@ def wear_section(case: Case) -> SectionAnswer:
         rows=tuple(_rows(lenses, fit, own)),
         asks=tuple(_asks(lenses, fit)),
         notes=(*_notes(lenses, fit), *(("beyond", {"eye": eye}) for eye in beyond)),
+        draw=lambda: wear_pictures(
+            case, fit, [(lens.worn, lens.made, lens.effective) for lens in lenses.values()]
+        ),
     )
 
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import shutil
 import socketserver
 import threading
@@ -11,6 +12,8 @@ from typing import Any
 
 import pytest
 from playwright.sync_api import Browser, BrowserType, Page, expect
+
+from tests.payloads import read_payload, write_payload
 
 # W3C Content Security Policy Level 3 and Trusted Types name these directives; what they must hold back is tried below.
 POLICY = (
@@ -67,13 +70,78 @@ def test_a_dead_worker_is_replaced_once(dist: Path, page: Page, engine_ready: Re
     expect(page.locator("html")).to_have_attribute("data-engine", "failed")
 
 
-@pytest.mark.parametrize("missing", ["worker", "wasm", "python"])
+# --- the two ways to start --------------------------------------------------------------------------------------------
+
+
+def copy_of(dist: Path, tmp_path: Path) -> Path:
+    """A copy of the folder to be damaged."""
+    return Path(shutil.copytree(dist, tmp_path / "copy"))
+
+
+def how_it_started(page: Page) -> str:
+    """What the bench's page says of the start."""
+    page.locator("#move-bench").click()
+    return page.locator("#started").inner_text()
+
+
+def demonstration_drawn(page: Page) -> None:
+    """The demonstration is answered and drawn."""
+    page.locator("#demonstration").click()
+    expect(page.locator("html")).to_have_attribute("data-drawn", re.compile("[0-9]+"), timeout=30_000)
+
+
+@pytest.mark.parametrize("missing", ["worker", "wasm"])
 def test_a_missing_part_is_said(dist: Path, tmp_path: Path, page: Page, missing: str) -> None:
-    copy = tmp_path / "copy"
-    shutil.copytree(dist, copy)
+    copy = copy_of(dist, tmp_path)
     (copy / "engine" / f"{missing}.js").unlink()
     page.goto((copy / "index.html").as_uri())
     expect(page.locator("html")).to_have_attribute("data-engine", "failed", timeout=30_000)
+
+
+def test_starts_from_the_kept_memory(dist: Path, tmp_path: Path, page: Page, engine_ready: Ready) -> None:
+    copy = copy_of(dist, tmp_path)
+    (copy / "engine" / "python.js").unlink()  # so the library is not even looked at
+    page.goto((copy / "index.html").as_uri())
+    engine_ready(page)
+    demonstration_drawn(page)
+    assert how_it_started(page) == "Started from the memory kept in the program."
+    assert page.locator(".statuses .engine").inner_text() == ""
+
+
+def of_another_build(file: Path) -> None:
+    """The memory of a Pyodide whose build has another name (words 4 to 11 of the head)."""
+    memory = bytearray(read_payload(file))
+    memory[16:48] = bytes(reversed(memory[16:48]))
+    write_payload(file, bytes(memory))
+
+
+DAMAGES: dict[str, Callable[[Path], object]] = {
+    "missing": Path.unlink,
+    "cut short": lambda file: file.write_bytes(file.read_bytes()[: file.stat().st_size // 4 * 2]),
+    "of another build": of_another_build,
+    "something else": lambda file: write_payload(file, b"PK" + bytes(100_000)),
+}
+
+
+@pytest.mark.parametrize("damage", DAMAGES)
+def test_a_damaged_memory_is_replaced_by_the_library(
+    dist: Path, tmp_path: Path, page: Page, engine_ready: Ready, damage: str
+) -> None:
+    copy = copy_of(dist, tmp_path)
+    DAMAGES[damage](copy / "engine" / "snapshot.js")
+    page.goto((copy / "index.html").as_uri())
+    engine_ready(page)
+    demonstration_drawn(page)
+    assert "did not start" in how_it_started(page)
+    assert "did not start" in page.locator(".statuses .engine").inner_text()
+
+
+@pytest.mark.parametrize("form", ["folder", "single file"])
+def test_starts_from_the_library_when_asked(dist: Path, single_file: Path, page: Page, engine_ready: Ready, form: str) -> None:
+    page.goto(f"{(single_file if form == 'single file' else dist / 'index.html').as_uri()}#library")
+    engine_ready(page)
+    demonstration_drawn(page)
+    assert "as the page’s address asks" in how_it_started(page)
 
 
 # --- the policy ------------------------------------------------------------------------------------------------------

@@ -112,14 +112,17 @@ def pair(deviation: str, **keys: Job) -> Job:
     }
 
 
-@pytest.mark.parametrize("repeats", [0, 1, 3, 19])
+@pytest.mark.parametrize("repeats", [0, 1, 2, 3, 19])
 @pytest.mark.parametrize("deviation", ["0", "0.20", "0.33", "0.45"])
 def test_doubt_of_a_pair(deviation: str, repeats: int) -> None:
-    """The zero is common to both lenses and cancels; further readings of one lens make it surer."""
+    """The zero is common to both lenses and cancels; further readings of one lens make it surer, but
+    never below its step's √(0.25²/12) (JCGM 100:2008, F.2.2.1); four alike leave just that."""
     job = pair(deviation)
     job["readings"]["right"]["repeats"] = [{"prism": [{"amount": deviation, "base": "up"}]}] * repeats
     check = checks_of(report_on(job), "prism.vertical")[0]
-    uncertainty = 0.08 * math.sqrt(1 / (repeats + 1) + 1)
+    step, count = 0.25**2 / 12, repeats + 1
+    of_right = step if count >= 4 else (0.08**2 - step) / count + step
+    uncertainty = math.sqrt(of_right + 0.08**2)
     inside = normal_within(float(deviation), 0.33, uncertainty)
     assert check["uncertainty"] == pytest.approx(uncertainty, abs=1e-9)
     assert check["doubt"] == pytest.approx(1 - inside if check["outcome"] == "within" else inside, abs=1e-9)
@@ -204,12 +207,13 @@ def test_guarded_rule(deviation: str) -> None:
 
 
 def test_guarded_rule_says_before_reading_that_nothing_could_pass() -> None:
-    """u√2·1.96 > 0.33 from u = 0.12; n readings of each lens divide it by √n."""
+    """u√2·1.96 > 0.33 from u = 0.12; n readings of each lens divide by n what is not the step's."""
     job = pair("0", decision_rule="guarded")
     del job["readings"]
     job["instrument"]["uncertainty"]["prism"] = "0.20"
     note = next(note for note in report_on(job)["notes"] if note["code"] == "guarded-needs-repeats")
-    assert note["params"]["count"] == str(math.ceil((0.20 * math.sqrt(2) * 1.959964 / 0.33) ** 2)) == "3"
+    step, allowed = 0.25**2 / 12, (0.33 / 1.959964) ** 2 / 2
+    assert note["params"]["count"] == str(math.ceil((0.20**2 - step) / (allowed - step))) == "4"
     job["instrument"]["uncertainty"]["prism"] = "0.80"
     assert "guarded-never-passes" in codes(report_on(job))
     job["instrument"]["uncertainty"]["prism"] = "0.05"

@@ -40,6 +40,7 @@ from tests.references.edge_reference import ReferenceLens, spherical_thickness, 
 
 Job = dict[str, Any]
 EXAMPLES = Path(__file__).parents[1] / "references" / "worked_examples.csv"
+SHAPES = ("rounded-rectangle", "oval", "teardrop")
 SAME_MM = 2e-6  # what Newton's method leaves, and a little noise
 
 
@@ -138,6 +139,20 @@ def test_thickness_against_the_exact_lens() -> None:
         found = thicknesses(solid_of(lens), lens.thickness_mm, points)
         largest = max(largest, *(abs(mm - lens.thickness(*point)) for mm, point in zip(found, points, strict=True)))
     print(f"edge: largest difference in thickness {largest:.2e} mm")
+    assert largest < SAME_MM
+
+
+def test_thousands_of_lenses_against_arrays(capsys: pytest.CaptureFixture[str]) -> None:
+    """24 points of each of 3,000 random lenses, thick, toric, with prism, off their rim's middle; bisection over arrays."""
+    draw, largest = np.random.default_rng(8), 0.0
+    lenses = random_lenses(3000, seed=4)
+    for lens in lenses:
+        angle, reach = draw.uniform(0, 2 * math.pi, 24), 32.0 * np.sqrt(draw.random(24))
+        x, y = reach * np.cos(angle), reach * np.sin(angle)
+        found = thicknesses(solid_of(lens), lens.thickness_mm, list(zip(x.tolist(), y.tolist(), strict=True)))
+        largest = max(largest, float(np.abs(np.array(found) - lens.thicknesses(x, y)).max()))
+    with capsys.disabled():
+        print(f"\nedge: thickness of {len(lenses)} lenses at 24 points, largest difference {largest:.1e} mm")
     assert largest < SAME_MM
 
 
@@ -262,6 +277,30 @@ def test_weight_of_a_toric_lens_in_a_squarish_rim() -> None:
 
 
 # --- what governs -----------------------------------------------------------------------------------------------------
+
+
+def test_weight_of_hundreds_of_lenses(capsys: pytest.CaptureFixture[str]) -> None:
+    """Gauss and Legendre over 72 sectors of the rim's own polygon, with the reference's thickness at every node."""
+    chance, worst, count = random.Random(12), 0.0, 300
+    along, shares = np.polynomial.legendre.leggauss(6)
+    reach, weights = (along + 1) / 2, shares / 2 * (along + 1) / 2
+    for _ in range(count):
+        a, b = chance.randint(44, 58), chance.randint(28, 42)
+        frame = {"a_mm": str(a), "b_mm": str(b), "dbl_mm": "18", "ed_mm": str(a + chance.randint(1, 4)), "shape": chance.choice(SHAPES)}
+        power = {"sphere": f"{chance.uniform(-7, 4):+.2f}", "cylinder": f"{chance.uniform(-3, 3):+.2f}", "axis": str(chance.randint(1, 180))}
+        parts = [{"amount": f"{chance.uniform(0, 5):.2f}", "base": base} for base in ("in", "up")]
+        found = framing(plain_job({**power, "prism": parts, "prp_height_mm": str(b // 2 + chance.randint(-3, 3))}, frame=frame))
+        prism = Prism(Decimal(parts[0]["amount"]), Decimal(parts[1]["amount"]))
+        edge = edge_of(found.lens, prism)
+        lens, (right, up) = reference_of(found, edge, prism), found.lens.rim.centre
+        rim = np.array(found.lens.rim.points) - (right, up)
+        squares, step = (rim**2).sum(-1), 2 * math.pi / len(rim)
+        x, y = (right + rim[:, :1] * reach).ravel(), (up + rim[:, 1:] * reach).ravel()
+        volume = float((lens.thicknesses(x, y).reshape(len(rim), -1) * weights * squares[:, None]).sum() * step)
+        worst = max(worst, abs(edge.volume_mm3 / volume - 1))
+    with capsys.disabled():
+        print(f"\nedge: volume of {count} lenses, largest difference {100 * worst:.2f} %")
+    assert worst < 4e-3
 
 
 def test_a_plus_lens_is_governed_by_its_edge_and_a_minus_lens_by_its_centre() -> None:
@@ -555,6 +594,7 @@ def test_traced_rims_are_taken_as_they_are() -> None:
         if count % 4 == 0:  # else the box that 25 points span is not the circle's
             assert edge.thickest[1] == pytest.approx(edge.thinnest[1], abs=1e-3)
         volumes.append(edge.volume_mm3)
+    assert edge.at(90.0) == dict(edge.profile)[86.4], "of places 14.4 degrees apart the nearest"
     assert volumes == pytest.approx([volumes[0]] * 3, rel=5e-3)
 
 
@@ -583,3 +623,13 @@ def test_the_picture_is_to_scale() -> None:
 
 def test_rims_are_none_without_a_box() -> None:
     assert rim_of(Frame(), "right", 0.0, 0.0) is None
+
+
+def test_the_estimated_thickness_knows_the_prism() -> None:
+    """Facts 4.8: a fixed thin edge raises the centre by P·r / 100(n - 1): 4 Δ, 25 mm, n 1.5 is 2.0 mm; by hand."""
+    job = plain_job({"sphere": "0.00", "prism": [{"amount": "4", "base": "in"}]}, lens__index="1.5", frame__ed_mm="50")
+    order = read_job(job).right
+    assert order
+    values = body_values(order, read_job(job).frame)
+    assert values
+    assert values.thickness_mm == Decimal("3.2")  # on the least edge of 1.2 mm

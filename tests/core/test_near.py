@@ -24,6 +24,7 @@ from pycore.optics.prism import Prism
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.near import near_section
 from tests.core.strategies import WORDS, Job, jobs, patched
+from tests.references import tilt_reference as room
 
 EXACT = pytest.approx
 
@@ -652,6 +653,30 @@ def test_effectivity_against_exact_rays() -> None:
             worst = max(worst, (difference / (abs(exact) + 1.0), difference, exact))
     print(f"\nnear: thin effectivity against exact rays, largest {worst[1]:.3f} Δ at {worst[2]:.2f} Δ over 2000 lenses")
     assert worst[0] < 0.01
+
+
+def test_effectivity_of_toric_lenses_against_exact_rays() -> None:
+    """Skew rays through thick toric lenses with oblique prism, traced in the room (implicit surfaces, Newton's method)."""
+    count, draw = 2000, np.random.default_rng(11)
+    sphere, cylinder, axis = draw.uniform(-7, 4, count), draw.uniform(-3, 3, count), draw.uniform(1, 180, count)
+    index, prism = draw.uniform(1.5, 1.74, count), draw.uniform(-5, 5, (count, 2))
+    strongest = np.maximum(np.maximum(sphere, sphere + cylinder), 0)
+    front_d, thickness = strongest + draw.uniform(2, 5, count), draw.uniform(1.5, 2.5, count) + strongest
+    upright = np.tile(np.eye(3), (count, 1, 1))
+    lenses = room.worked(room.power_matrix(sphere, cylinder, axis), prism, front_d, thickness, index, upright)
+    worked, worst = lenses.prism_ahead(), (0.0, 0.0, 0.0)
+    for away_mm, centre_mm in ((350.0, 27.0), (1e6, 25.0)):
+        exact = lenses.prism_near(away_mm, thickness + centre_mm)
+        for i in range(count):
+            power = Power(Decimal(sphere[i]), Decimal(cylinder[i]), Decimal(axis[i]))
+            given = Prism(Decimal(worked[i, 0]), Decimal(worked[i, 1]))
+            thin = effective_at_near(given, power, Decimal(away_mm), Decimal(centre_mm))
+            assert thin is not None
+            difference = math.hypot(float(thin.x) - exact[i, 0], float(thin.y) - exact[i, 1])
+            amount = math.hypot(*exact[i])
+            worst = max(worst, (difference / (amount + 1.0), difference, amount))
+    print(f"\nnear: thin effectivity against skew rays, largest {worst[1]:.3f} Δ at {worst[2]:.2f} Δ over {2 * count} toric lenses")
+    assert worst[0] < 0.012
 
 
 def test_effectivity_ends_where_the_image_reaches_the_eye() -> None:

@@ -7,9 +7,11 @@ scipy's Brent on the edges themselves.
 from __future__ import annotations
 
 import json
+import math
 from decimal import Decimal
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -17,9 +19,10 @@ from scipy.optimize import brentq
 
 from pycore.bench.edge import COARSE, edge_of
 from pycore.bench.split import shared, shares, together
-from pycore.optics.prism import NO_PRISM, Prism, from_base
+from pycore.optics.prism import EYES, NO_PRISM, Prism, from_base
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.split import split_section
+from pycore.words import say
 from tests.core.strategies import patched
 from tests.core.test_edge import case_on, codes, example, framing, plain_job
 
@@ -80,6 +83,28 @@ def test_every_share_keeps_what_the_pair_sees(right: Prism, left: Prism, thinnin
 def test_any_part_keeps_the_sum(part: int) -> None:
     whole = Prism(Decimal("5.37"), Decimal("-2.11"))
     assert together(shared(whole, Decimal(part) / 100)) == whole
+
+
+def test_hundreds_of_pairs_keep_their_sum_and_come_out_equal(capsys: pytest.CaptureFixture[str]) -> None:
+    """Random pairs: right minus left of every way is the order's (numpy); where a way makes both equal, they are."""
+    draw, kept, apart, reached, count = np.random.default_rng(31), 0.0, 0.0, 0, 300
+    for _ in range(count):
+        x, y = draw.uniform(-5, 5, 2).round(2), draw.uniform(-5, 5, 2).round(2)
+        ordered = {eye: Prism(Decimal(str(x[i])), Decimal(str(y[i]))) for i, eye in enumerate(EYES)}
+        orders = [{"sphere": f"{draw.uniform(-5, 3):+.2f}", "cylinder": f"{draw.uniform(-2, 2):+.2f}", "axis": "40"} for _ in EYES]
+        job = plain_job(*orders)
+        lenses = {eye: framing(job, eye).lens for eye in EYES}
+        for way in shares(ordered, dict.fromkeys(EYES, NO_PRISM), lenses):
+            right, left = (np.array([float(way.prisms[eye].x), float(way.prisms[eye].y)]) for eye in EYES)
+            kept = max(kept, float(np.abs(right - left - (x[0] - x[1], y[0] - y[1])).max()))
+            if way.kind in ("equal-edges", "equal-weight") and way.reached:
+                sizes = [way.edges[eye].thickest[1] if way.kind == "equal-edges" else way.edges[eye].weight_g or 0.0 for eye in EYES]
+                apart, reached = max(apart, abs(sizes[0] - sizes[1])), reached + 1
+    with capsys.disabled():
+        print(f"\nsplit: {count} pairs keep right minus left to {kept:.1e} Δ; {reached} ways equal to {apart:.3f} mm or g")
+    assert kept < 1e-12
+    assert reached > count
+    assert apart < 0.06
 
 
 def test_equal_lenses_are_equal_and_stand_where_brent_finds_them() -> None:
@@ -189,3 +214,28 @@ def test_a_lens_alone_in_its_power_gives_no_edges() -> None:
     lens = framing(plain_job({"sphere": "-1.00"})).lens
     found = shares(ordered, {"right": NO_PRISM, "left": NO_PRISM}, {"right": lens})  # type: ignore[arg-type]
     assert [share.kind for share in found] == KINDS[:4]
+
+
+def test_the_picture_has_every_way_to_scale() -> None:
+    """One pair of rims a way; the band is as wide as the edge is thick, and stays within the picture."""
+    found = answer(plain_job(order_of("3BU", "-2.00"), order_of("4BI", "+1.00")))
+    scene = found.scenes["pair"]
+    shapes = scene["shapes"]
+    rims, bands = ([shape["points"] for shape in shapes if shape["role"] == role] for role in ("outline", "profile-back"))
+    assert len(rims) == len(bands) == 2 * len(KINDS)
+    assert [shape["text"] for shape in shapes if shape["role"] == "way"] == [say(f"section_rows.split.{kind}") for kind in KINDS]
+    assert isinstance(found.own, list)
+    thickest = [share["edges"][eye]["thickest_mm"] for share in found.own for eye in ("right", "left")]
+    thinnest = [share["edges"][eye]["thinnest_mm"] for share in found.own for eye in ("right", "left")]
+    for rim, band, most, least in zip(rims, bands, thickest, thinnest, strict=True):
+        widths = [math.dist(inner, outer) for inner, outer in zip(rim, band, strict=True)]
+        assert max(widths) == pytest.approx(most, abs=0.003)
+        assert min(widths) == pytest.approx(least, abs=0.003)
+    left, low, right, high = scene["extent"]
+    assert all(left < x < right and low < y < high for band in bands for x, y in band)
+
+
+def test_no_picture_without_edges() -> None:
+    job = plain_job(order_of("3BU"), order_of("4BI"))
+    del job["frame"]
+    assert answer(job).scenes == {}

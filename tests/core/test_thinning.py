@@ -7,9 +7,11 @@ the exact lens of `references/edge_reference.py`; right minus left as vectors fo
 from __future__ import annotations
 
 import json
+from dataclasses import replace
 from decimal import Decimal
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
@@ -21,7 +23,7 @@ from pycore.optics.prism import NO_PRISM, Prism
 from pycore.sections.answer import SectionAnswer
 from pycore.sections.thinning import thinning_section
 from tests.core.strategies import patched
-from tests.core.test_edge import case_on, codes, example, framing, plain_job
+from tests.core.test_edge import case_on, codes, example, framing, plain_job, random_lenses, solid_of
 from tests.references.edge_reference import ReferenceLens
 
 Job = dict[str, Any]
@@ -83,6 +85,26 @@ def test_it_makes_top_and_bottom_equal(order: Job) -> None:
         return exact.thickness(right, up + 18.0) - exact.thickness(right, up - 18.0)
 
     assert found == pytest.approx(brentq(difference, -6.0, 6.0), abs=1e-4)
+
+
+def test_it_makes_thousands_of_lenses_equal(capsys: pytest.CaptureFixture[str]) -> None:
+    """The outside lens with the amount found has top and bottom alike, whatever its power, cylinder, prism and thickness."""
+    lens, worst, count = framing(plain_job({"sphere": "+1.00", "prp_height_mm": "20"})).lens, 0.0, 0
+    ends = np.array([lens.rim.points[lens.rim.index_at(turn)] for turn in (90.0, 270.0)])
+    for body in random_lenses(3000, seed=21):
+        solid = solid_of(body)
+        framed = replace(lens, solid=replace(solid, prism_x=0.0, prism_y=0.0), centre_mm=body.thickness_mm)
+        x, y = body.prism
+        found = equalising(framed, Prism(Decimal(x), Decimal(y)))
+        if found is None:
+            continue
+        thinned = replace(body, prism=(x, y + found))
+        top, bottom = thinned.thicknesses(ends[:, 0], ends[:, 1])
+        worst, count = max(worst, abs(top - bottom)), count + 1
+    with capsys.disabled():
+        print(f"\nthinning: {count} lenses of 3000 made equal, largest difference of top and bottom {worst:.1e} mm")
+    assert count > 1500
+    assert worst < 5e-6
 
 
 def test_plus_lenses_want_it_down_and_high_minus_lenses_up() -> None:
@@ -258,3 +280,39 @@ def test_titles_and_notes() -> None:
     assert unweighed.own["choices"][1]["weight_g"] is None
     assert unweighed.own["choices"][1]["saved_weight_g"] is None
     assert Choice(rule="none", up=Decimal(0), edges={}).weight_g == 0
+
+
+# --- the picture ------------------------------------------------------------------------------------------------------
+
+
+UP: Job = {"sphere": "+1.00", "prism": [{"amount": "2", "base": "up"}]}
+DOWN: Job = {"sphere": "+1.00", "prism": [{"amount": "4", "base": "down"}]}
+
+
+@pytest.mark.parametrize(("rule", "right", "left"), [("fits", {"sphere": "+3.00"}, {"sphere": "+2.50"}), ("two-thirds", UP, DOWN)])
+def test_the_picture_shows_the_edges_before_and_after(rule: str, right: Job, left: Job) -> None:
+    """At both ends of each cut the drawn lens is as thick as the table says; where nothing fits, by the order's rule."""
+    job = progressive(right, left, thinning={"rule": "two-thirds"})
+    found, scene = own(job), answer(job).scenes["pair"]
+    bodies = [shape["points"] for shape in scene["shapes"] if shape["role"] == "outline"]
+    bare = [shape["points"] for shape in scene["shapes"] if shape["role"] == "before"]
+    for number, eye in enumerate(("right", "left")):
+        drawn, half = bodies[number], len(bodies[number]) // 2
+        front, back = drawn[:half], drawn[half:][::-1]
+        for end, at in ((0, "bottom_mm"), (-1, "top_mm")):
+            assert back[end][0] - front[end][0] == pytest.approx(choice(found, rule)[eye][at], abs=0.002)
+            assert bare[number][end][0] - front[end][0] == pytest.approx(choice(found, "none")[eye][at], abs=0.002)
+            assert back[end][1] == front[end][1]
+    named = [shape["text"] for shape in scene["shapes"] if shape["role"] == "way"]
+    assert named[0].startswith({"fits": "what fits", "two-thirds": "two thirds of the add"}[rule])
+    left_mm, low, right_mm, high = scene["extent"]
+    assert all(left_mm < x < right_mm and low < y < high for body in bodies for x, y in body)
+
+
+def test_the_picture_of_one_lens_or_of_a_stated_amount() -> None:
+    one = answer(progressive({"sphere": "+3.00"}))
+    assert one.title == "fits-one"
+    assert [shape["word"] for shape in one.scenes["pair"]["shapes"] if shape["role"] == "eye-label"] == ["letters.right"]
+    stated = {"rule": "amount", "amount": "1.00", "base": "down"}
+    pair = answer(progressive(UP, DOWN, thinning=stated)).scenes["pair"]
+    assert next(shape["text"] for shape in pair["shapes"] if shape["role"] == "way") == "as the paperwork says: 1.00 down"

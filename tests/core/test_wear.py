@@ -17,6 +17,7 @@ from pycore.optics.prism import Eye, Prism
 from pycore.optics.tilt import BeyondError, moved, oblique_factor, power_as_worn, power_of, power_to_order, tilt_of
 from pycore.optics.tilt_trace import Glass, prism_as_worn, prism_to_order
 from pycore.sections.answer import SectionAnswer
+from pycore.sections.edge import edge_section
 from pycore.sections.wear import wear_section
 from tests.references import tilt_reference as room
 
@@ -587,3 +588,57 @@ def test_cylinder_keeps_the_orders_form() -> None:
     shown = rows(answer)["compensated-power"]
     assert "+" in shown.left.partition(" ")[2]
     assert "+" not in shown.right
+
+
+# --- the picture -----------------------------------------------------------------------------------
+
+FRAME: Job = {"a_mm": "52", "b_mm": "34", "dbl_mm": "18", "ed_mm": "55"}
+
+
+def drawn_lenses(answer: SectionAnswer) -> list[list[list[float]]]:
+    return [shape["points"] for shape in answer.scenes["pair"]["shapes"] if shape["role"] == "outline"]
+
+
+def chord_deg(points: list[list[float]]) -> float:
+    """How the front's chord, from its first to its last point, stands in the picture."""
+    last = points[len(points) // 2 - 1]
+    return math.degrees(math.atan2(last[1] - points[0][1], last[0] - points[0][0]))
+
+
+@pytest.mark.parametrize(("wrap", "panto"), [("12", "0"), ("0", "9")])
+def test_the_picture_turns_each_lens_by_its_tilt(wrap: str, panto: str) -> None:
+    """Against the same lenses untilted: the temple sides and the lower rims go towards the eyes."""
+    both = job_of(RIGHT | {"pd_mm": "32"}, LEFT | {"pd_mm": "31"}, frame=FRAME, lens=FULL["lens"])
+    flat = drawn_lenses(section({**both, "wear": {"wrap_deg": "0", "pantoscopic_deg": "0"}}))
+    tilted = drawn_lenses(section({**both, "wear": {"wrap_deg": wrap, "pantoscopic_deg": panto}}))
+    turned = [chord_deg(after) - chord_deg(before) for before, after in zip(flat, tilted, strict=True)]
+    # From above right and left, from the side right and left; the eyes lie up, then to the right.
+    assert turned == pytest.approx([-float(wrap), float(wrap), float(panto), float(panto)], abs=0.05)
+
+
+def test_the_light_in_the_picture_turns_by_the_prism_as_worn() -> None:
+    answer = section(job_of(RIGHT, LEFT, **FULL))
+    entry = own(answer)["left"]["effective"]["prism"]
+    arrows = [shape for shape in answer.scenes["pair"]["shapes"] if shape["kind"] == "arrow"]
+    above, side = arrows[1], arrows[3]
+    assert 100 * (above["x2"] - above["x"]) / (above["y2"] - above["y"]) == pytest.approx(entry["x"], abs=0.01)
+    assert 100 * (side["y2"] - side["y"]) / (side["x2"] - side["x"]) == pytest.approx(entry["y"], abs=0.01)
+
+
+def test_the_thickness_is_the_one_that_the_rim_wants() -> None:
+    """As the panel Edge has it, to 0.1 mm; a given one stays, and so does the estimate where no surface reaches."""
+    job = job_of(RIGHT | {"pd_mm": "32"}, frame=FRAME, wear=FULL["wear"], lens={"index": "1.586", "front_curve": "5"})
+    edge = edge_section(case_of(read_job(job), None)).own
+    assert isinstance(edge, dict)
+    asked = {ask.field: ask.usual for ask in section(job).asks}
+    assert asked["lens.centre_thickness_mm"] == f"{edge['right']['centre_mm']:.1f}"
+    given = {**job, "lens": job["lens"] | {"centre_thickness_mm": asked["lens.centre_thickness_mm"]}}
+    assert own(section(given)) == own(section(job))
+
+
+def test_where_there_is_nothing_to_draw() -> None:
+    assert section(job_of({"sphere": "+40.00"}, wear={"vertex_tested_mm": "0", "vertex_worn_mm": "40"})).scenes == {}
+    steep = {"lens": {"front_curve": "19", "index": "1.5", "curve_index": "1.5"}, "wear": {"wrap_deg": "5"}}
+    wide = section(job_of({"sphere": "+1.00", "pd_mm": "32"}, frame={"a_mm": "66", "b_mm": "40", "dbl_mm": "18"}, **steep))
+    assert own(wide)
+    assert wide.scenes == {}

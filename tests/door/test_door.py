@@ -81,12 +81,14 @@ def test_the_example_of_the_contract() -> None:
     SCHEMA.validate(EXAMPLE)
 
 
-def test_each_demonstration_pair_but_the_first_fails_and_leads_to_the_next() -> None:
+def test_each_demonstration_pair_but_the_first_fails_for_its_own_cause_and_leads_to_the_next() -> None:
     seen, pair = [], "within"
     while pair not in seen:
         answer = ask(do="demonstration", pair=pair)
         verdict = report_on(answer["job"])["verdict"]
         assert verdict["outcome"] == ("within" if pair == "within" else "outside"), pair
+        causes = ask(do="report", job=answer["job"], sections=["causes"])["causes"]
+        assert causes[0]["code"] == ("as-ordered" if pair == "within" else pair), pair
         seen.append(pair)
         pair = answer["next"]
     assert (pair, seen) == ("within", answer["pairs"])

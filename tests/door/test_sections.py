@@ -9,7 +9,7 @@ from pycore.api import handle
 from pycore.sections import SECTIONS
 from pycore.words import say, table
 
-WANTED = ("layout", "field", "edge", "thinning", "split", "near", "wear", "surfacing", "colour")
+WANTED = ("layout", "field", "edge", "thinning", "split", "near", "wear", "surfacing", "colour", "causes", "look", "remedy")
 
 
 def ask(**more: Any) -> dict[str, Any]:

@@ -89,6 +89,29 @@ class ReferenceLens:
         return float(brentq(miss, -60.0, 60.0, xtol=1e-13, rtol=1e-14)) - front_depth
 
 
+    def thicknesses(self, x: Vector, y: Vector) -> Vector:
+        """The same for arrays of places, by bisection in place of Brent's method."""
+        steep, flat, first = self.back()
+        into, across = self.turned().inv().as_matrix(), np.array([-first[1], first[0]])
+        low, high = np.full(x.shape, -60.0), np.full(x.shape, 60.0)
+        for _ in range(48):
+            depth = (low + high) / 2
+            local = into @ np.stack([x, y, depth - self.thickness_mm])
+            u, v = first @ local[:2], across @ local[:2]
+            behind = local[2] > depths(steep, flat, u, v)
+            low, high = np.where(behind, low, depth), np.where(behind, depth, high)
+        front = self.front_d / (1000.0 * (self.index - 1.0))
+        return (low + high) / 2 - depths(front, front, np.hypot(x, y), np.zeros_like(x))
+
+
+def depths(steep: float, flat: float, u: Vector, v: Vector) -> Vector:
+    """`torus_depth` for arrays."""
+    arc = np.zeros_like(u) if abs(steep) < 1e-12 else 1 / steep - np.sign(steep) * np.sqrt(np.maximum(1 / steep**2 - u * u, 0.0))
+    if abs(flat) < 1e-12:
+        return arc
+    return 1 / flat - np.sign(flat) * np.sqrt(np.maximum((1 / flat - arc) ** 2 - v * v, 0.0))
+
+
 def torus_depth(steep: float, flat: float, u: float, v: float) -> float:
     """Depth of a torus by its radii: the arc of radius 1/steep along u, carried round the circle of radius 1/flat."""
     arc = 0.0 if abs(steep) < 1e-12 else 1 / steep - math.copysign(math.sqrt(max(1 / steep**2 - u * u, 0.0)), steep)

@@ -124,6 +124,30 @@ class Lenses:
         _, left = self.through(start, ray)
         return -100.0 * left[:, :2] / left[:, 2:]
 
+    def prism_near(self, away_mm: float, centre_mm: Array) -> Array:
+        """Prism (Δ, right and up) for the light of a near point straight ahead that then passes the eye's centre.
+
+        The point lies `away_mm` in front of the front pole, the centre of rotation `centre_mm` behind it. Newton's
+        method on where the light starts from the point, its slopes by neighbouring rays.
+        """
+        count, step = len(self.index), 1e-6
+        point = np.tile([0.0, 0.0, away_mm], (count, 1))
+        slopes = np.zeros((count, 2))
+
+        def missed(slopes: Array) -> tuple[Array, Array]:
+            ray = np.concatenate([slopes, -np.ones((count, 1))], -1)
+            at, left = self.through(point, ray / np.sqrt(dot(ray, ray))[:, None])
+            along = (-centre_mm - at[:, 2]) / left[:, 2]
+            return (at + along[:, None] * left)[:, :2], left
+
+        for _ in range(8):
+            miss, left = missed(slopes)
+            columns = [(missed(slopes + step * np.eye(2)[i])[0] - miss) / step for i in (0, 1)]
+            slopes = slopes - np.linalg.solve(np.stack(columns, -1), miss[..., None])[..., 0]
+        miss, left = missed(slopes)
+        assert np.abs(miss).max() < 1e-9
+        return -100.0 * left[:, :2] / left[:, 2:]
+
     def power_ahead(self, step_mm: float = 1e-3) -> Array:
         """Power matrix about that ray: how directions behind the lens grow with place there."""
         count = len(self.index)

@@ -1,7 +1,9 @@
 // The worker client: who is answered, who is superseded, and what happens when a worker dies. No Python runs here.
 import assert from "node:assert/strict";
 import { afterEach, beforeEach, test } from "node:test";
+import { gzipSync } from "node:zlib";
 import { startEngine } from "../../web/app/engine.js";
+import { textOf } from "../../web/build/payload.mjs";
 import { createKeeper } from "../../web/app/panels/keeper.js";
 import { NAMES } from "../../web/app/section-names.js";
 
@@ -52,7 +54,8 @@ let states;
 async function start(options = {}) {
   states = [];
   const engine = startEngine({ onState: (state) => states.push(state), ...options });
-  await settle();
+  do await settle();
+  while (!FakeWorker.refuse && (FakeWorker.last?.sent.length ?? 0) < 2);
   return engine;
 }
 
@@ -73,27 +76,29 @@ beforeEach(() => {
   globalThis.document = { visibilityState: "hidden", readyState: "complete", documentElement: { dataset: {} } };
   globalThis.wedgewrightEngine = function () {};
   globalThis.wedgewrightWasm = "the program";
+  globalThis.wedgewrightSnapshot = textOf(gzipSync("the memory"));
   globalThis.wedgewrightPython = "the library";
 });
 
 afterEach(() => {
   delete globalThis.Worker;
   delete globalThis.document;
+  delete globalThis.location;
 });
 
 test("the worker is given both payloads, and what was asked before it was ready is answered", async () => {
   const engine = await start();
   const answer = engine.ask({ do: "early" }, { lane: "a" });
   assert.deepEqual(FakeWorker.last.sent, [
-    { kind: "wasm", text: "the program" },
-    { kind: "python", text: "the library" },
+    { kind: "wasm", body: "the program" },
+    { kind: "snapshot", body: new TextEncoder().encode("the memory") },
   ]);
   FakeWorker.last.say({ kind: "ready" });
   assert.deepEqual(FakeWorker.last.asked, [{ id: 1, format: "wedgewright.request/1", sequence: 1, language: "en", do: "early" }]);
   FakeWorker.last.answer();
   assert.deepEqual(await answer, { format: "test", what: "early" });
   assert.deepEqual(states, ["reading", "starting", "ready"]);
-  assert.equal(engine.mode, "worker");
+  assert.equal(engine.start.mode, "worker");
 });
 
 test("when it is quiet, the first calls are spent on the demonstration, section by section", async () => {
@@ -193,13 +198,13 @@ test("where workers are refused, the engine runs on the page's own thread", asyn
   FakeWorker.refuse = true;
   globalThis.wedgewrightEngine = (port) => {
     port.onmessage = ({ data }) => {
-      if (data.kind === "python") port.postMessage({ kind: "ready" });
+      if (data.kind === "snapshot") port.postMessage({ kind: "ready" });
       if (data.kind === "ask") port.postMessage({ kind: "answer", id: data.id, text: '{"format":"here"}' });
     };
   };
   const engine = await start();
   assert.deepEqual(await engine.ask({ do: "report" }, { lane: "a" }), { format: "here" });
-  assert.equal(engine.mode, "main-thread");
+  assert.equal(engine.start.mode, "main-thread");
 });
 
 test("a question that has not begun can be taken back; one that is being answered goes on", async () => {
@@ -235,4 +240,55 @@ test("a keystroke waits behind one section at most", async () => {
   assert.ok(await keystroke);
   await settle();
   assert.deepEqual(worker.asked.at(-1).sections, [NAMES[2]], "then they go on");
+});
+
+const LIBRARY = [
+  { kind: "wasm", body: "the program" },
+  { kind: "python", body: "the library" },
+];
+
+test("an engine that does not start from the kept memory starts from the library, and says why", async () => {
+  const engine = await start();
+  const answer = engine.ask({ do: "early" }, { lane: "a" });
+  const [first] = FakeWorker.made;
+  first.say({ kind: "failed", message: "Snapshot build id mismatch" });
+  await settle();
+  assert.equal(first.ended, true);
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  FakeWorker.last.say({ kind: "ready" });
+  FakeWorker.last.answer();
+  assert.equal((await answer).what, "early");
+  assert.deepEqual(engine.start, { mode: "worker", source: "python", why: "failed" });
+  assert.deepEqual(states, ["reading", "starting", "ready"], "nobody was told of a crash");
+});
+
+test("a kept memory that takes too long is given up for the library", async () => {
+  const engine = await start({ startLimitsMs: { snapshot: 10, python: 60_000 } });
+  while (FakeWorker.made.length < 2 || FakeWorker.last.sent.length < 2) await settle();
+  assert.equal(FakeWorker.made.length, 2);
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  assert.equal(engine.start.why, "slow");
+});
+
+test("a kept memory that is not there is given up for the library", async () => {
+  delete globalThis.wedgewrightSnapshot;
+  const engine = await start();
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  assert.equal(engine.start.why, "failed");
+});
+
+test("a crash after a start from the kept memory leads to the library too", async () => {
+  const engine = await startAsked();
+  FakeWorker.last.onerror({ message: "table index is out of bounds" });
+  await settle();
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  assert.deepEqual(engine.start, { mode: "worker", source: "python", why: "failed" });
+  assert.equal(engine.state, "restarted");
+});
+
+test("the library can be asked for by the page's address", async () => {
+  globalThis.location = new URL("file:///index.html#library");
+  const engine = await start();
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  assert.equal(engine.start.why, "asked");
 });

@@ -106,7 +106,7 @@ const answerOf = (name) => ({ format: "wedgewright.report/1", sections: { layout
 test("sections are asked for once a job: going back to it asks nothing again", async () => {
   const engine = slowEngine();
   let changes = 0;
-  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => (changes += 1), pauseMs: 1 });
+  const keeper = createKeeper({ lane: "sections", engine, ...LAYOUT, changed: () => (changes += 1), pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   keeper.follow({ id: "a" }, []);
   await pause(10);
@@ -131,7 +131,7 @@ test("sections are asked for once a job: going back to it asks nothing again", a
 
 test("a keystroke takes the question back, and a late answer never covers a newer one", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => {}, pauseMs: 5 });
+  const keeper = createKeeper({ lane: "sections", engine, ...LAYOUT, changed: () => {}, pauseMs: 5 });
   keeper.follow({ id: "a" }, []);
   keeper.cancel();
   await pause(15);
@@ -150,7 +150,7 @@ test("a keystroke takes the question back, and a late answer never covers a newe
 
 test("a job that the core cannot answer keeps what was there, said as earlier", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, ...LAYOUT, changed: () => {}, pauseMs: 1 });
+  const keeper = createKeeper({ lane: "sections", engine, ...LAYOUT, changed: () => {}, pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   await pause(10);
   engine.asked[0].resolve(answerOf("a"));
@@ -168,7 +168,7 @@ const sectionAnswer = (name, job) => ({ sections: { [name]: { job } }, scenes: {
 
 test("sections are asked one at a time, what is looked at first; each is shown as it comes", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, names: ["layout", "edge", "near"], first: () => ["near"], changed: () => {}, pauseMs: 1 });
+  const keeper = createKeeper({ lane: "sections", engine, names: ["layout", "edge", "near"], first: () => ["near"], changed: () => {}, pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   for (const [index, name] of ["near", "layout", "edge"].entries()) {
     await pause(5);
@@ -184,7 +184,7 @@ test("sections are asked one at a time, what is looked at first; each is shown a
 
 test("broken off by a keystroke, the rest is asked later and what was answered is not asked again", async () => {
   const engine = slowEngine();
-  const keeper = createKeeper({ engine, names: ["layout", "edge"], first: () => [], changed: () => {}, pauseMs: 1 });
+  const keeper = createKeeper({ lane: "sections", engine, names: ["layout", "edge"], first: () => [], changed: () => {}, pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   await pause(5);
   keeper.cancel();

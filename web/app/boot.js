@@ -8,12 +8,13 @@ for (const name of ["RTCPeerConnection", "webkitRTCPeerConnection"]) {
   Object.defineProperty(globalThis, name, { value: undefined, writable: false, configurable: false });
 }
 
-/** @typedef {"worker" | "wasm" | "python"} PayloadName */
+/** @typedef {"worker" | "wasm" | "snapshot" | "python"} PayloadName */
 
 /** Where each payload lies in the folder, the id it has in the single file, and the global its script sets. */
 const PAYLOADS = {
   worker: { file: "engine/worker.js", id: "", global: "wedgewrightEngine" },
   wasm: { file: "engine/wasm.js", id: "wedgewright-wasm", global: "wedgewrightWasm" },
+  snapshot: { file: "engine/snapshot.js", id: "wedgewright-snapshot", global: "wedgewrightSnapshot" },
   python: { file: "engine/python.js", id: "wedgewright-python", global: "wedgewrightPython" },
 };
 

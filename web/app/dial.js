@@ -37,9 +37,10 @@ export function viewBox(scene) {
  * @param {Shape} shape
  * @param {number} unit
  * @param {string} hatch id of the pattern that fills the acceptance region
+ * @param {number} [targetSize] in the large eyepiece
  * @returns {Mark[]}
  */
-export function marksOf(shape, unit, hatch) {
+export function marksOf(shape, unit, hatch, targetSize = 1) {
   const attributes = { class: `role-${shape.role}${shape["dashed"] ? " dashed" : ""}` };
   const { x, y } = shape;
   switch (shape.kind) {
@@ -50,9 +51,10 @@ export function marksOf(shape, unit, hatch) {
     case "rect":
       return filled(rectangle(shape, attributes), shape, hatch);
     case "point":
-      return shape.role === "expected" ? ringed(attributes, x, y, unit) : [dot(attributes, x, y, 1.6 * unit)];
+      if (shape.role === "expected") return ringed(attributes, x, y, unit);
+      return [shape.role === "mean" ? diamond(attributes, x, y, 2.2 * unit) : dot(attributes, x, y, 1.6 * unit)];
     case "crosses":
-      return target(shape, attributes, unit);
+      return target(shape, attributes, unit * targetSize);
     case "label":
       return shape.role === "base-label"
         ? baseLabel(shape, attributes, unit)
@@ -90,6 +92,11 @@ function labelOf(shape) {
 /** @param {Record<string, string|number>} attributes @param {number} x @param {number} y @param {number} radius @returns {Mark} */
 function dot(attributes, x, y, radius) {
   return { tag: "circle", attributes: { ...attributes, cx: x, cy: -y, r: radius } };
+}
+
+/** @param {Record<string, string|number>} attributes @param {number} x @param {number} y @param {number} half @returns {Mark} */
+function diamond(attributes, x, y, half) {
+  return { tag: "path", attributes: { ...attributes, d: `M${x} ${-y - half} l${half} ${half} l${-half} ${half} l${-half} ${-half} Z` } };
 }
 
 /** @param {Record<string, string|number>} attributes @param {number} x @param {number} y @param {number} unit a ring with a dot */
@@ -182,11 +189,12 @@ const STILL = new Set(["ring", "ring-label", "tick", "base-label", "grid"]);
  * @param {Shape[]} shapes
  * @param {number} unit
  * @param {string} hatch
+ * @param {number} targetSize
  */
-function drawLayer(layer, shapes, unit, hatch) {
+function drawLayer(layer, shapes, unit, hatch, targetSize) {
   if (!differs(layer, [unit, say("directions.in"), shown("0.5"), shapes])) return;
   layer.setAttribute("font-size", String(5 * unit));
-  const marks = shapes.flatMap((shape) => marksOf(shape, unit, hatch));
+  const marks = shapes.flatMap((shape) => marksOf(shape, unit, hatch, targetSize));
   layer.replaceChildren(...marks.map(({ tag, attributes, text }) => svg(tag, attributes, text ?? null)));
 }
 
@@ -196,10 +204,12 @@ function drawLayer(layer, shapes, unit, hatch) {
  * @param {SVGElement} host
  * @param {Scene} scene
  * @param {string} id unique on the page
+ * @param {{marks: number, target: number}} [look] how large what has no size of its own is drawn
  */
-export function drawScene(host, scene, id) {
+export function drawScene(host, scene, id, look = { marks: 1, target: 1 }) {
   const box = viewBox(scene);
-  const unit = ((scene.extent[2] - scene.extent[0]) * (hasScale(scene) ? 1 + 2 * ROOM : 1)) / 100;
+  const width = (scene.extent[2] - scene.extent[0]) * (hasScale(scene) ? 1 + 2 * ROOM : 1);
+  const unit = (look.marks * width) / 100;
   const hatch = `hatch-${id}`;
   const place = box.join(" ");
   if (host.getAttribute("viewBox") !== place) {
@@ -208,8 +218,8 @@ export function drawScene(host, scene, id) {
   }
   const [still, content] = /** @type {Iterable<SVGElement>} */ (host.querySelectorAll(":scope > g"));
   const isStill = (/** @type {Shape} */ { role }) => STILL.has(role);
-  if (still) drawLayer(still, scene.shapes.filter(isStill), unit, hatch);
-  if (content) drawLayer(content, scene.shapes.filter((shape) => !isStill(shape)), unit, hatch);
+  if (still) drawLayer(still, scene.shapes.filter(isStill), unit, hatch, look.target);
+  if (content) drawLayer(content, scene.shapes.filter((shape) => !isStill(shape)), unit, hatch, look.target);
 }
 
 /**

@@ -2,7 +2,8 @@
  * The page's side of the conversation with the core: one request at a time goes to the worker, the newest of each lane
  * wins, what nobody waits for goes when it is quiet, and a worker that fails or takes too long is ended and started anew.
  */
-import { afterFirstPaint, payload, scriptUrl } from "./boot.js";
+import { afterFirstPaint } from "./boot.js";
+import { openLink } from "./link.js";
 import { NAMES } from "./section-names.js";
 
 /** @typedef {"reading" | "starting" | "ready" | "restarted" | "failed"} EngineState */
@@ -16,40 +17,16 @@ import { NAMES } from "./section-names.js";
  * @property {boolean} idle nobody waits for it: it goes when nothing else was asked for a while
  * @property {(answer: EngineAnswer | null) => void} resolve
  */
-/** @typedef {{postMessage: (message: object) => void, end: () => void}} Link */
-/** @typedef {{message: (data: any) => void, crash: (error: unknown) => void}} Listener */
+/**
+ * How the engine was started: in a worker or not, from the kept memory or from the library, and if from the library, why.
+ * @typedef {{mode: import("./link.js").Mode, source: import("./link.js").Source, why: "" | "asked" | "failed" | "slow"}} Start
+ */
 
 const TIME_LIMIT_MS = 20000;
-const START_LIMIT_MS = 120000;
+/** The kept memory is given up sooner, since there is another way. */
+const START_LIMITS_MS = { snapshot: 30000, python: 120000 };
 /** Long enough after the last question that somebody waited for: typing pauses less. */
 const QUIET_MS = 400;
-
-/**
- * Opens a worker made of the engine's own text, or, where workers are refused, runs the engine on this thread.
- *
- * @param {(port: any) => void} engine
- * @param {Listener} listener
- * @returns {{link: Link, mode: "worker" | "main-thread"}}
- */
-function openLink(engine, listener) {
-  try {
-    const url = URL.createObjectURL(new Blob([`(${engine})(self);`], { type: "text/javascript" }));
-    const worker = new Worker(scriptUrl(url));
-    worker.onmessage = ({ data }) => listener.message(data);
-    worker.onerror = (event) => listener.crash(event.message);
-    const end = () => {
-      worker.onmessage = worker.onerror = null;
-      worker.terminate();
-      URL.revokeObjectURL(url);
-    };
-    return { link: { postMessage: (message) => worker.postMessage(message), end }, mode: "worker" };
-  } catch {
-    const { port1, port2 } = new MessageChannel();
-    port1.onmessage = ({ data }) => listener.message(data);
-    engine(port2);
-    return { link: { postMessage: (message) => port1.postMessage(message), end: () => port1.close() }, mode: "main-thread" };
-  }
-}
 
 /**
  * The answer where the engine itself has none to give: the same shape as the core's refusals, words by code.
@@ -62,20 +39,38 @@ function refusal(code) {
   return { format: "wedgewright.refusal/1", errors: [error] };
 }
 
+/** The engine's own times, by the page's clock, for whoever measures. @param {Record<string, number>} times */
+function markTimes(times) {
+  for (const [name, at] of Object.entries(times)) {
+    performance.mark(`engine-${name}`, { startTime: Math.max(0, at - performance.timeOrigin) });
+  }
+}
+
+/** For measuring and for looking into a fault: the address ending in `#library` starts without the kept memory. */
+const libraryAsked = () => globalThis.location?.hash === "#library";
+
 /**
- * @param {{onState?: (state: EngineState) => void, language?: string, timeLimitMs?: number, quietMs?: number}} [options]
+ * @param {{onState?: (state: EngineState) => void, language?: string, timeLimitMs?: number, quietMs?: number, startLimitsMs?: Record<string, number>}} [options]
  * `language` in which the core answers
  */
-export function startEngine({ onState = () => {}, language = "en", timeLimitMs = TIME_LIMIT_MS, quietMs = QUIET_MS } = {}) {
+export function startEngine({
+  onState = () => {},
+  language = "en",
+  timeLimitMs = TIME_LIMIT_MS,
+  quietMs = QUIET_MS,
+  startLimitsMs = START_LIMITS_MS,
+} = {}) {
   /** @type {EngineState} */
   let state = "reading";
-  /** @type {"worker" | "main-thread"} */
-  let mode = "worker";
+  /** @type {Start} */
+  const start = libraryAsked()
+    ? { mode: "worker", source: "python", why: "asked" }
+    : { mode: "worker", source: "snapshot", why: "" };
   /** @type {Map<string, Waiting>} one place a lane; the oldest goes first */
   const waiting = new Map();
   /** @type {Waiting | null} */
   let running = null;
-  /** @type {Link | null} */
+  /** @type {import("./link.js").Link | null} */
   let link = null;
   /** @type {ReturnType<typeof setTimeout> | undefined} */
   let timer;
@@ -133,9 +128,22 @@ export function startEngine({ onState = () => {}, language = "en", timeLimitMs =
     link = null;
   };
 
+  const leaveSnapshot = (/** @type {"failed" | "slow"} */ why) => {
+    if (start.source === "snapshot") {
+      start.source = "python";
+      start.why = why;
+    }
+  };
+
   // The question that was being answered is asked once more of the new worker, unless a newer one has come.
   const crashed = () => {
+    const hope = start.source === "snapshot" && !ready; // it has not run yet, and there is another way to start it
     closeLink();
+    leaveSnapshot("failed");
+    if (hope) {
+      open();
+      return;
+    }
     crashes += 1;
     if (crashes > 1) {
       giveUp();
@@ -151,6 +159,16 @@ export function startEngine({ onState = () => {}, language = "en", timeLimitMs =
     open();
   };
 
+  const startOverTime = () => {
+    if (start.source !== "snapshot") {
+      crashed();
+      return;
+    }
+    closeLink();
+    leaveSnapshot("slow");
+    open();
+  };
+
   const overTime = () => {
     closeLink();
     settle(refusal("engine-time-limit"));
@@ -163,6 +181,7 @@ export function startEngine({ onState = () => {}, language = "en", timeLimitMs =
       if (data.kind === "ready") {
         clearTimeout(timer);
         ready = true;
+        markTimes(data.times ?? {});
         enter("ready");
         somebodyAsks();
         warmUp();
@@ -193,25 +212,27 @@ export function startEngine({ onState = () => {}, language = "en", timeLimitMs =
   };
 
   const open = async () => {
+    const { source } = start;
     try {
-      // Read side by side, the one that is needed first begun first.
-      const [engine, wasm, python] = [payload("worker"), payload("wasm"), payload("python")];
-      for (const read of [wasm, python]) {
-        read.catch(() => {}); // said where it is awaited, below
-      }
-      const opened = openLink(await engine, listener);
+      const opened = await openLink(source, listener);
       link = opened.link;
-      mode = opened.mode;
-      timer = setTimeout(crashed, START_LIMIT_MS);
-      const current = link;
-      current.postMessage({ kind: "wasm", text: await wasm });
-      current.postMessage({ kind: "python", text: await python });
+      start.mode = opened.mode;
+      timer = setTimeout(startOverTime, startLimitsMs[source]);
+      await opened.given;
       if (state === "reading") {
         enter("starting");
       }
     } catch {
+      if (source !== start.source) {
+        return; // given up already
+      }
       closeLink();
-      giveUp();
+      if (source === "snapshot") {
+        leaveSnapshot("failed");
+        open();
+      } else {
+        giveUp();
+      }
     }
   };
 
@@ -258,8 +279,8 @@ export function startEngine({ onState = () => {}, language = "en", timeLimitMs =
     get state() {
       return state;
     },
-    get mode() {
-      return mode;
+    get start() {
+      return start;
     },
   };
 }

@@ -48,13 +48,7 @@ function mustShow(lens) {
 /** @param {LensReport} lens */
 function reads(lens) {
   const { spread } = lens;
-  const repeated = spread
-    ? say("page.facts.spread", {
-        count: spread.count,
-        horizontal: spread.shown["horizontal"],
-        vertical: spread.shown["vertical"],
-      })
-    : "";
+  const repeated = spread ? say(`page.facts.spread_${spread.from}`, { count: spread.count, ...spread.shown }) : "";
   return fact("read", [lens.read ? text(lens.read) : say("page.facts.not_read"), repeated], "read");
 }
 

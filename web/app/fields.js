@@ -112,6 +112,19 @@ export const INSTRUMENT_NUMBERS = [
   field("instrument.compensator_maximum", "number"),
 ];
 
+/** What the check with a known prism settles, for those who know it otherwise. */
+export const INSTRUMENT_TARGET = [
+  choice("instrument.target_direction", ["towards-base", "away-from-base"], { empty: "towards-base" }),
+  field("instrument.mirrored", "flag"),
+];
+
+export const CHECK_COMPENSATOR = choice("page.check.compensator", ["", "none"], { label: "check_compensator", words: "check_compensator" });
+
+export const INSTRUMENT_ZERO = [
+  field("instrument.zero.x", "number", { label: "zero_x" }),
+  field("instrument.zero.y", "number", { label: "zero_y" }),
+];
+
 export const UNCERTAINTY = [
   field("instrument.uncertainty.prism", "number", { label: "u_prism" }),
   field("instrument.uncertainty.power_d", "number", { label: "u_power_d" }),

@@ -3,6 +3,7 @@
 import { button, byId, el } from "./dom.js";
 import { saveSettings, wantsKeypad } from "./settings.js";
 import { svg } from "./dom.js";
+import { startStatus } from "./start-words.js";
 import { say } from "./words.js";
 
 const MOVES = ["order", "layout", "read", "decide", "keep", "bench"];
@@ -109,11 +110,10 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
       const order = tabs[0];
       if (order) order.textContent = count ? say("page.nav.order_queries", { count }) : say("page.nav.order");
     },
-    /** @param {string} code @param {string} [mode] */
-    engine(code, mode) {
+    /** @param {string} code @param {import("./engine.js").Start} start */
+    engine(code, start) {
       // While it starts, the strip says so; here stands only what lasts.
-      const slow = code === "ready" && mode === "main-thread" ? say("page.engine.main_thread") : "";
-      starting.textContent = code === "failed" ? say("page.engine.failed") : slow;
+      starting.textContent = startStatus(code, start);
     },
     /** @param {import("./keeping.js").SaveStatus} status */
     saved(status) {

@@ -3,7 +3,7 @@
 /** @typedef {import("./types.js").Entries} Entries */
 
 export const FORMAT = "wedgewright.job/1";
-const FLAGS = new Set(["partner", "aspheric", "includes_thinning", "demonstration", "drilled"]);
+const FLAGS = new Set(["partner", "aspheric", "includes_thinning", "demonstration", "drilled", "mirrored"]);
 const SIGNED = new Set(["sphere", "cylinder"]);
 const WORDS = new Set(["in", "out", "up", "down"]);
 /** What stays when the next job is begun: the bench and its rules, not the order. */
@@ -185,6 +185,19 @@ export function nextJob(entries) {
 export function guestJob(entries, job) {
   const own = Object.entries(nextJob(entries)).map(([path, text]) => [ASIDE + path, text]);
   return { ...job, ...Object.fromEntries(own), [GUEST]: "true" };
+}
+
+/**
+ * Puts what a check of the lens meter settled into the bench, in place: of this job, and of the bench that a job from
+ * elsewhere pushed aside.
+ *
+ * @param {Entries} draft
+ * @param {Entries} fields
+ */
+export function settleBench(draft, fields) {
+  for (const prefix of draft[GUEST] ? ["", ASIDE] : [""]) {
+    for (const [path, text] of Object.entries(fields)) draft[prefix + path] = text;
+  }
 }
 
 /** @param {Entries} entries @param {string} prefix removes a branch, in place */

@@ -4,6 +4,7 @@ import { dialText, mainFacts, moreFacts } from "./facts.js";
 import { drawScene, legendMark, placeOf } from "./dial.js";
 import { button, differs, el, redraw, svg } from "./dom.js";
 import { removeBranch } from "./job.js";
+import { stepPad } from "./step-pad.js";
 import { eyeName, say, shown } from "./words.js";
 
 /**
@@ -12,18 +13,11 @@ import { eyeName, say, shown } from "./words.js";
  * @typedef {import("./facts.js").Fact} Fact
  */
 
-/** The arrows: where the target goes, seen by the observer, and the base that this is. */
-const ARROWS = /** @type {const} */ ([
-  { key: "up", right: 0, up: 1, path: "M12 4 L20 18 L4 18 Z" },
-  { key: "left", right: -1, up: 0, path: "M4 12 L18 4 L18 20 Z" },
-  { key: "down", right: 0, up: -1, path: "M12 20 L4 6 L20 6 Z" },
-  { key: "right", right: 1, up: 0, path: "M20 12 L6 4 L6 20 Z" },
-]);
-
-/** @param {Eye} eye @param {string} arrow the base a step to that side leads to */
-function baseOf(eye, arrow) {
-  if (arrow === "up" || arrow === "down") return arrow;
-  return (arrow === "right") === (eye === "right") ? "in" : "out";
+/** @param {Eye} eye @param {string} side @param {Report|null|undefined} report the base a step to that side leads to */
+export function baseOf(eye, side, report) {
+  const known = report?.[eye]?.step_bases?.[side];
+  if (known || side === "up" || side === "down") return known ?? side;
+  return (side === "right") === (eye === "right") ? "in" : "out";
 }
 
 /** @param {string} text broken, where there is no room, only before what stands in brackets */
@@ -47,13 +41,26 @@ export function factList(facts) {
   );
 }
 
+/** @param {Eye} eye @param {import("./state.js").State} state */
+export function clearKey(eye, state) {
+  return button(
+    say("page.read.clear"),
+    () =>
+      state.change((draft) => {
+        removeBranch(draft, `readings.${eye}.prism`);
+      }),
+    { class: "step clear", "aria-label": say("page.read.clear_lens", { eye: eyeName(eye) }) },
+  );
+}
+
 /**
  * @param {Eye} eye
  * @param {object} tools
  * @param {import("./state.js").State} tools.state
  * @param {ReturnType<typeof import("./steps.js").createSteps>} tools.steps
+ * @param {(eye: Eye) => void} tools.enlarge opens the large eyepiece
  */
-export function lensCard(eye, { state, steps }) {
+export function lensCard(eye, { state, steps, enlarge }) {
   const overview = /** @type {SVGSVGElement} */ (svg("svg", { class: "dial overview", role: "img", id: `dial-${eye}` }));
   const close = /** @type {SVGSVGElement} */ (svg("svg", { class: "dial close", role: "img", id: `close-${eye}` }));
   const first = el("p", { class: "hint" });
@@ -69,21 +76,6 @@ export function lensCard(eye, { state, steps }) {
     });
   }
 
-  const arrows = ARROWS.map(({ key, right, up, path }) => {
-    const base = say(`page.bases.${baseOf(eye, key)}`);
-    return button(
-      base,
-      () => steps.step(eye, right, up, fine),
-      {
-        class: `step ${key}`,
-        "data-repeats": true,
-        id: `step-${eye}-${key}`,
-        "aria-label": say("page.read.step", { eye: eyeName(eye), base }),
-      },
-      svg("svg", { viewBox: "0 0 24 24", "aria-hidden": "true" }, svg("path", { d: path })),
-      el("span", {}, base),
-    );
-  });
   const fineKey = button(
     say("page.read.fine"),
     () => {
@@ -92,13 +84,25 @@ export function lensCard(eye, { state, steps }) {
     },
     { class: "step fine", "aria-pressed": "false", id: `fine-${eye}` },
   );
-  const clear = button(
-    say("page.read.clear"),
-    () =>
-      state.change((draft) => {
-        removeBranch(draft, `readings.${eye}.prism`);
-      }),
-    { class: "step clear", "aria-label": say("page.read.clear_lens", { eye: eyeName(eye) }) },
+  const clear = clearKey(eye, state);
+  const large = button(
+    say("page.eyepiece.open"),
+    () => enlarge(eye),
+    { class: "enlarge", id: `eyepiece-${eye}`, "aria-label": say("page.eyepiece.open_lens", { eye: eyeName(eye) }) },
+  );
+  /** @type {Report|null} */
+  let last = null;
+  const pad = stepPad(
+    {
+      id: `step-${eye}`,
+      act: (right, up) => steps.step(eye, right, up, fine ? "fine" : "step"),
+      names: (side) => {
+        const base = say(`page.bases.${baseOf(eye, side, last)}`);
+        return { word: base, label: say("page.read.step", { eye: eyeName(eye), base }) };
+      },
+    },
+    fineKey,
+    clear,
   );
 
   const node = el(
@@ -108,8 +112,8 @@ export function lensCard(eye, { state, steps }) {
     el(
       "div",
       { class: "pictures" },
-      el("div", { class: "overview-place" }, overview, waiting),
-      el("div", { class: "close-place" }, close, el("div", { class: "step-keys" }, fineKey, ...arrows, clear)),
+      el("div", { class: "overview-place" }, overview, waiting, large),
+      el("div", { class: "close-place" }, close, pad.node),
     ),
     facts,
     el("details", { class: "quiet", "data-key": `more-${eye}` }, el("summary", {}, say("page.read.more")), more),
@@ -119,6 +123,8 @@ export function lensCard(eye, { state, steps }) {
     node,
     /** @param {Report|null} report */
     draw(report) {
+      last = report;
+      pad.draw();
       const lens = report?.[eye];
       const scenes = report?.scenes?.[eye];
       node.classList.toggle("empty", !lens);
@@ -142,10 +148,11 @@ function drawFacts(host, facts) {
  * @param {import("./types.js").Scene|undefined} scene
  * @param {string} id
  * @param {string} label
+ * @param {{marks: number, target: number}} [look]
  */
-function drawPicture(picture, scene, id, label) {
+export function drawPicture(picture, scene, id, label, look) {
   picture.classList.toggle("absent", !scene);
-  if (scene) drawScene(picture, scene, id);
+  if (scene) drawScene(picture, scene, id, look);
   picture.setAttribute("aria-label", label || say("page.read.no_dial"));
 }
 

@@ -3,11 +3,13 @@
 import { demonstration } from "./demonstration.js";
 import { watchDock } from "./dock.js";
 import { byId, el, redraw } from "./dom.js";
-import { copyText, download, fileName } from "./files.js";
+import { copyText } from "./files.js";
 import { shopEditions } from "./editions.js";
 import { createForm } from "./form.js";
 import { frame } from "./frame.js";
-import { fromJob, guestJob, hasOrder, nextJob, readJobFile, toJob } from "./job.js";
+import { createImagine } from "./imagine.js";
+import { guestJob, hasOrder, nextJob, toJob } from "./job.js";
+import { jobFiles } from "./job-files.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
@@ -61,7 +63,7 @@ export function startPage(startEngine, settings) {
     onState(code) {
       root.dataset["engine"] = code;
       standing.engine = code;
-      head?.engine(code, engine.mode);
+      if (head) showStart();
       foot?.draw(standing);
     },
   });
@@ -69,21 +71,27 @@ export function startPage(startEngine, settings) {
   const line = orderLine({ engine, state, settings });
   const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
   const demonstrate = invented.load;
+  const imagine = createImagine({ engine, state, refuse, draw, show: () => head?.show("read") });
   const editions = shopEditions({ engine, listed: editionsListed });
   const views = {
     order: orderView({ form, state, line: line.node, demonstrate, reopen }),
     layout: layoutView({ form, state, engine, goTo }),
-    read: readView({ form, state, steps }),
-    decide: decideView({ state, sign, print: () => window.print(), copy }),
-    keep: keepView({ newJob, demonstrate, exportFile, importText, copy, print: () => window.print(), reopen }),
-    bench: benchView({ form, settings, settingsChanged, erase, editions }),
+    read: readView({ form, state, steps, settings, imagine }),
+    decide: decideView({ form, state, engine, goTo, imagine: imagine.ask, sign, print: () => window.print(), copy }),
+    keep: keepView({ newJob, demonstrate, ...jobFiles(state), copy, print: () => window.print(), reopen }),
+    bench: benchView({ form, state, engine, settings, settingsChanged, erase, editions }),
   };
   const keypad = createKeypad({ settings, next: moveOn, setBase });
   const top = frame({ state, views, settings, toggleKeypad, drawView });
   head = top;
   const strip = verdictStrip({ show: top.show, goTo });
   foot = strip;
-  top.engine(engine.state, engine.mode);
+  showStart();
+
+  function showStart() {
+    head?.engine(engine.state, engine.start);
+    if (engine.state === "ready") views.bench.started(engine.start);
+  }
 
   function toggleKeypad() {
     keypad.toggle();
@@ -107,7 +115,7 @@ export function startPage(startEngine, settings) {
   /** @param {string} name only what is seen is drawn; the others are when they are shown */
   function drawView(name) {
     const view = views[/** @type {keyof typeof views} */ (name)];
-    if (view && "draw" in view) view.draw(standing);
+    if (view && "draw" in view) view.draw(name === "read" ? imagine.applied(standing) : standing);
   }
 
   /** @returns {Record<string, string>} what was understood, by the page's own places */
@@ -145,7 +153,7 @@ export function startPage(startEngine, settings) {
     if (!faults.length) standing.report = /** @type {Report} */ (/** @type {unknown} */ (given));
     draw();
     editions.listOnce();
-    views.layout.follow(standing, editions.all);
+    for (const view of [views.layout, views.decide]) view.follow(standing, editions.all);
     root.dataset["drawn"] = String(given.sequence ?? "");
     if (!performance.getEntriesByName("first-answer").length && !faults.length) performance.mark("first-answer");
     hash = await hashOf(JSON.stringify(built.job));
@@ -167,23 +175,6 @@ export function startPage(startEngine, settings) {
     state.replace(nextJob(state.entries));
     top.show("order");
     byId("f-id").focus();
-  }
-
-  function exportFile() {
-    download(fileName(state.entries["id"]), `${JSON.stringify(toJob(state.entries).job, null, 1)}\n`);
-  }
-
-  /** @param {string} text @returns {string} "" or what was wrong with it */
-  function importText(text) {
-    let job;
-    try {
-      job = readJobFile(text);
-    } catch {
-      return "not_json";
-    }
-    if (!job || typeof job !== "object" || /** @type {any} */ (job).format !== "wedgewright.job/1") return "not_a_job";
-    state.replace(guestJob(state.entries, fromJob(job)));
-    return "";
   }
 
   async function copy() {
@@ -262,6 +253,7 @@ export function startPage(startEngine, settings) {
     if (!control) return;
     const name = Object.entries(views).find(([, view]) => view.node.contains(control.node))?.[0];
     if (name) top.show(name);
+    views.read.reveal(control.node);
     for (let node = control.node.parentElement; node; node = node.parentElement)
       {if (node instanceof HTMLDetailsElement) node.open = true;}
     control.node.scrollIntoView({ block: "center" });
@@ -275,7 +267,7 @@ export function startPage(startEngine, settings) {
   }
 
   window.addEventListener("beforeprint", () =>
-    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()), sections: views.layout.sheet() }),
+    drawSheet(byId("sheet"), { standing, entries: state.entries, hash, at: stamp(new Date()), sections: [views.decide.sheet(), views.layout.sheet()] }),
   );
   listenToKeys({ state });
   watchDock();
@@ -286,6 +278,7 @@ export function startPage(startEngine, settings) {
       await editions.open(opened);
       showJobs();
       await keepDraft(state, opened, top.saved);
+      await views.bench.openStore(opened);
     })
     .catch(() => top.saved("off"));
 

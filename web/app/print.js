@@ -140,7 +140,7 @@ function verdictPart(verdict) {
  * @param {Entries} what.entries
  * @param {string} what.hash of the job document
  * @param {string} what.at
- * @param {HTMLElement|null} what.sections those whose panels stand open
+ * @param {(HTMLElement|null)[]} what.sections those whose panels stand open
  */
 export function drawSheet(host, { standing, entries, hash, at, sections }) {
   const { report, earlier } = standing;
@@ -179,6 +179,6 @@ export function drawSheet(host, { standing, entries, hash, at, sections }) {
       el("p", { class: "sheet-box" }, by ? `${by} · ${dateText(entries["signed.at"] ?? "")}` : ""),
     ),
     el("div", { class: "cautions" }, ...cautionLines(verdict?.cautions ?? [])),
-    sections,
+    ...sections,
   );
 }

@@ -31,22 +31,44 @@ function move(draft, from, to) {
 }
 
 /**
+ * One touch puts the reading that stands aside and begins the next. A compensator stays as it is set.
+ *
+ * @param {string} eye
+ * @param {import("./state.js").State} state
+ */
+export function againKey(eye, state) {
+  const place = `readings.${eye}`;
+  const key = button(
+    say("page.read.again"),
+    () =>
+      state.change((draft) => {
+        const next = (usedRows(draft, `${place}.repeats`).at(-1) ?? -1) + 1;
+        move(draft, `${place}.prism`, `${place}.repeats[${next}].prism`);
+        for (const part of ["amount", "base", "base.degrees", "base.side"]) {
+          const text = draft[`${place}.compensator.${part}`];
+          if (text) draft[`${place}.repeats[${next}].compensator.${part}`] = text;
+        }
+      }),
+    { class: "again" },
+  );
+  /** @param {Entries} entries */
+  function gate(entries) {
+    key.disabled = usedRows(entries, `${place}.prism`).length === 0;
+  }
+  state.subscribe(gate);
+  gate(state.entries);
+  return key;
+}
+
+/**
  * @param {string} eye
  * @param {import("./state.js").State} state
  */
 export function repeats(eye, state) {
   const place = `readings.${eye}`;
   const list = el("ul", { class: "repeats" });
-  const again = button(say("page.read.again"), () =>
-    state.change((draft) => {
-      const next = (usedRows(draft, `${place}.repeats`).at(-1) ?? -1) + 1;
-      move(draft, `${place}.prism`, `${place}.repeats[${next}].prism`);
-      move(draft, `${place}.compensator`, `${place}.repeats[${next}].compensator`);
-    }),
-  );
   /** @param {Entries} entries */
   function draw(entries) {
-    again.disabled = usedRows(entries, `${place}.prism`).length === 0;
     redraw(
       list,
       ...usedRows(entries, `${place}.repeats`).map((row, index) =>
@@ -67,5 +89,5 @@ export function repeats(eye, state) {
   }
   state.subscribe(draw);
   draw(state.entries);
-  return el("div", { class: "repeat" }, again, list);
+  return el("div", { class: "repeat" }, againKey(eye, state), list);
 }

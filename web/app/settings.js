@@ -12,6 +12,7 @@ const KEY = "wedgewright.settings";
  * @property {"360"|"180"} bases
  * @property {"iso"|"day"|"day-point"|"month"} date order and signs of day, month and year
  * @property {"any"|"a4"|"letter"} paper
+ * @property {"right"|"left"} hand the side of the large eyepiece's keys
  */
 
 /** @type {Settings} */
@@ -24,6 +25,7 @@ const DEFAULTS = {
   bases: "360",
   date: "iso",
   paper: "any",
+  hand: "right",
 };
 
 /** @returns {Settings} */

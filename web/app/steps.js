@@ -32,7 +32,7 @@ export function createSteps(engine, state, refused) {
   return {
     /** @param {string} eye @param {{x: string, y: string}} place */
     touch: (eye, place) => ask(eye, { do: "touch", ...place }),
-    /** @param {string} eye @param {number} right @param {number} up @param {boolean} fine */
-    step: (eye, right, up, fine) => ask(eye, { do: "step", right, up, fine }),
+    /** @param {string} eye @param {number} right @param {number} up @param {"step"|"tenth"|"fine"} size */
+    step: (eye, right, up, size) => ask(eye, { do: "step", right, up, size }),
   };
 }

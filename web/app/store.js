@@ -1,19 +1,22 @@
 /**
- * What this tablet keeps: the draft in two slots by turns, the signed jobs, and the shop's own editions. Strict durability; a promise is kept only
+ * What this tablet keeps: the draft in two slots by turns, the signed jobs, the shop's own editions, and what the
+ * check of its lens meter found. Strict durability; a promise is kept only
  * when the write is complete. Storage is shared by all pages opened from disk, hence the name.
  */
 
 const NAME = "wedgewright";
-const STORES = ["drafts", "jobs", "editions"];
+const VERSION = 2; // 1 had no place for the bench
+const STORES = ["drafts", "jobs", "editions", "bench"];
 
 /** @typedef {Awaited<ReturnType<typeof openStore>>} Store */
 
 /** @returns {Promise<IDBDatabase>} */
 function open() {
   return new Promise((resolve, reject) => {
-    const request = indexedDB.open(NAME, 1);
+    const request = indexedDB.open(NAME, VERSION);
     request.onupgradeneeded = () => {
-      for (const name of STORES) request.result.createObjectStore(name);
+      const { objectStoreNames: there } = request.result;
+      for (const name of STORES) if (!there.contains(name)) request.result.createObjectStore(name);
     };
     request.onsuccess = () => resolve(request.result);
     request.onerror = () => reject(request.error);

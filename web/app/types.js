@@ -46,7 +46,8 @@
  * @property {{key: string, horizontal: {shown: string}, vertical: {shown: string}}|null} [meter]
  * @property {Prism|null} [read]
  * @property {Prism|null} [error]
- * @property {{count: number, shown: Shown}|null} [spread]
+ * @property {{count: number, from: "readings"|"bench", shown: Shown}|null} [spread]
+ * @property {Record<string, string>} [step_bases] the base that a step of the target to each side leads to
  *
  * @typedef {object} Check
  * @property {string} id
@@ -84,6 +85,7 @@
  * @property {LensReport} [left]
  * @property {{vertical?: PairPart, horizontal?: PairPart, thinning_found?: {shown: string}}} [pair]
  * @property {Verdict} [verdict]
+ * @property {{steps: Record<string, string>, checked_on: string|null}} [instrument]
  * @property {({eye: string} & Said)|null} [read_first]
  * @property {Record<string, string>} [echo]
  * @property {Record<string, string[]>} [order_lines]

@@ -9,8 +9,12 @@ import { mkdir, readFile, rm, writeFile } from "node:fs/promises";
 import { createRequire } from "node:module";
 import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
+import { packed, wide } from "./payload.mjs";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
-import { base64OfGzip, buildPythonZip } from "./python.mjs";
+import { namesOf, withUsedExports } from "./program.mjs";
+import { buildPythonZip } from "./python.mjs";
+import { usedScripts } from "./scripts.mjs";
+import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
 
@@ -18,7 +22,7 @@ const pyodideFolder = dirname(createRequire(import.meta.url).resolve("pyodide/pa
 
 /**
  * @param {string} folder
- * @param {Record<string, string>} files path below the folder → text
+ * @param {Record<string, string | Uint8Array>} files path below the folder → contents
  */
 async function writeFolder(folder, files) {
   await rm(folder, { recursive: true, force: true });
@@ -35,6 +39,24 @@ async function notices(folder) {
   return texts.join(`\n${"=".repeat(120)}\n\n`);
 }
 
+/**
+ * Pyodide's program and scripts, cut to what is used here, and round them the engine of the page and the one that makes
+ * the page's snapshot.
+ *
+ * @param {string} web
+ */
+async function buildEngine(web) {
+  const read = (/** @type {string} */ name) => readFile(join(pyodideFolder, name), "utf8");
+  const { info } = JSON.parse(await read("pyodide-lock.json"));
+  const whole = `${await read("pyodide.asm.js")}\n${await read("pyodide.js")}`;
+  const worker = join(web, "worker", "main.js");
+  const other = join(web, "build", "snapshot-entry.js");
+  const exported = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), whole + (await readFile(other, "utf8")));
+  const scripts = await usedScripts(whole, namesOf(exported));
+  const [engine, maker] = [await engineSource(scripts, info, worker), await engineSource(scripts, info, other)];
+  return { program: withUsedExports(exported, engine + maker), engine, maker };
+}
+
 async function main() {
   const { values } = parseArgs({
     options: {
@@ -49,15 +71,15 @@ async function main() {
   const core = resolve(values.core);
   const web = resolve(values.web);
   await writeWords(core, web);
-  const wasm = base64OfGzip(await readFile(join(pyodideFolder, "pyodide.asm.wasm")));
-  const python = base64OfGzip(await buildPythonZip(pyodideFolder, core));
-  const engine = await engineSource(pyodideFolder, join(web, "worker", "main.js"));
+  const { program, engine, maker } = await buildEngine(web);
+  const library = await buildPythonZip(pyodideFolder, core);
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),
     ...(await buildScripts(web)),
     engine,
-    wasm,
-    python,
+    wasm: packed(program),
+    snapshot: packed(await buildSnapshot(maker, program, library)),
+    python: packed(library),
   };
   await writeFolder(resolve(values.out), {
     "index.html": folderPage(page),
@@ -65,12 +87,13 @@ async function main() {
     "app.css": page.style,
     "print.css": page.printStyle,
     "engine/worker.js": engine,
-    "engine/wasm.js": `globalThis.wedgewrightWasm = "${wasm}";\n`,
-    "engine/python.js": `globalThis.wedgewrightPython = "${python}";\n`,
+    "engine/wasm.js": wide(`globalThis.wedgewrightWasm = "${page.wasm}";\n`),
+    "engine/snapshot.js": wide(`globalThis.wedgewrightSnapshot = "${page.snapshot}";\n`),
+    "engine/python.js": wide(`globalThis.wedgewrightPython = "${page.python}";\n`),
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),
   });
-  await writeFolder(resolve(values.single), { "wedgewright.html": singlePage(page) });
+  await writeFolder(resolve(values.single), { "wedgewright.html": wide(singlePage(page)) });
 }
 
 try {

@@ -16,7 +16,13 @@ const given = {
 };
 const exit = dressAsWorker();
 const page = /** @type {any} */ (globalThis);
-Date.now = () => 315532800000; // 1980-01-01, as in the zip
+const NOW = 315532800000; // 1980-01-01, as in the zip
+page.Date = class extends Date {
+  static now = () => NOW;
+  constructor(/** @type {any[]} */ ...given) {
+    super(...(given.length > 0 ? given : [NOW]));
+  }
+};
 performance.now = () => 0;
 crypto.getRandomValues = (/** @type {any} */ array) => array.fill(7);
 Object.defineProperty(page, "navigator", { value: { userAgent: "", languages: [] } });

@@ -12,6 +12,7 @@ import { join } from "node:path";
  * @property {string} printStyle
  * @property {string} engine
  * @property {string} wasm
+ * @property {string} snapshot
  * @property {string} python
  */
 
@@ -80,10 +81,12 @@ export function singlePage(page) {
     `<script>${page.app}</script>`,
     `<script>${page.engine}</script>`,
     `<script type="application/octet-stream" id="wedgewright-wasm">${page.wasm}</script>`,
+    `<script type="application/octet-stream" id="wedgewright-snapshot">${page.snapshot}</script>`,
     `<script type="application/octet-stream" id="wedgewright-python">${page.python}</script>`,
     "</body>",
   ].join("\n");
   let html = replaceOnce(page.html, "<!-- policy -->", policy(scripts, styles));
+  html = replaceOnce(html, '<meta charset="utf-8">', ""); // its first bytes say it
   html = replaceOnce(html, "<html ", "<html data-single ");
   html = replaceOnce(html, '<link rel="stylesheet" href="app.css">', `<style>${page.style}</style>`);
   html = replaceOnce(html, '<link rel="stylesheet" href="print.css" media="print">', `<style media="print">${page.printStyle}</style>`);

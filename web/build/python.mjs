@@ -8,14 +8,6 @@
 import { readdir, readFile } from "node:fs/promises";
 import { join } from "node:path";
 import { pathToFileURL } from "node:url";
-import { gzipSync } from "node:zlib";
-
-/** @param {Uint8Array} bytes */
-export function base64OfGzip(bytes) {
-  const packed = gzipSync(bytes, { level: 9 });
-  packed[9] = 255; // the header's "made on" byte differs between systems
-  return packed.toString("base64");
-}
 
 /**
  * @param {string} pyodideFolder

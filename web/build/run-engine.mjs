@@ -2,26 +2,23 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { runInThisContext } from "node:vm";
+import { bytesOf, inflatedInPieces } from "../worker/unpack.js";
+import { dressAsWorker } from "./dress.mjs";
+
+/** A script as a browser reads it, by its first bytes. @param {string} file */
+const scriptText = (file) => new TextDecoder(readFileSync(file)[0] === 0xff ? "utf-16le" : "utf-8").decode(readFileSync(file));
 
 /**
  * @param {string} folder the built folder
+ * @param {"snapshot" | "python"} source what it starts from
  * @returns {Promise<{ask: (request: object) => Promise<any>, exit: (code: number) => void}>}
  */
-export async function startBuiltEngine(folder) {
-  for (const name of ["worker", "wasm", "python"]) {
-    runInThisContext(readFileSync(join(folder, "engine", `${name}.js`), "utf8"), { filename: `${name}.js` });
+export async function startBuiltEngine(folder, source) {
+  for (const name of ["worker", "wasm", source]) {
+    runInThisContext(scriptText(join(folder, "engine", `${name}.js`)), { filename: `${name}.js` });
   }
+  const exit = dressAsWorker();
   const page = /** @type {any} */ (globalThis);
-  const exit = process.exit.bind(process);
-  // Pyodide asks by these names where it runs; without `process` and with the rest it is as in a worker.
-  delete page.process;
-  page.self = page;
-  page.location = new URL("https://offline.invalid/");
-  page.WorkerGlobalScope = class {
-    static [Symbol.hasInstance]() {
-      return true;
-    }
-  };
 
   /** @type {Map<number, (text: string) => void>} */
   const answers = new Map();
@@ -39,8 +36,10 @@ export async function startBuiltEngine(folder) {
     };
   });
   page.wedgewrightEngine(port);
-  port.onmessage({ data: { kind: "wasm", text: page.wedgewrightWasm } });
-  port.onmessage({ data: { kind: "python", text: page.wedgewrightPython } });
+  port.onmessage({ data: { kind: "wasm", body: page.wedgewrightWasm } });
+  const body =
+    source === "snapshot" ? await inflatedInPieces(bytesOf(page.wedgewrightSnapshot)) : page.wedgewrightPython;
+  port.onmessage({ data: { kind: source, body } });
   await ready;
 
   let id = 0;

@@ -2,38 +2,46 @@
  * The engine's side of the conversation with the page. It runs in a worker, or on the page's own thread where workers are
  * refused; it knows a port to listen at and nothing of the page.
  *
- * From the page: {kind: "wasm", text} and one of {kind: "snapshot" | "python", text}, then {kind: "ask", id, text}.
- * To the page: {kind: "ready"}, {kind: "answer", id, text}, {kind: "failed", message}.
+ * From the page: {kind: "wasm", body} and one of {kind: "snapshot" | "python", body}, then {kind: "ask", id, text}.
+ * To the page: {kind: "ready", times}, {kind: "answer", id, text}, {kind: "failed", message}.
  */
-import { startFromLibrary, startFromSnapshot } from "./python.js";
+import { compiled, offlinePyodide, startFromLibrary, startFromSnapshot } from "./python.js";
 
 /**
  * @typedef {{onmessage: ((event: MessageEvent) => void) | null, postMessage: (message: object) => void}} Port
  */
+
+/** When each part of the start was done, by the clock that all threads share. @returns {Record<string, number>} */
+function times() {
+  const marks = [...performance.getEntriesByType("mark"), { name: "core-ready", startTime: performance.now() }];
+  return Object.fromEntries(marks.map(({ name, startTime }) => [name, performance.timeOrigin + startTime]));
+}
 
 /**
  * @param {Port} port
  * @param {import("./python.js").PyodideBehind} pyodideBehind
  */
 export function serve(port, pyodideBehind) {
-  /** @type {Record<string, (text: string) => void>} */
+  /** @type {Record<string, (body: any) => void>} */
   const arrived = {};
-  /** @type {(kind: string) => Promise<string>} */
+  /** @type {(kind: string) => Promise<any>} */
   const payload = (kind) => new Promise((resolve) => (arrived[kind] = resolve));
-  const wasm = payload("wasm");
+  const program = payload("wasm").then(compiled);
+  program.catch(() => {}); // reported where it is awaited
+  const load = Promise.resolve().then(() => offlinePyodide(pyodideBehind, program));
   // Whichever of the two comes says which way to start.
   const handle = Promise.race([
-    payload("snapshot").then((text) => startFromSnapshot(pyodideBehind, wasm, text)),
-    payload("python").then((text) => startFromLibrary(pyodideBehind, wasm, text)),
+    payload("snapshot").then(async (kept) => startFromSnapshot(await load, kept)),
+    payload("python").then(async (text) => startFromLibrary(await load, text)),
   ]);
   handle.then(
-    () => port.postMessage({ kind: "ready" }),
+    () => port.postMessage({ kind: "ready", times: times() }),
     (error) => port.postMessage({ kind: "failed", message: String(error) }),
   );
   port.onmessage = async ({ data }) => {
     const take = arrived[data.kind];
     if (take) {
-      take(data.text);
+      take(data.body);
       return;
     }
     try {

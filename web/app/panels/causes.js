@@ -1,49 +1,62 @@
-/** What happened: the likely causes, each with its probability, and the same summed by place. */
+/** What happened: the likely causes, each with its probability and the causes it cannot be told from. */
 
-import { button, el, redraw } from "../dom.js";
+import { button, el, redraw, svg } from "../dom.js";
 import { say, shown } from "../words.js";
 
+/** @typedef {{code: string, eyes: string[]}} Part a cause and the lenses it is in */
+/** @typedef {Part & {with: Part[]}} Name one cause, or two that came together */
 /**
  * @typedef {object} Cause
  * @property {string} code
  * @property {string[]} eyes
  * @property {number} probability
- * @property {import("../types.js").Said} sentence
  * @property {{shown: string}|null} estimate
- * @property {{sentence: import("../types.js").Said}[]} tied_with
+ * @property {Name[]} tied_with causes that predict the same readings
  * @property {Record<string, string>} shown
  */
 
 const MOST = 6;
+/** What has no picture of its own. */
+const UNSEEN = new Set(["as-ordered", "none-of-these", "all-others"]);
 
 /** @param {number} probability a bar beside the figure, for those who look rather than read */
 function bar(probability) {
-  return el("meter", { min: 0, max: 1, value: probability, "aria-hidden": "true", tabindex: -1 });
+  return svg(
+    "svg",
+    { class: "share-bar", viewBox: "0 0 1 1", preserveAspectRatio: "none", "aria-hidden": "true", focusable: "false" },
+    svg("rect", { width: probability, height: 1 }),
+  );
 }
 
-/** @param {import("../types.js").Said} said */
-const sentenceOf = ({ code, params }) => say(`causes.${code}`, params);
+/** @param {Part} part */
+function partName({ code, eyes }) {
+  return say(`causes.${code}`, { eye: say(`eyes.${eyes.length > 1 ? "both" : eyes[0]}`) });
+}
+
+/** @param {Name} name */
+const causeName = (name) => [name, ...name.with].map(partName).join(" + ");
 
 /** @param {Cause} cause @param {(cause: Cause) => void} imagine */
 function causeNode(cause, imagine) {
-  const { code, probability, sentence, estimate, tied_with: ties } = cause;
+  const { code, eyes, probability, estimate, tied_with: ties, shown: texts } = cause;
+  const tied = ties.map(causeName).join("; ");
   return el(
     "li",
     { class: "cause" },
-    el("span", { class: "cause-share" }, bar(probability), el("strong", {}, shown(cause.shown["probability"]))),
+    el("span", { class: "cause-share" }, bar(probability), el("strong", {}, shown(texts["probability"]))),
     el(
       "span",
       { class: "cause-said" },
-      el("span", {}, sentenceOf(sentence)),
+      el("span", {}, shown(texts["text"])),
       estimate ? el("span", { class: "more" }, shown(estimate.shown)) : null,
-      ties.length ? el("span", { class: "more" }, say("page.causes.ties", { causes: ties.map((one) => sentenceOf(one.sentence)).join(" ") })) : null,
+      tied ? el("span", { class: "more" }, say("page.causes.ties", { causes: tied })) : null,
     ),
-    cause.eyes.length
-      ? button(say("page.causes.imagine"), () => imagine(cause), {
-          "aria-label": say("page.causes.imagine_named", { cause: sentenceOf(sentence) }),
-          "data-key": `imagine-${code}-${cause.eyes.join("-")}`,
-        })
-      : null,
+    UNSEEN.has(code)
+      ? null
+      : button(say("page.causes.imagine"), () => imagine(cause), {
+          "aria-label": say("page.causes.imagine_named", { cause: texts["text"] }),
+          "data-key": `imagine-${code}-${eyes.join("-")}`,
+        }),
   );
 }
 
@@ -55,18 +68,9 @@ export function causeList({ imagine }) {
     /** @param {any} report */
     show(report) {
       const causes = /** @type {Cause[]} */ (report?.causes ?? []);
-      const places = /** @type {{place: string, shown: string}[]} */ (report?.cause_places ?? []);
       redraw(
         node,
         causes.length ? el("ol", { class: "cause-list" }, ...causes.slice(0, MOST).map((cause) => causeNode(cause, imagine))) : null,
-        places.length
-          ? el(
-              "p",
-              { class: "cause-places" },
-              el("strong", {}, say("page.causes.places")),
-              ...places.map(({ place, shown: share }) => el("span", {}, `${say(`cause_places.${place}`)} ${shown(share)}`)),
-            )
-          : null,
         causes.length ? el("p", { class: "help" }, say("page.causes.practice")) : null,
       );
     },

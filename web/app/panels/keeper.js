@@ -6,11 +6,10 @@
 /**
  * @typedef {import("./content.js").Section} Section
  * @typedef {import("../types.js").Scene} Scene
- * @typedef {{sections?: Record<string, Section|undefined>, scenes?: Record<string, Record<string, Scene>|undefined>, right?: any, left?: any}} SectionReport
+ * @typedef {{sections?: Record<string, Section|undefined>, scenes?: Record<string, Record<string, Scene>|undefined>, right?: any, left?: any, [name: string]: any}} SectionReport
  * @typedef {{report: SectionReport, missing: string[]}} Kept
  */
 
-const LANE = "sections";
 const MOST = 12;
 /** Long enough for the next keystroke of a person who types: their answer comes first. */
 const PAUSE_MS = 200;
@@ -23,6 +22,8 @@ const PAUSE_MS = 200;
  */
 function withSection(report, name, given) {
   return {
+    ...report,
+    [name]: given[name],
     sections: { ...report?.sections, [name]: given.sections?.[name] },
     scenes: { ...report?.scenes, [name]: given.scenes?.[name] },
     right: { ...report?.right, [name]: given.right?.[name] },
@@ -33,12 +34,13 @@ function withSection(report, name, given) {
 /**
  * @param {object} tools
  * @param {Pick<import("../types.js").Engine, "ask"|"cancel">} tools.engine
+ * @param {string} tools.lane of its questions
  * @param {string[]} tools.names of the sections, in the order of their panels
  * @param {() => string[]} tools.first the sections that are looked at: asked for before the others
  * @param {() => void} tools.changed there is another answer to show
  * @param {number} [tools.pauseMs]
  */
-export function createKeeper({ engine, names, first, changed, pauseMs = PAUSE_MS }) {
+export function createKeeper({ engine, lane, names, first, changed, pauseMs = PAUSE_MS }) {
   /** @type {Map<string, Kept>} the oldest first */
   const kept = new Map();
   /** @type {{key: string, job: unknown, editions: unknown[]}|null} */
@@ -69,7 +71,7 @@ export function createKeeper({ engine, names, first, changed, pauseMs = PAUSE_MS
       const { report, missing } = kept.get(key) ?? { report: {}, missing: names };
       const name = first().find((open) => missing.includes(open)) ?? missing[0];
       if (name === undefined) break;
-      const given = await engine.ask({ do: "report", job, scenes: true, editions, sections: [name] }, { lane: LANE });
+      const given = await engine.ask({ do: "report", job, scenes: true, editions, sections: [name] }, { lane });
       const answer = given && !given["errors"] ? /** @type {SectionReport} */ (given) : null;
       if (answer) keep(key, { report: withSection(report, name, answer), missing: missing.filter((other) => other !== name) });
       if (round !== own) return;
@@ -103,7 +105,7 @@ export function createKeeper({ engine, names, first, changed, pauseMs = PAUSE_MS
       clearTimeout(timer);
       timer = undefined;
       round = null;
-      engine.cancel(LANE);
+      engine.cancel(lane);
     },
     /** @param {unknown} job @param {unknown[]} editions the job whose sections are to be shown */
     follow(job, editions) {

@@ -5,11 +5,10 @@ import { removeBranch } from "../job.js";
 import { usedRows } from "../prism-rows.js";
 import { say, shown } from "../words.js";
 
-/** @typedef {import("../types.js").Said} Said */
-/** @typedef {{result: string, sentence: Said, leads_to: {sentence: Said, shown: string}[]}} Result */
+/** @typedef {{result: string, sentence: import("../types.js").Said, leads_to: {text: string}[]}} Result */
 
-/** @param {Said} said @param {string} group */
-const saying = ({ code, params }, group) => say(`${group}.${code}`, params);
+/** @param {string} code @param {string|undefined} eye */
+const lookText = (code, eye) => say(`looks.${code}`, { eye: eye ? say(`eyes.${eye}`) : "" });
 
 /** @param {{state: import("../state.js").State}} tools */
 export function lookCard({ state }) {
@@ -32,8 +31,8 @@ export function lookCard({ state }) {
     return el(
       "li",
       { class: "look-result" },
-      button(saying(sentence, "look_results"), () => enter(look, result), { "data-key": `look-${look.look}-${result}` }),
-      el("span", { class: "more" }, leads.map((one) => `${saying(one.sentence, "causes")} ${shown(one.shown)}`).join("; ")),
+      button(say(`look_results.${sentence.code}`, sentence.params), () => enter(look, result), { "data-key": `look-${look.look}-${result}` }),
+      el("span", { class: "more" }, leads.map((one) => shown(one.text)).join("; ")),
     );
   }
 
@@ -46,7 +45,7 @@ export function lookCard({ state }) {
         next,
         ...(look?.look
           ? [
-              el("p", { class: "look-said" }, saying(look.sentence, "looks")),
+              el("p", { class: "look-said" }, say(`looks.${look.sentence.code}`, look.sentence.params)),
               el("ul", { class: "look-results" }, ...look.results.map((/** @type {Result} */ one) => resultNode(look, one))),
             ]
           : []),
@@ -60,8 +59,8 @@ export function lookCard({ state }) {
           {},
           ...rows.map((row) => {
             const place = `looks[${row}]`;
-            const { [`${place}.look`]: name, [`${place}.result`]: result } = state.entries;
-            const text = say(`look_results.${name}.${result}`);
+            const { [`${place}.look`]: name = "", [`${place}.eye`]: eye, [`${place}.result`]: result } = state.entries;
+            const text = say("page.looks.entered", { look: lookText(name, eye), result: say(`look_results.${name}.${result}`) });
             return el(
               "li",
               {},

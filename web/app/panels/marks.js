@@ -28,6 +28,8 @@ const GLYPHS = {
   ],
   asked: [["polygon", [[0, -7], [7, 0], [0, 7], [-7, 0]], "solid"]],
   "reading-point": [["polygon", [[0, -7], [7, 6], [-7, 6]]]],
+  "old-dot": [["circle", { r: 5 }]],
+  "new-dot": [["circle", { r: 5 }, "solid"]],
   thickest: [["rect", { x: -5, y: -5, width: 10, height: 10 }, "solid"]],
   thinnest: [["rect", { x: -5, y: -5, width: 10, height: 10 }]],
 };
@@ -35,7 +37,7 @@ const PLAIN = /** @type {Stroke[]} */ ([["circle", { r: 4 }, "solid"]]);
 const LARGEST_PIXEL = 0.22;
 /** Labels that stand beside the place they name, not on it. */
 const BESIDE = new Set(["asked", "reading-point"]);
-const FILLED = new Set(["zone"]);
+const FILLED = new Set(["zone", "region"]);
 
 /** @param {[number, number][]} points in mm, y up */
 function pointsOf(points) {

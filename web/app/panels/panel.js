@@ -2,21 +2,27 @@
 
 import { el, redraw } from "../dom.js";
 import { EYES } from "../types.js";
+import { causeList } from "./causes.js";
 import { say, shown } from "../words.js";
 import { asksOf, notesOf, tableOf, titleOf } from "./content.js";
 import { groupsOf } from "./groups.js";
+import { lookCard } from "./look.js";
 import { panelName } from "./names.js";
 import { captionOf, commonSize, createPicture, legendOf } from "./picture.js";
-import { pointList, putPoint } from "./points.js";
+import { pointLists, putPoint } from "./points.js";
 
 /**
  * @typedef {import("./keeper.js").SectionReport} SectionReport
  * @typedef {import("../types.js").Scene} Scene
- * @typedef {{form: import("../form.js").Form, state: import("../state.js").State, goTo: (field: string) => void}} Tools
+ * @typedef {{form: import("../form.js").Form, state: import("../state.js").State, goTo: (field: string) => void, imagine: (cause: {code: string, eyes: string[]}) => void}} Tools
  */
 
 /** @type {import("./content.js").Section} what is shown of a section while there is no answer */
 const NOTHING = { title: { code: "" }, rows: [], asks: [], notes: [] };
+/** @type {Record<string, (tools: Tools) => {node: HTMLElement, show: (report: SectionReport|null) => void}>} what only one panel has */
+const OWN = { field: pointLists, causes: causeList, look: lookCard };
+/** Rows that the panel shows in its own way; on paper they stand in the table. */
+const SAID_ELSEWHERE = new Set(["field.point", "causes.first", "causes.second", "causes.third", "causes.as-ordered", "look.result", "look.other"]);
 const PLACES = /** @type {const} */ (["right", "left", "pair"]);
 
 /** @param {string} name @param {Tools} tools */
@@ -56,7 +62,7 @@ export function createPanel(name, tools) {
   const { form, state, goTo } = tools;
   const answer = el("span", { class: "panel-answer" });
   const pictures = picturesOf(name, tools);
-  const points = name === "field" ? EYES.map((eye) => ({ eye, ...pointList(eye, form, state) })) : [];
+  const own = OWN[name]?.(tools);
   const [table, notes, asks] = [el("div"), el("div"), el("div")];
   /** @type {SectionReport|null} */
   let report = null;
@@ -73,7 +79,7 @@ export function createPanel(name, tools) {
     },
     el("summary", {}, el("span", { class: "panel-name" }, panelName(name)), answer),
     pictures.node,
-    points.length ? el("div", { class: "pair" }, ...points.map((list) => list.node)) : null,
+    own?.node,
     table,
     asks,
     el("div", { class: "groups" }, ...groupsOf(name, form, state)),
@@ -90,10 +96,9 @@ export function createPanel(name, tools) {
   function drawBody() {
     stale = false;
     const section = report?.sections?.[name] ?? NOTHING;
-    // Each point stands with its own fields; the table need not say it again.
-    const rows = section.rows.filter(({ code }) => code !== "field.point");
+    const rows = section.rows.filter(({ code }) => !SAID_ELSEWHERE.has(code));
     pictures.show(report?.scenes?.[name]);
-    for (const { eye, show } of points) show(report?.[eye]?.field?.points ?? []);
+    own?.show(report);
     redraw(table, tableOf(rows, panelName(name)));
     redraw(notes, notesOf(section.notes));
     redraw(asks, asksOf(name, section.asks, { goTo, take }));

@@ -37,16 +37,17 @@ export function viewOf({ extent, unit }, [across, along], pixel) {
 }
 
 /** @param {[number, number, number, number]} view @param {number} pixel */
-function scaleBar([x, y, , height], pixel) {
+function scaleBar([x, y, width, height], pixel) {
+  const [length, word] = width > 2 * BAR_MM ? [BAR_MM, "scale"] : [BAR_MM / 10, "scale_small"];
   const low = y + height - 6 * pixel;
   const start = x + 4 * pixel;
   return svg(
     "g",
     { class: "scale-bar" },
-    svg("line", { x1: start, y1: low, x2: start + BAR_MM, y2: low }),
+    svg("line", { x1: start, y1: low, x2: start + length, y2: low }),
     svg("line", { x1: start, y1: low - 4 * pixel, x2: start, y2: low + 4 * pixel }),
-    svg("line", { x1: start + BAR_MM, y1: low - 4 * pixel, x2: start + BAR_MM, y2: low + 4 * pixel }),
-    svg("text", { class: "after", x: start + BAR_MM + 6 * pixel, y: low - 3 * pixel }, say("page.panels.scale")),
+    svg("line", { x1: start + length, y1: low - 4 * pixel, x2: start + length, y2: low + 4 * pixel }),
+    svg("text", { class: "after", x: start + length + 6 * pixel, y: low - 3 * pixel }, say(`page.panels.${word}`)),
   );
 }
 

@@ -4,6 +4,7 @@ import { button, el, redraw } from "../dom.js";
 import { changing } from "../form.js";
 import { removeBranch } from "../job.js";
 import { usedRows } from "../prism-rows.js";
+import { EYES } from "../types.js";
 import { eyeName, say } from "../words.js";
 import { point } from "./fields.js";
 
@@ -51,7 +52,7 @@ function readThere(found) {
  * @param {import("../form.js").Form} form
  * @param {import("../state.js").State} state
  */
-export function pointList(eye, form, state) {
+function pointList(eye, form, state) {
   /** @type {HTMLElement[]} */
   let results = [];
   const rows = el("div", { class: "point-rows" });
@@ -100,6 +101,18 @@ export function pointList(eye, form, state) {
     show(found) {
       results.forEach((place, index) => redraw(place, ...readThere(found[index])));
       clear.hidden = results.length === 0;
+    },
+  };
+}
+
+/** @param {{form: import("../form.js").Form, state: import("../state.js").State}} tools the points of both lenses */
+export function pointLists({ form, state }) {
+  const lists = EYES.map((eye) => ({ eye, ...pointList(eye, form, state) }));
+  return {
+    node: el("div", { class: "pair" }, ...lists.map((list) => list.node)),
+    /** @param {any} report */
+    show(report) {
+      for (const { eye, show } of lists) show(report?.[eye]?.field?.points ?? []);
     },
   };
 }

@@ -4,8 +4,11 @@ import { button, card, el, redraw } from "../dom.js";
 import { faultText } from "../faults.js";
 import { choiceControl } from "../controls.js";
 import * as fields from "../fields.js";
+import { benchRecord } from "../bench-record.js";
+import { instrumentCheck } from "../instrument-check.js";
 import { readFile } from "../job.js";
 import { LANGUAGES } from "../language.js";
+import { startSentences } from "../start-words.js";
 import { say } from "../words.js";
 
 /**
@@ -15,8 +18,12 @@ import { say } from "../words.js";
  * @param {() => void} tools.settingsChanged
  * @param {() => void} tools.erase
  * @param {ReturnType<typeof import("../editions.js").shopEditions>} tools.editions
+ * @param {import("../state.js").State} tools.state
+ * @param {import("../types.js").Engine} tools.engine
  */
-export function benchView({ form, settings, settingsChanged, erase, editions }) {
+export function benchView({ form, state, engine, settings, settingsChanged, erase, editions }) {
+  const record = benchRecord({ state });
+  const check = instrumentCheck({ form, state, engine, taken: record.keep });
   const shop = shopCard(editions);
   /** @param {"theme"|"language"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
   const setting = (name, values) => {
@@ -30,6 +37,7 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
     control.show(settings[name]);
     return control.node;
   };
+  const started = el("p", { class: "help", id: "started" });
   const confirm = el(
     "div",
     { class: "confirm", hidden: true },
@@ -46,6 +54,13 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
   );
   return {
     showEditions: shop.show,
+    /** @param {import("../engine.js").Start} start */
+    started: (start) => (started.textContent = startSentences(start).join(" ")),
+    openStore: record.open,
+    draw() {
+      record.draw();
+      check.ask();
+    },
     node: el(
       "div",
       { class: "view bench" },
@@ -55,7 +70,15 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         el("p", { class: "help" }, say("page.bench.meter_help")),
         ...form.fields(fields.INSTRUMENT),
         el("div", { class: "grid four" }, ...form.fields(fields.INSTRUMENT_NUMBERS)),
+        el(
+          "details",
+          { class: "quiet", "data-key": "instrument-settled" },
+          el("summary", {}, say("page.check_bench.settled")),
+          ...form.fields(fields.INSTRUMENT_TARGET),
+          el("div", { class: "grid two" }, ...form.fields(fields.INSTRUMENT_ZERO)),
+        ),
       ),
+      card("bench-check", say("page.check_bench.title"), el("p", { class: "help" }, say("page.check_bench.help")), record.node, check.node),
       card(
         "bench-uncertainty",
         say("page.bench.uncertainty"),
@@ -75,6 +98,7 @@ export function benchView({ form, settings, settingsChanged, erase, editions }) 
         setting("date", ["iso", "day", "day-point", "month"]),
         setting("paper", ["any", "a4", "letter"]),
       ),
+      card("bench-start", say("page.bench.start"), started),
       card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
     ),
   };

@@ -3,6 +3,8 @@
 import { checkList } from "../checks.js";
 import { button, card, el, redraw } from "../dom.js";
 import { noteList } from "../notes.js";
+import { createShelf } from "../panels/shelf.js";
+import { WHY } from "../section-names.js";
 import { outcomeSymbol } from "../symbols.js";
 import { outcomeOf, sentenceOf } from "../verdict.js";
 import { dateText, say, shown } from "../words.js";
@@ -88,12 +90,17 @@ export function cautionLines(codes) {
 
 /**
  * @param {object} tools
+ * @param {import("../form.js").Form} tools.form
  * @param {import("../state.js").State} tools.state
+ * @param {import("../types.js").Engine} tools.engine
+ * @param {(field: string) => void} tools.goTo
+ * @param {(cause: {code: string, eyes: string[]}) => void} tools.imagine
  * @param {(initials: string) => void} tools.sign
  * @param {() => void} tools.print
  * @param {() => void} tools.copy
  */
-export function decideView({ state, sign, print, copy }) {
+export function decideView({ form, state, engine, goTo, imagine, sign, print, copy }) {
+  const shelf = createShelf({ names: WHY, lane: "why", seen: () => !node.hidden, form, state, engine, goTo, imagine });
   const head = el("div", { class: "decide-head" });
   const reasons = el("div");
   const notes = el("div");
@@ -139,6 +146,7 @@ export function decideView({ state, sign, print, copy }) {
     el("h2", { class: "hidden" }, say("page.nav.decide")),
     head,
     cautions,
+    ...shelf.nodes,
     el(
       "div",
       { class: "decide-columns" },
@@ -167,9 +175,12 @@ export function decideView({ state, sign, print, copy }) {
   );
   return {
     node,
+    follow: shelf.follow,
+    sheet: shelf.sheet,
     /** @param {Standing} next */
     draw(next) {
       standing = next;
+      shelf.draw(next);
       const { report, earlier } = next;
       const verdict = report?.verdict;
       const outcome = outcomeOf(next);

@@ -1,6 +1,7 @@
 /** The reading: the pair as it lies there, right lens on the left, and everything that is read of it. */
 
 import { card, differs, el, redraw } from "../dom.js";
+import { eyepiece } from "../eyepiece.js";
 import * as fields from "../fields.js";
 import { lensCard } from "../lens-card.js";
 import { noteList } from "../notes.js";
@@ -15,8 +16,19 @@ import { say, shown } from "../words.js";
  * @typedef {import("../state.js").State} State
  */
 
-/** @param {string} eye @param {Form} form @param {State} state */
-function readingCard(eye, form, state) {
+/** @param {string} eye @param {Form} form */
+function compensatorFields(eye, form) {
+  const place = `readings.${eye}.compensator`;
+  return el(
+    "div",
+    { class: "grid two" },
+    form.field({ path: `${place}.amount`, kind: "number", label: "compensator_amount" }),
+    form.field({ path: `${place}.base`, kind: "number", label: "base_any" }),
+  );
+}
+
+/** @param {string} eye @param {Form} form @param {State} state @param {HTMLElement} compensator its fields */
+function readingCard(eye, form, state, compensator) {
   const place = `readings.${eye}`;
   return card(
     `typed-${eye}`,
@@ -28,12 +40,7 @@ function readingCard(eye, form, state) {
       "details",
       { class: "quiet", "data-key": `compensator-${eye}` },
       el("summary", {}, say("page.read.compensator")),
-      el(
-        "div",
-        { class: "grid two" },
-        form.field({ path: `${place}.compensator.amount`, kind: "number", label: "compensator_amount" }),
-        form.field({ path: `${place}.compensator.base`, kind: "number", label: "base_any" }),
-      ),
+      compensator,
     ),
     el(
       "details",
@@ -68,20 +75,30 @@ function pointLines(report) {
  * @param {Form} tools.form
  * @param {State} tools.state
  * @param {ReturnType<typeof import("../steps.js").createSteps>} tools.steps
+ * @param {import("../settings.js").Settings} tools.settings
+ * @param {{node: HTMLElement, chooser: HTMLElement}} tools.imagine what would be seen if
  */
-export function readView({ form, state, steps }) {
+export function readView({ form, state, steps, settings, imagine }) {
   const summary = el("div", { class: "order-summary" });
-  const cards = EYES.map((eye) => lensCard(eye, { state, steps }));
+  const compensators = { right: compensatorFields("right", form), left: compensatorFields("left", form) };
+  const typed = EYES.map((eye) => readingCard(eye, form, state, compensators[eye]));
+  /** @type {(open: boolean) => void} */
+  const changed = (open) => node.classList.toggle("enlarged", open);
+  const large = eyepiece({ state, steps, settings, compensators, changed });
+  const cards = EYES.map((eye) => lensCard(eye, { state, steps, enlarge: large.open }));
   const notes = el("div", { class: "reading-notes" });
   const pair = el("div", { class: "pair dials" }, ...cards.map(({ node: one }) => one));
   const node = el(
     "div",
     { class: "view read" },
     el("h2", { class: "hidden" }, say("page.nav.read")),
+    large.node,
     summary,
+    imagine.node,
     pair,
     notes,
-    el("div", { class: "pair" }, ...EYES.map((eye) => readingCard(eye, form, state))),
+    imagine.chooser,
+    el("div", { class: "pair" }, ...typed),
     card(
       "read-how",
       say("page.read.how"),
@@ -90,9 +107,14 @@ export function readView({ form, state, steps }) {
   );
   return {
     node,
+    /** @param {HTMLElement} wanted is to be seen: where the large eyepiece hides it, that is closed */
+    reveal(wanted) {
+      if (!large.node.contains(wanted)) large.close();
+    },
     /** @param {import("../verdict.js").Standing} standing */
     draw({ report, earlier }) {
-      pair.classList.toggle("earlier", earlier);
+      for (const dials of [pair, large.node]) dials.classList.toggle("earlier", earlier);
+      large.show(report);
       for (const lens of cards) lens.draw(report);
       const lines = EYES.flatMap((eye) => report?.order_lines?.[eye]?.slice(0, 1) ?? []);
       const points = EYES.map((eye) => report?.[eye]?.point);
