@@ -133,7 +133,7 @@ def _with_own(
         beside = [other for other in owns if other != eye]
         others = [fits[one] for one in beside]
         log_rest = log_common + sum([math.log(none[other].weight) for other in beside])
-        reach = log_rest + bench.gauges[eye].ceiling + sum([_top(fit) for fit in others])
+        reach = log_rest + bench.ceiling(common, eye) + sum([_top(fit) for fit in others])
         for own in owns[eye][1:]:
             log_prior = math.log(own.weight)
             if reach + log_prior < least:

@@ -103,6 +103,13 @@ class Bench:
             return None
         return self.gauges[eye].fit(lens, self.columns(common, eye, lens))
 
+    def ceiling(self, common: Common, eye: Eye) -> float:
+        """No cause of the lens's own can fit better than this (logarithm of the density)."""
+        lens = common.lenses[eye]
+        # The power itself, and what a cylinder transposed wrongly adds to it.
+        steepest_d = abs(lens.mean) + math.hypot(lens.j0, lens.j45)
+        return self.gauges[eye].ceiling(steepest_d + abs(self.held[eye].site.cylinder))
+
     def key(self, story: Story) -> Key:
         """What a hypothesis predicts for all that was read: equal keys cannot be told apart."""
         parts: list[float | None] = []

@@ -11,7 +11,7 @@ from functools import lru_cache
 
 from pycore.angles import cosine, sine
 from pycore.bench.cause_lens import Lens, Site
-from pycore.bench.cause_seen import Vector
+from pycore.bench.cause_seen import PowerParts, Vector
 from pycore.bench.cause_table import Cause
 
 Variants = list[tuple[float, Lens]]
@@ -89,7 +89,11 @@ def _from_front(lens: Lens, site: Site, cause: Cause) -> Variants:
     if change is None:
         change, spread = 0.0, cause.of("usual_power_d")
     front = lens._replace(
-        sx=-lens.sx - 2.0 * lens.px, j45=-lens.j45, mean=lens.mean + change, power_spread=spread
+        sx=-lens.sx - 2.0 * lens.px,
+        j45=-lens.j45,
+        mean=lens.mean + change,
+        power_spread=spread,
+        lying=lens.lies_with,
     )
     return [(1.0, front)]
 
@@ -176,16 +180,23 @@ def _direction(angle_deg: float) -> Vector:
 
 def turned(lens: Lens, angle_deg: float, spread_deg: float) -> Lens:
     """The lens turned counter-clockwise, prism and axis alike. Angles in degrees."""
-    (once_x, once_y), (twice_x, twice_y) = _direction(angle_deg), _direction(2.0 * angle_deg)
+    once_x, once_y = _direction(angle_deg)
     x, y = lens.prism
+    _, j0, j45 = _power_turned(lens[4:7], angle_deg)
     return lens._replace(
         px=x * once_x - y * once_y,
         py=x * once_y + y * once_x - lens.t,
-        j0=lens.j0 * twice_x + lens.j45 * twice_y,
-        j45=lens.j45 * twice_x - lens.j0 * twice_y,
+        j0=j0,
+        j45=j45,
         turned_deg=lens.turned_deg + angle_deg,
         turn_rad=math.hypot(lens.turn_rad, math.radians(spread_deg)),
+        lying=lens.lying and _power_turned(lens.lying, angle_deg),
     )
+
+
+def _power_turned(power: PowerParts, angle_deg: float) -> PowerParts:
+    (mean, j0, j45), (x, y) = power, _direction(2.0 * angle_deg)
+    return mean, j0 * x + j45 * y, j45 * x - j0 * y
 
 
 def _read_at(lens: Lens, right_mm: float, up_mm: float, *spread_mm: Vector) -> Lens:

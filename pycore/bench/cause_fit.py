@@ -13,23 +13,23 @@ from typing import NamedTuple
 
 from pycore.bench.cause_algebra import Fit, Rows, dot, inverse_root, less, slopes, times
 from pycore.bench.cause_lens import Lens
-from pycore.bench.cause_seen import Seen, Vector
+from pycore.bench.cause_place import Way
+from pycore.bench.cause_seen import PowerParts, Seen, Vector
 from pycore.bench.cause_table import Scatter
 
 Key = tuple[float | None, ...]
 ALIKE = 6  # decimals to which predictions count as equal, in their own units
 SAME = 1e-6
 NO_POWER = (0.0, 0.0, 0.0)
-NOTHING = Lens(0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0)
 
 
 class Column(NamedTuple):
     """What one standard deviation of a parameter changes: the prism read, the prism at the
-    ordered point, the power (mean, j0, j45)."""
+    ordered point, the power."""
 
     read: Vector
     made: Vector
-    power: tuple[float, float, float] = NO_POWER
+    power: PowerParts = NO_POWER
 
 
 @dataclass(slots=True)
@@ -46,10 +46,10 @@ class Gauge:
     _powers: dict[object, tuple[Rows, float]] = field(default_factory=dict)
     _fits: dict[object, tuple[list[float], float]] = field(default_factory=dict)
     _columns: dict[object, list[float]] = field(default_factory=dict)
-    _measured: bool = field(init=False)
+    _way: Way = field(init=False)
 
     def __post_init__(self) -> None:
-        self._measured = any(part is not None for part in self.seen.place)
+        self._way = Way(*self.seen.place)
 
     def fit(self, lens: Lens, common: Sequence[Column] = ()) -> Fit:
         """How well `lens` fits. `common` the columns of the parameters both lenses share."""
@@ -100,15 +100,12 @@ class Gauge:
 
     def _prism_misfit(self, lens: Lens) -> tuple[list[float], float]:
         seen = self.seen
-        x, y = lens.px, lens.py + lens.t
-        rest: list[float] = []
+        (x, y), rest = lens.prism, []
         if seen.prism is not None:
             rest = [seen.prism[0] - x - lens.sx, seen.prism[1] - y - lens.sy]
-        if self._measured:
-            if seen.place[0] is not None:
-                rest.append(seen.place[0] + self.due[0] - x)
-            if seen.place[1] is not None:
-                rest.append(seen.place[1] + self.due[1] - y)
+        if self._way.measured:
+            across, along = self._way.change(lens.lies_with)
+            rest += self._way.parts_of((self.due[0] + across - x, self.due[1] + along - y))
         inverse, log_width = self._width(lens)
         return times(inverse, rest), log_width
 
@@ -143,20 +140,21 @@ class Gauge:
         return scaled
 
     def _prism_scaled(self, lens: Lens, column: Column) -> list[float]:
-        key = lens.slips, lens.shifts, lens.broad, column
+        key = self._width_key(lens), column
         found = self._columns.get(key)
         if found is None:
-            part = self._prism_part(column.read, column.made)
+            part = self._prism_part(column)
             found = self._columns[key] = times(self._width(lens)[0], part)
         return found
 
-    @property
-    def ceiling(self) -> float:
-        """No lens can fit better than this: the density at no misfit and with nothing free."""
+    def ceiling(self, steepest_d: float) -> float:
+        """No lens can fit better than this: the density at no misfit and with nothing free.
+        `steepest_d` no principal power is greater: the steeper, the sharper a place is found."""
         seen = self.seen
         own = math.sqrt(seen.principal_var / 2.0) if seen.power is not None else 1.0
         add = math.sqrt(seen.add_var) if seen.add is not None else 1.0
-        return -self._width(NOTHING)[1] - 3.0 * math.log(own) - math.log(add)
+        best = Lens(0.0, 0.0, 0.0, 0.0, steepest_d, 0.0, 0.0, 0.0)
+        return -self._width(best)[1] - 3.0 * math.log(own) - math.log(add)
 
     def own_columns(self, lens: Lens) -> list[Column]:
         """The columns of the lens's own free parameters: slips, shifts, then the turn."""
@@ -174,7 +172,8 @@ class Gauge:
         parts: list[float] = [log_width, *(part for row in inverse for part in row)]
         if seen.prism is not None:
             parts += (x + lens.sx, y + lens.sy)
-        parts += [made for made, part in zip((x, y), seen.place, strict=True) if part is not None]
+        if self._way.measured:
+            parts += (*self._way.parts_of((x, y)), *self._slopes(lens))
         if seen.power is not None:
             parts += (*lens[4:7], lens.power_spread, float(lens.broad))
         if seen.add is not None:
@@ -195,24 +194,30 @@ class Gauge:
         (x, y), made = lens.prism, still.prism
         if seen.prism is not None and _differ((x + lens.sx, y + lens.sy), (made[0], made[1])):
             return True
-        if self._measured and _differ((x, y), made):
+        if self._way.measured and (
+            _differ((x, y), made) or _differ(self._slopes(lens), self._slopes(still))
+        ):
             return True
         return any(self.feels(lens, own) for own in self.own_columns(lens))
+
+    def _slopes(self, lens: Lens) -> tuple[float, float, float]:
+        return self._way.slopes(lens.lies_with)
 
     def feels(self, lens: Lens, column: Column) -> bool:
         """Tell whether a parameter moves anything of what was read."""
         return any(abs(part) > SAME for part in self.scaled(lens, column))
 
-    def _prism_part(self, read: Vector, made: Vector) -> list[float]:
-        part: list[float] = list(read) if self.seen.prism is not None else []
-        part += [
-            value for value, place in zip(made, self.seen.place, strict=True) if place is not None
-        ]
-        return part
+    def _prism_part(self, column: Column) -> list[float]:
+        part: list[float] = list(column.read) if self.seen.prism is not None else []
+        return part + self._way.parts_of(column.made)
+
+    def _width_key(self, lens: Lens) -> object:
+        return lens.slips, lens.shifts, lens.broad, self._way.measured and lens.lies_with
 
     def _width(self, lens: Lens) -> tuple[Rows, float]:
-        """Scales prism and place to independent standard deviations; kept by the columns."""
-        key = lens.slips, lens.shifts, lens.broad
+        """Scales prism and place (as the prism F r / 10) to independent standard deviations, and
+        the logarithm of their product, a place's in mm; kept by what they depend on."""
+        key = self._width_key(lens)
         found = self._widths.get(key)
         if found is None:
             found = self._widths[key] = self._make_width(lens)
@@ -220,24 +225,26 @@ class Gauge:
 
     def _make_width(self, lens: Lens) -> tuple[Rows, float]:
         seen, laboratory = self.seen, self.seen.laboratory_var
-        xx, xy, yy = seen.place_var
+        xx, xy, yy = self._way.variances(lens.lies_with, seen.position_var)
+        place = laboratory + seen.settling_var
         whole = [
             [seen.prism_var, 0.0, laboratory, 0.0],
             [0.0, seen.prism_var, 0.0, laboratory],
-            [laboratory, 0.0, laboratory + xx, xy],
-            [0.0, laboratory, xy, laboratory + yy],
+            [laboratory, 0.0, place + xx, xy],
+            [0.0, laboratory, xy, place + yy],
         ]
         present = [seen.prism is not None] * 2 + [part is not None for part in seen.place]
         kept = [at for at in range(4) if present[at]]
         rows = [[whole[one][two] for two in kept] for one in kept]
         for column in self.own_columns(lens._replace(turn_rad=0.0)):
-            part = self._prism_part(column.read, column.made)
+            part = self._prism_part(column)
             for row, one in zip(rows, part, strict=True):
                 for at, two in enumerate(part):
                     row[at] += one * two
         for at, row in enumerate(rows):
             row[at] += lens.broad * self.scatter.none_prism**2
-        return inverse_root(rows)
+        inverse, log_width = inverse_root(rows)
+        return inverse, log_width - self._way.log_steepness(lens.lies_with)
 
     def _power_width(self, lens: Lens) -> tuple[Rows, float]:
         key = lens.j0, lens.j45, lens.power_spread, lens.broad

@@ -8,7 +8,7 @@ import math
 from collections.abc import Mapping
 from typing import NamedTuple
 
-from pycore.bench.cause_seen import Seen, Vector, components_of, seen_of
+from pycore.bench.cause_seen import PowerParts, Seen, Vector, components_of, seen_of
 from pycore.bench.expected import (
     SHARE_OF_ADD,
     THINNING_PLACES,
@@ -39,7 +39,9 @@ class Lens(NamedTuple):
     ((Fyy - Fxx)/2, Fxy), nan where not known; `add`; `sx`, `sy` what reading at another point
     adds. `slips` and `shifts` are columns of free parameters, each one standard deviation of the
     prism: a slip is of the point read at only, a shift is in the lens. `turned_deg` is a turn it
-    has made, `turn_rad` the standard deviation of one more; `power_spread` of the mean power; `broad` marks none-of-these.
+    has made, `turn_rad` the standard deviation of one more; `power_spread` of the mean power;
+    `broad` marks none-of-these; `lying` is the power with which it lies there, where the one read
+    is another (from the front).
     """
 
     px: float
@@ -58,6 +60,7 @@ class Lens(NamedTuple):
     turn_rad: float = 0.0
     power_spread: float = 0.0
     broad: bool = False
+    lying: PowerParts | None = None
 
     @property
     def prism(self) -> Vector:
@@ -68,6 +71,11 @@ class Lens(NamedTuple):
     def has_power(self) -> bool:
         """Tell whether the power is known."""
         return not math.isnan(self.mean)
+
+    @property
+    def lies_with(self) -> PowerParts:
+        """The power by which its prism changes from place to place: mean, j0, j45 in dioptres."""
+        return self.lying or self[4:7]
 
     def moved(self, right_mm: float, up_mm: float) -> Vector:
         """F d / 10: how the prism grows when the lens moves by d, in prism dioptres.

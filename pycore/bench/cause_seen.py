@@ -10,24 +10,27 @@ from pycore.job.order import EyeOrder
 from pycore.optics.power import Power
 
 Vector = tuple[float, float]
+PowerParts = tuple[float, float, float]  # mean, j0, j45
 
 
 class Seen(NamedTuple):
     """What was read of one lens; None for what was not.
 
-    `prism` the mean of its readings; `place` where the lens shows what is due, as the prism
-    F r / 10 in x and y (each None where not measured); `power` as mean, j0, j45; `add`.
-    Variances: `prism_var`, `place_var` (xx, xy, yy), `laboratory_var`, all prism dioptres squared;
-    `principal_var` of each principal power, `axis_var` in radians squared, `add_var`.
+    `prism` the mean of its readings; `place` where the lens shows what is due, in mm to the right
+    of the ordered point and above it (each None where not measured); `power` as mean, j0, j45;
+    `add`. Variances: `prism_var`, `laboratory_var` and `settling_var` (of finding a place by its
+    prism) in prism dioptres squared; `position_var` in mm squared; `principal_var` of each
+    principal power, `axis_var` in radians squared, `add_var`.
     """
 
     prism: Vector | None
     place: tuple[float | None, float | None]
-    power: tuple[float, float, float] | None
+    power: PowerParts | None
     add: float | None
     prism_var: float
-    place_var: tuple[float, float, float]
     laboratory_var: float
+    settling_var: float
+    position_var: float
     principal_var: float
     axis_var: float
     add_var: float
@@ -40,7 +43,7 @@ class Seen(NamedTuple):
         return single + (self.prism is not None) + 3 * (self.power is not None)
 
 
-def components_of(power: Power | None) -> tuple[float, float, float]:
+def components_of(power: Power | None) -> PowerParts:
     """A power as mean power and the two components of its cylinder, in dioptres.
 
     >>> components_of(Power(__import__("decimal").Decimal(2)))
@@ -61,18 +64,18 @@ def seen_of(job: Job, order: EyeOrder, due_: Due) -> Seen:
     step = float(job.instrument.prism_step)
     reading, rounding = float(known.prism) ** 2, step * step / 12.0
     laboratory = scatter.laboratory_prism**2
-    place, place_var = _place(job, order, due_, reading + rounding)
     axis_deg = math.hypot(scatter.laboratory_axis_deg, float(known.axis_deg))
     power_var = scatter.laboratory_power_d**2 + float(known.power_d) ** 2
     add = job.readings.of(eye).add
     return Seen(
         prism=(float(read.x), float(read.y)) if read is not None else None,
-        place=place,
+        place=_place(job, order, due_),
         power=_power_read(job, order, due_),
         add=float(add) if add is not None and due_.add else None,
         prism_var=laboratory + reading / count + rounding + _partner_var(job, reading + rounding),
-        place_var=place_var,
         laboratory_var=laboratory,
+        settling_var=reading + rounding,
+        position_var=float(known.position_mm) ** 2,
         principal_var=power_var,
         axis_var=math.radians(axis_deg) ** 2,
         add_var=power_var,
@@ -84,7 +87,7 @@ def _partner_var(job: Job, reading: float) -> float:
     return reading if any(order.partner for order in job.orders) else 0.0
 
 
-def _power_read(job: Job, order: EyeOrder, due_: Due) -> tuple[float, float, float] | None:
+def _power_read(job: Job, order: EyeOrder, due_: Due) -> PowerParts | None:
     reading = job.readings.of(order.eye)
     if reading.sphere is None or due_.power is None:
         return None
@@ -97,30 +100,15 @@ def _power_read(job: Job, order: EyeOrder, due_: Due) -> tuple[float, float, flo
     return components_of(power)
 
 
-def _place(
-    job: Job, order: EyeOrder, due_: Due, settling: float
-) -> tuple[tuple[float | None, float | None], tuple[float, float, float]]:
-    """Where the lens was found to show what is due, as F r / 10, and its variances."""
+def _place(job: Job, order: EyeOrder, due_: Due) -> tuple[float | None, float | None]:
+    """Where the lens was found to show what is due, in mm to the right and up."""
     reading = job.readings.of(order.eye)
-    mean, j0, j45 = components_of(due_.power)
     right_mm = up_mm = None
+    if due_.power is None:  # how its prism changes from place to place is not known
+        return None, None
     if reading.pd_mm is not None and order.pd_mm is not None:
         outwards = float(reading.pd_mm - order.pd_mm)
         right_mm = -outwards if order.eye == "right" else outwards
     if reading.prp_height_mm is not None and order.prp_height_mm is not None:
         up_mm = float(reading.prp_height_mm - order.prp_height_mm)
-    if math.isnan(mean) or (right_mm is None and up_mm is None):
-        return (None, None), (0.0, 0.0, 0.0)
-    # Slid along one meridian only, the prism across it was left as it was.
-    both = right_mm is not None and up_mm is not None
-    xx, xy, yy = mean - j0, j45 if both else 0.0, mean + j0
-    across, along = right_mm or 0.0, up_mm or 0.0
-    var = float(job.instrument.uncertainty.position_mm) ** 2 / 100.0
-    return (
-        None if right_mm is None else (xx * across + xy * along) / 10.0,
-        None if up_mm is None else (xy * across + yy * along) / 10.0,
-    ), (
-        settling + var * (xx * xx + xy * xy),
-        var * xy * (xx + yy),
-        settling + var * (xy * xy + yy * yy),
-    )
+    return right_mm, up_mm

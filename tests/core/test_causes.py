@@ -403,9 +403,50 @@ def test_one_distance_alone_counts_along_its_meridian(field: str, value: str, st
     error = (power_[0, 0] * step[0] / 10, 0.0) if step[0] else (0.0, power_[1, 1] * step[1] / 10)
     job = read((PR[0] + error[0], PR[1] + error[1]), PL, **{f"readings__right__{field}": value})
     seen = bench(job).held["right"].seen
-    found = [part for part in seen.place if part is not None]
-    assert found == pytest.approx([error[0] or error[1]], abs=1e-12)
+    assert [part for part in seen.place if part is not None] == [step[0] or step[1]]
     assert chance(job, "read-elsewhere", "right") < 0.02
+
+
+STRONG_RIGHT = {"sphere": "-7.00", "cylinder": "-1.00", "axis": "30", "pd_mm": "31", "prp_height_mm": "19"}
+STRONG_LEFT = {"sphere": "-4.00", "cylinder": "-2.00", "axis": "75", "pd_mm": "32", "prp_height_mm": "19"}
+STRONG = patched(
+    PAIR,
+    right=STRONG_RIGHT | {"prism": prism(*PR, "right")},
+    left=STRONG_LEFT | {"prism": prism(*PL, "left")},
+    readings={"at": "marked-point"},
+)
+
+
+def found_at(job: Job, eye: str, way: Any, *, distance: bool) -> Job:
+    """Where the lens was found to show what is due, as height (and distance), mm."""
+    outwards = -way[0] if eye == "right" else way[0]
+    job = patched(job, **{f"readings__{eye}__prp_height_mm": f"{19 + way[1]:.1f}"})
+    pd_mm = {"right": 31.0, "left": 32.0}[eye] + outwards
+    return patched(job, **{f"readings__{eye}__pd_mm": f"{pd_mm:.1f}"}) if distance else job
+
+
+@pytest.mark.parametrize("distance", [True, False])
+@pytest.mark.parametrize(("code", "sign"), [("lenses-swapped", 1.0), ("frame-upside-down", -1.0)])
+def test_a_place_is_found_by_the_power_of_the_lens_that_lies_there(code: str, sign: float, *, distance: bool) -> None:
+    """p(r) = p0 − F r = e of the place, with p0 and F of the other lens (upside down: −p0): r = 10 F⁻¹ (p0 − e).
+
+    No power is read: only the place tells whose F it was. Found by the F ordered for the place, nothing explains it.
+    """
+    left = (sign * PL[0], sign * PL[1])  # so that the right place shows PL
+    places = {"right": (PR, left, STRONG_LEFT, STRONG_RIGHT), "left": (left, PR, STRONG_RIGHT, STRONG_LEFT)}
+    job = read(PL, (sign * PR[0], sign * PR[1]), patched(STRONG, left__prism=prism(*left, "left")))
+    wrong = job
+    for eye, (due, other, lying, ordered) in places.items():
+        missing = sign * np.array(other) - np.array(due)
+        for power_ in (lying, ordered):
+            whole = matrix(power_)
+            way = 10 * np.linalg.solve(whole, missing) if distance else (0.0, 10 * missing[1] / whole[1, 1])
+            if power_ is lying:
+                job = found_at(job, eye, way, distance=distance)
+            else:
+                wrong = found_at(wrong, eye, way, distance=distance)
+    assert chance(job, code) > 0.95
+    assert chance(wrong, code) < 0.1
 
 
 def test_as_worn_values_ignored() -> None:
@@ -748,6 +789,59 @@ def test_a_lens_fits_as_scipy_says(code: str) -> None:
     fit = found.fit(none, "right", own)
     assert fit is not None
     assert fit.density == pytest.approx(reference, abs=1e-9)
+
+
+def place_covariance(to_mm: np.ndarray[Any, Any]) -> np.ndarray[Any, Any]:
+    """Prism and place (mm) of one lens, the table's prose in numpy: the laboratory's scatter is in both."""
+    laboratory, reading, both = 0.12**2, 0.05**2 + 0.05**2 / 12, np.eye(2)
+    across = laboratory * to_mm
+    return np.block(
+        [[(laboratory + reading) * both, across.T], [across, (laboratory + reading) * to_mm @ to_mm.T + 0.3**2 * both]]
+    )
+
+
+@pytest.mark.parametrize("measured", ["both", "height", "distance"])
+@pytest.mark.parametrize("code", [AS_ORDERED, "lenses-swapped", "read-from-front"])
+def test_a_place_fits_as_scipy_says(code: str, measured: str) -> None:
+    """The density of prism and place in mm; from the front it is found by the power with which the lens lies there."""
+    due, other = np.array(PR), np.array(PL)
+    way = np.array([1.5, -2.0])
+    seen = np.array([2.6, 1.9])
+    job = found_at(read((2.6, 1.9), PL, STRONG), "right", way, distance=True)
+    if measured != "both":
+        job = patched(job, **{f"readings__right__{'pd_mm' if measured == 'height' else 'prp_height_mm'}": None})
+    power_ = matrix(STRONG_LEFT if code == "lenses-swapped" else STRONG_RIGHT)
+    to_mm = 10 * np.linalg.inv(power_ if measured == "both" else np.diag(np.diag(power_)))
+    shown = other if code == "lenses-swapped" else due
+    reads = shown * [-1, 1] if code == "read-from-front" else shown
+    kept = [0, 1, *{"both": (2, 3), "height": (3,), "distance": (2,)}[measured]]
+    mean = np.concatenate([reads, to_mm @ (shown - due)])[kept]
+    whole = place_covariance(to_mm)[np.ix_(kept, kept)]
+    reference = multivariate_normal(mean, whole).logpdf(np.concatenate([seen, way])[kept]) + len(kept) / 2 * math.log(2 * math.pi)
+    found = bench(job)
+    none, *shared = found.commons()
+    common = next((one for one in shared if one.code == code), none)
+    own = own_of(found, "right", code) if code == "read-from-front" else NO_CAUSE
+    fit = found.fit(common if code == "lenses-swapped" else none, "right", own)
+    assert fit is not None
+    assert fit.density == pytest.approx(reference, abs=1e-9)
+    assert found.ceiling(none, "right") > fit.density
+
+
+def test_a_turned_lens_lies_with_its_power_turned() -> None:
+    """R F R' (textbook): turned at edging, or its frame turned on the table while it was read from the front."""
+    found = bench(found_at(read(PR, PL, STRONG), "right", (1.0, -1.0), distance=True))
+    none = found.commons()[0]
+    table = next(one for one in found.commons() if one.code == "frame-not-square" and one.variant == 2)
+    for spread_deg, lens in (
+        (6.0, found.lens(none, "right", own_of(found, "right", "lens-rotated", 2))),
+        (4.0, found.lens(table, "right", own_of(found, "right", "read-from-front"))),
+    ):
+        angle = math.radians(list(turns(spread_deg))[2][1][0])
+        turn = np.array([[math.cos(angle), -math.sin(angle)], [math.sin(angle), math.cos(angle)]])
+        (xx, xy), (_, yy) = turn @ matrix(STRONG_RIGHT) @ turn.T
+        assert lens is not None
+        assert lens.lies_with == pytest.approx([(xx + yy) / 2, (yy - xx) / 2, xy], abs=1e-9)
 
 
 @pytest.mark.parametrize("code", [AS_ORDERED, "instrument-zero", "layout-pd-wrong", "frame-not-square"])
