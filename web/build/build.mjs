@@ -50,7 +50,7 @@ async function buildEngine(web) {
   const { info } = JSON.parse(await read("pyodide-lock.json"));
   const whole = `${await read("pyodide.asm.js")}\n${await read("pyodide.js")}`;
   const worker = join(web, "worker", "main.js");
-  const other = join(web, "build", "snapshot-entry.js");
+  const other = join(web, "worker", "snapshot.js");
   const exported = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), whole + (await readFile(other, "utf8")));
   const scripts = await usedScripts(whole, namesOf(exported));
   const [engine, maker] = [await engineSource(scripts, info, worker), await engineSource(scripts, info, other)];
