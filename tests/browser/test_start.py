@@ -121,6 +121,7 @@ DAMAGES: dict[str, Callable[[Path], object]] = {
     "missing": Path.unlink,
     "cut short": lambda file: file.write_bytes(file.read_bytes()[: file.stat().st_size // 4 * 2]),
     "of another build": of_another_build,
+    "of another program": lambda file: write_payload(file, read_payload(file), "01234567"),
     "something else": lambda file: write_payload(file, b"PK" + bytes(100_000)),
 }
 
