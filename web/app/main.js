@@ -1,8 +1,12 @@
 import "./boot.js";
 import { startEngine } from "./engine.js";
+import { languageOf, speak } from "./language.js";
 import { startPage } from "./page.js";
-import { useWords } from "./words.js";
-import words from "./generated/words.js";
+import { loadSettings } from "./settings.js";
+import { mendStyles } from "./styles.js";
 
-useWords(words);
-startPage(startEngine);
+mendStyles();
+const settings = loadSettings();
+const language = languageOf(settings);
+speak(language);
+startPage((options) => startEngine({ ...options, language }), settings);

@@ -13,11 +13,13 @@ import { jobFiles } from "./job-files.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
+import { languageOf } from "./language.js";
 import { orderLine } from "./order-line.js";
 import { drawSheet } from "./print.js";
-import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { applyLook, eraseSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
+import { serverFollower } from "./served.js";
 import { openStore } from "./store.js";
 import { outcomeOf, sentenceOf, verdictStrip } from "./verdict.js";
 import { benchView } from "./views/bench.js";
@@ -34,10 +36,12 @@ import { say, writeWith } from "./words.js";
  * @typedef {import("./keeping.js").KeptJob} KeptJob
  */
 
-/** @param {typeof import("./engine.js").startEngine} startEngine */
-export function startPage(startEngine) {
+/**
+ * @param {typeof import("./engine.js").startEngine} startEngine
+ * @param {import("./settings.js").Settings} settings
+ */
+export function startPage(startEngine, settings) {
   const root = document.documentElement;
-  const settings = loadSettings();
   applyLook(settings);
   writeWith(settings);
 
@@ -62,8 +66,10 @@ export function startPage(startEngine) {
       standing.engine = code;
       if (head) showStart();
       foot?.draw(standing);
+      if (code === "ready") server.follow();
     },
   });
+  const server = serverFollower({ state, unsaved: () => head?.saving ?? false });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
   const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
@@ -169,6 +175,7 @@ export function startPage(startEngine) {
   }
 
   function newJob() {
+    server.update();
     state.replace(nextJob(state.entries));
     top.show("order");
     byId("f-id").focus();
@@ -212,7 +219,7 @@ export function startPage(startEngine) {
       edition: standing.report?.verdict?.edition.name ?? "",
       entries,
     };
-    store?.put("jobs", kept.key, kept).then(showJobs);
+    store?.put("jobs", kept.key, kept).then(showJobs, () => top.saved(store?.newer ? "newer" : "off"));
   }
 
   async function showJobs() {
@@ -241,6 +248,7 @@ export function startPage(startEngine) {
     top.keypad();
     line.ask();
     draw();
+    if (languageOf(settings) !== root.lang) top.openAnew();
   }
 
   /** @param {string} path leads to the field that is to be mended */
