@@ -1,4 +1,4 @@
-"""The command line: `python -m pycore report JOB.json [--edition FILE] [--text]`, `schema`."""
+"""The command line: `python -m pycore report JOB.json [--edition FILE] [--language de] [--text]`."""
 
 import argparse
 import io
@@ -11,6 +11,7 @@ from pycore import __version__
 from pycore.api import handle
 from pycore.contract import REFUSAL_FORMAT, REQUEST_FORMAT
 from pycore.schema import job_schema
+from pycore.words import LANGUAGES
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
@@ -25,6 +26,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
     report.add_argument("job", type=Path, help="the job, a JSON file")
     report.add_argument("--edition", type=Path, help="an edition of the shop's own, a JSON file")
     report.add_argument("--text", action="store_true", help="print text instead of JSON")
+    report.add_argument("--language", choices=LANGUAGES, help="the language of its sentences")
     commands.add_parser("schema", help="print the JSON Schema of the job document")
     chosen = parser.parse_args(arguments)
     if isinstance(sys.stdout, io.TextIOWrapper):
@@ -33,7 +35,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(json.dumps(job_schema(), indent=2))
         return 0
     try:
-        answer = handle(_request(chosen.job, chosen.edition, chosen.text))
+        answer = handle(_request(chosen))
     except (OSError, UnicodeDecodeError) as error:
         parser.exit(1, f"{error}\n")
     parsed = json.loads(answer)
@@ -42,14 +44,15 @@ def main(arguments: Sequence[str] | None = None) -> int:
     return 2 if refused else 0
 
 
-def _request(job: Path, edition: Path | None, text: bool) -> str:
+def _request(chosen: argparse.Namespace) -> str:
     """Wrap the files' texts as they are: every number keeps its digits."""
-    job_text = job.read_text(encoding="utf-8", errors="surrogateescape")
-    if edition is None and not text:
-        return job_text
-    editions = [edition.read_text(encoding="utf-8")] if edition else []
+    job_text = chosen.job.read_text(encoding="utf-8", errors="surrogateescape")
+    if not (chosen.edition or chosen.language or chosen.text):
+        return str(job_text)
+    editions = [chosen.edition.read_text(encoding="utf-8")] if chosen.edition else []
     return (
-        f'{{"format": "{REQUEST_FORMAT}", "do": "report", "text": {json.dumps(text)}, '
+        f'{{"format": "{REQUEST_FORMAT}", "do": "report", "text": {json.dumps(chosen.text)}, '
+        f'"language": "{chosen.language or LANGUAGES[0]}", '
         f'"editions": [{", ".join(editions)}], "job": {job_text}}}'
     )
 

@@ -2,6 +2,7 @@
 
 import re
 from collections.abc import Mapping
+from contextvars import copy_context
 from typing import Any
 
 from pycore.actions import ACTIONS
@@ -10,7 +11,7 @@ from pycore.errors import Fault, RefusedError
 from pycore.job.fields import Fields
 from pycore.names import Entry, spoken
 from pycore.optics.prism import EYES
-from pycore.words import say
+from pycore.words import LANGUAGES, say, speak
 
 ENVELOPE_KEYS = ("format", "do", "sequence")
 SEQUENCE = re.compile("[0-9]{1,15}", re.ASCII)
@@ -25,9 +26,16 @@ def handle(request: str) -> str:
     >>> handle('{"format": "wedgewright.job/1"}')[:40]
     '{"format":"wedgewright.refusal/1","error'
     """
+    # In a context of its own, so that nothing of this request, its language least, is left to the next.
+    return copy_context().run(_handle, request)
+
+
+def _handle(request: str) -> str:
     sequence = ""
     try:
         source = decode(request)
+        if source.get("language") in LANGUAGES:
+            speak(source["language"])
         if source.get("format") == REQUEST_FORMAT:
             given = source.get("sequence")
             sequence = given if isinstance(given, str) and SEQUENCE.fullmatch(given) else ""
@@ -58,6 +66,7 @@ def _answer(envelope: Mapping[str, Any]) -> Entry:
     sequence = envelope.get("sequence")
     if sequence is not None and not (isinstance(sequence, str) and SEQUENCE.fullmatch(sequence)):
         fields.refuse("number-malformed", "sequence", sequence, "type-number")
+    fields.word("language", LANGUAGES)
     wanted = fields.word("do", tuple(ACTIONS)) or "report"
     if faults:
         raise RefusedError(tuple(faults))

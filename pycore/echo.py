@@ -9,7 +9,7 @@ from pycore.decimals import NumberError, decimal_places, read_decimal, signed
 from pycore.job.order import WORDS
 from pycore.names import plain
 from pycore.optics.prism import Eye, from_base, horizontal_word, vertical_word
-from pycore.words import say
+from pycore.words import say, spoken_language
 
 _SIGNED_DIOPTRES = ("sphere", "cylinder")
 _DIOPTRES = ("add", "front_curve", "power_d")
@@ -36,10 +36,11 @@ def echo_of(job: Mapping[str, Any]) -> dict[str, str]:
     >>> echo_of({"right": {"sphere": "-2,25", "pd_mm": "31.5"}})
     {'right.sphere': '\u22122.25 D', 'right.pd_mm': '31.5 mm'}
     """
+    language = spoken_language()
     return {
         path: text
         for path, key, value in _leaves(job, "")
-        if (text := _understood(path, key, value))
+        if (text := _understood(language, path, key, value))
     }
 
 
@@ -55,7 +56,7 @@ def _leaves(value: Any, path: str, key: str = "") -> Iterator[tuple[str, str, st
 
 
 @lru_cache(maxsize=1024)  # between two keystrokes all numbers but one are the same
-def _understood(path: str, key: str, text: str) -> str:
+def _understood(_language: str, path: str, key: str, text: str) -> str:
     if key == "base":
         return _base(path, text)
     try:

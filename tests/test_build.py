@@ -59,12 +59,17 @@ def test_single_file_stands_alone(single_file: Path) -> None:
     assert single_file.stat().st_size <= 11 * MEGABYTE
 
 
+def common_start(one: bytes, other: bytes) -> int:
+    """How many bytes are the same at the beginning."""
+    return next((index for index, (a, b) in enumerate(zip(one, other, strict=False)) if a != b), min(len(one), len(other)))
+
+
 def test_program_is_pyodides_with_fewer_exports(dist: Path) -> None:
     """Before and after the list of exports (WebAssembly Core Specification 2.0, section 5.5.10) every byte is the same."""
     stock = (build.WEB / "node_modules" / "pyodide" / "pyodide.asm.wasm").read_bytes()
     ours = read_payload(dist / "engine" / "wasm.js")
-    before = len(os.path.commonprefix([stock, ours]))
-    after = len(os.path.commonprefix([stock[:before:-1], ours[:before:-1]]))
+    before = common_start(stock, ours)
+    after = common_start(stock[:before:-1], ours[:before:-1])
     assert before + after > len(ours) - 0.02 * MEGABYTE
     assert len(stock) - before - after < 0.6 * MEGABYTE
 

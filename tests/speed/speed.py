@@ -16,6 +16,8 @@ ROOT = Path(__file__).resolve().parents[2]
 sys.path.insert(0, str(ROOT / "tests" / "browser"))
 sys.path.insert(0, str(ROOT / "tests" / "speed"))
 from chromium import FLAGS, find  # noqa: E402
+from causes import measure_causes  # noqa: E402
+from remedy import measure_remedy  # noqa: E402
 from sections import measure_sections  # noqa: E402
 from starts import FOLDER, measure_and_report, our_start, plain_site, show  # noqa: E402
 
@@ -85,6 +87,16 @@ def report_sections() -> None:
     show("  the sections, in ms", f"{added:.1f}", f"≤ {GOALS['sections']:g}")
 
 
+def report_why() -> None:
+    """Print what the causes, the next look and the smallest movement cost."""
+    print("\nWhy a pair fails, in plain CPython, in ms")
+    for kind, (causes, look) in measure_causes().items():
+        show(f"  causes of both lenses together, {kind}", f"{causes:.1f}", "≤ 15")
+        show("    the next look, with the causes it rests on", f"{look:.1f}", "≤ 10")
+    median, most = measure_remedy()
+    show("  the smallest movement: median, 95th percentile", f"{median:.2f}, {most:.2f}")
+
+
 def report_sizes() -> None:
     """Print what the built files weigh."""
     print("\nSize in MB")
@@ -113,6 +125,7 @@ def main() -> None:
         browser.close()
     report_keys(keys, trips)
     report_sections()
+    report_why()
 
 
 if __name__ == "__main__":

@@ -94,7 +94,7 @@ test("the worker is given both payloads, and what was asked before it was ready 
     { kind: "snapshot", body: new TextEncoder().encode("the memory") },
   ]);
   FakeWorker.last.say({ kind: "ready" });
-  assert.deepEqual(FakeWorker.last.asked, [{ id: 1, format: "wedgewright.request/1", sequence: 1, do: "early" }]);
+  assert.deepEqual(FakeWorker.last.asked, [{ id: 1, format: "wedgewright.request/1", sequence: 1, language: "en", do: "early" }]);
   FakeWorker.last.answer();
   assert.deepEqual(await answer, { format: "test", what: "early" });
   assert.deepEqual(states, ["reading", "starting", "ready"]);

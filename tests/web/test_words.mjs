@@ -4,6 +4,7 @@ import { readdirSync, readFileSync } from "node:fs";
 import { join } from "node:path";
 import { test } from "node:test";
 import * as fields from "../../web/app/fields.js";
+import { LANGUAGES, languageOf } from "../../web/app/language.js";
 import { dateText, say, shown, useWords, writeWith } from "../../web/app/words.js";
 
 const ROOT = new URL("../../web/", import.meta.url).pathname;
@@ -71,4 +72,20 @@ test("a moment is written as the shop writes its dates", () => {
     assert.equal(shown(dateText(moment)), text);
   }
   writeWith({ decimal: "point", date: "iso" });
+});
+
+test("the decimal sign follows the language unless it is chosen", () => {
+  useWords({ page: { language: { decimal: "comma" } } });
+  writeWith({ decimal: "language", date: "iso" });
+  assert.equal(shown("0.25"), "0,25");
+  writeWith({ decimal: "point", date: "iso" });
+  assert.equal(shown("0.25"), "0.25");
+});
+
+test("a language is the one chosen, else the device's first that there is, else English", () => {
+  assert.deepEqual(LANGUAGES, ["de", "en"]);
+  assert.equal(languageOf({ language: "de" }, ["en-GB"]), "de");
+  assert.equal(languageOf({ language: "auto" }, ["fr-FR", "de-AT", "en"]), "de");
+  assert.equal(languageOf({ language: "auto" }, ["fr-FR"]), "en");
+  assert.equal(languageOf({ language: "toString" }, []), "en");
 });

@@ -9,11 +9,26 @@ import { say, shown } from "./words.js";
  * @typedef {{tag: string, attributes: Record<string, string|number>, text?: string}} Mark
  */
 
-/** @param {Scene} scene the base scale's words need room on both sides */
+const hasScale = (/** @type {Scene} */ { shapes }) => shapes.some(({ role }) => role === "base-label");
+
+/** The room on each side that the words of a base scale have in any case, as a part of the scene's width. */
+const ROOM = 0.075;
+/** In hundredths of the scene's width: what is free outside the rings, and what a word takes beside its ring. */
+const FREE = 9;
+const WORD = { from: 5.1, letter: 3.7, smallLetter: 3.4 };
+const SHORT_WORD = 3;
+
+/** @param {string} word a longer one is written smaller */
+const isLong = (word) => word.length > SHORT_WORD;
+
+/** @param {Scene} scene the base scale's words need room on both sides, in some languages more */
 export function viewBox(scene) {
   const [left, bottom, right, top] = scene.extent;
-  const room = scene.shapes.some(({ role }) => role === "base-label") ? 0.075 * (right - left) : 0;
-  return [left - room, -top, right - left + 2 * room, top - bottom];
+  const width = right - left;
+  const words = scene.shapes.filter((shape) => shape.role === "base-label" && shape["word"] && shape["x"]).map(labelOf);
+  const needs = words.map((word) => WORD.from + word.length * (isLong(word) ? WORD.smallLetter : WORD.letter) - FREE);
+  const room = hasScale(scene) ? width * Math.max(ROOM, ...needs.map((need) => need / 100)) : 0;
+  return [left - room, -top, width + 2 * room, top - bottom];
 }
 
 /**
@@ -65,7 +80,7 @@ function baseLabel(shape, attributes, unit) {
   if (!shape["word"]) return [{ tag: "text", attributes: { ...look(""), ...place }, text: shown(shape["text"]) }];
   return [
     { tag: "text", attributes: { ...look(""), x: place.x, y: place.y - 2.8 * unit }, text: shown(shape["text"]) },
-    { tag: "text", attributes: { ...look(" base-word"), x: place.x, y: place.y + 2.8 * unit }, text: labelOf(shape) },
+    { tag: "text", attributes: { ...look(` base-word${isLong(labelOf(shape)) ? " long" : ""}`), x: place.x, y: place.y + 2.8 * unit }, text: labelOf(shape) },
   ];
 }
 
@@ -193,7 +208,8 @@ function drawLayer(layer, shapes, unit, hatch, targetSize) {
  */
 export function drawScene(host, scene, id, look = { marks: 1, target: 1 }) {
   const box = viewBox(scene);
-  const unit = (look.marks * (box[2] ?? 1)) / 100;
+  const width = (scene.extent[2] - scene.extent[0]) * (hasScale(scene) ? 1 + 2 * ROOM : 1);
+  const unit = (look.marks * width) / 100;
   const hatch = `hatch-${id}`;
   const place = box.join(" ");
   if (host.getAttribute("viewBox") !== place) {

@@ -50,10 +50,12 @@ function markTimes(times) {
 const libraryAsked = () => globalThis.location?.hash === "#library";
 
 /**
- * @param {{onState?: (state: EngineState) => void, timeLimitMs?: number, quietMs?: number, startLimitsMs?: Record<string, number>}} [options]
+ * @param {{onState?: (state: EngineState) => void, language?: string, timeLimitMs?: number, quietMs?: number, startLimitsMs?: Record<string, number>}} [options]
+ * `language` in which the core answers
  */
 export function startEngine({
   onState = () => {},
+  language = "en",
   timeLimitMs = TIME_LIMIT_MS,
   quietMs = QUIET_MS,
   startLimitsMs = START_LIMITS_MS,
@@ -252,7 +254,7 @@ export function startEngine({
       if (running?.lane === lane) {
         running.resolve(null);
       }
-      const text = JSON.stringify({ format: "wedgewright.request/1", sequence, ...request });
+      const text = JSON.stringify({ format: "wedgewright.request/1", sequence, language, ...request });
       waiting.delete(lane); // so that the newer one takes its place at the end of the queue
       waiting.set(lane, { id: sequence, lane, text, idle, resolve });
       if (!idle) {

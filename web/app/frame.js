@@ -59,6 +59,9 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
     button(say(`page.nav.${name}`), () => show(name), { class: "move", id: `move-${name}`, "data-repeats": true }),
   );
 
+  let anew = false;
+
+  byId("dock").setAttribute("aria-label", say("page.frame.dock"));
   byId("top").append(
     el("h1", { class: "brand" }, "Wedgewright"),
     el("div", { class: "standing" }, job, el("div", { class: "statuses" }, save, starting)),
@@ -69,6 +72,11 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
   for (const [name, view] of Object.entries(views)) {
     view.node.id = `view-${name}`;
     main.append(view.node);
+  }
+
+  /** Nothing typed may be lost by it: where this window cannot save, the page stays as it is. */
+  function openWhenSaved() {
+    if (["saved", "recovered"].includes(save.dataset["status"] ?? "")) location.reload();
   }
 
   /** @param {string} name @param {string} [target] id of what is wanted in it */
@@ -115,6 +123,12 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
     saved(status) {
       save.textContent = say(`page.saving.${status}`);
       save.dataset["status"] = status;
+      if (anew) openWhenSaved();
+    },
+    /** Opens the page anew, since another language was chosen. */
+    openAnew() {
+      anew = true;
+      openWhenSaved();
     },
     draw() {
       const { entries } = state;

@@ -13,9 +13,10 @@ import { jobFiles } from "./job-files.js";
 import { hashOf, keepDraft, stamp } from "./keeping.js";
 import { createKeypad } from "./keypad.js";
 import { listenToKeys, moveOn } from "./keys.js";
+import { languageOf } from "./language.js";
 import { orderLine } from "./order-line.js";
 import { drawSheet } from "./print.js";
-import { applyLook, eraseSettings, loadSettings, saveSettings } from "./settings.js";
+import { applyLook, eraseSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
 import { serverFollower } from "./served.js";
@@ -35,10 +36,12 @@ import { say, writeWith } from "./words.js";
  * @typedef {import("./keeping.js").KeptJob} KeptJob
  */
 
-/** @param {typeof import("./engine.js").startEngine} startEngine */
-export function startPage(startEngine) {
+/**
+ * @param {typeof import("./engine.js").startEngine} startEngine
+ * @param {import("./settings.js").Settings} settings
+ */
+export function startPage(startEngine, settings) {
   const root = document.documentElement;
-  const settings = loadSettings();
   applyLook(settings);
   writeWith(settings);
 
@@ -245,6 +248,7 @@ export function startPage(startEngine) {
     top.keypad();
     line.ask();
     draw();
+    if (languageOf(settings) !== root.lang) top.openAnew();
   }
 
   /** @param {string} path leads to the field that is to be mended */

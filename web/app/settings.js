@@ -5,7 +5,8 @@ const KEY = "wedgewright.settings";
 /**
  * @typedef {object} Settings
  * @property {"auto"|"light"|"dark"} theme
- * @property {"point"|"comma"} decimal
+ * @property {string} language "auto" for the device's own, or one of language.LANGUAGES
+ * @property {"language"|"point"|"comma"} decimal as the language has it, or one of the two
  * @property {"auto"|"on"|"off"} keypad
  * @property {string} view
  * @property {"360"|"180"} bases
@@ -15,7 +16,17 @@ const KEY = "wedgewright.settings";
  */
 
 /** @type {Settings} */
-const DEFAULTS = { theme: "auto", decimal: "point", keypad: "auto", view: "order", bases: "360", date: "iso", paper: "any", hand: "right" };
+const DEFAULTS = {
+  theme: "auto",
+  language: "auto",
+  decimal: "language",
+  keypad: "auto",
+  view: "order",
+  bases: "360",
+  date: "iso",
+  paper: "any",
+  hand: "right",
+};
 
 /** @returns {Settings} */
 export function loadSettings() {

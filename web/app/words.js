@@ -11,9 +11,9 @@ export function useWords(all) {
   words = all;
 }
 
-/** @param {{decimal: string, date: string}} settings how this shop writes its decimal sign and its dates */
+/** @param {{decimal: string, date: string}} settings how this shop writes its decimal sign ("language": as the words' own language does) and its dates */
 export function writeWith({ decimal, date }) {
-  comma = decimal === "comma";
+  comma = (decimal === "language" ? say("page.language.decimal") : decimal) === "comma";
   dates = date;
 }
 

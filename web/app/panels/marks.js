@@ -119,6 +119,12 @@ function label(shape, look, pixel, middle) {
   return { tag: "text", attributes: { ...look, class: `${look["class"]} ${side > 0 ? "after" : "before"}`, ...place }, text };
 }
 
+/** @param {Shape} shape @param {Record<string, string|number>} look @param {number} pixel @returns {Mark[]} a line a comma */
+function viewLabel(shape, look, pixel) {
+  const lines = shown(shape["text"]).split(/(?<=,) /);
+  return lines.map((text, index) => ({ tag: "text", attributes: { ...look, x: shape["x"], y: -shape["y"] + 15 * index * pixel }, text }));
+}
+
 /**
  * The marks of one shape.
  *
@@ -151,7 +157,7 @@ export function marksOf(shape, pixel, { middle, hatch }) {
     case "point":
       return glyphOf(shape.role, x, -y, pixel);
     case "label":
-      return [label(shape, look, pixel, middle)];
+      return shape.role === "view-label" ? viewLabel(shape, look, pixel) : [label(shape, look, pixel, middle)];
     default:
       return [];
   }

@@ -7,6 +7,7 @@ import * as fields from "../fields.js";
 import { benchRecord } from "../bench-record.js";
 import { instrumentCheck } from "../instrument-check.js";
 import { readFile } from "../job.js";
+import { LANGUAGES } from "../language.js";
 import { startSentences } from "../start-words.js";
 import { say } from "../words.js";
 
@@ -24,7 +25,7 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
   const record = benchRecord({ state });
   const check = instrumentCheck({ form, state, engine, taken: record.keep });
   const shop = shopCard(editions);
-  /** @param {"theme"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
+  /** @param {"theme"|"language"|"decimal"|"keypad"|"bases"|"date"|"paper"} name @param {string[]} values */
   const setting = (name, values) => {
     const control = choiceControl(
       { path: `setting.${name}`, kind: "choice", label: `setting_${name}`, words: `setting_${name}`, values },
@@ -89,7 +90,9 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
         "bench-screen",
         say("page.bench.screen"),
         setting("theme", ["auto", "light", "dark"]),
-        setting("decimal", ["point", "comma"]),
+        setting("language", ["auto", ...LANGUAGES]),
+        el("p", { class: "help" }, say("page.bench.language_help")),
+        setting("decimal", ["language", "point", "comma"]),
         setting("keypad", ["auto", "on", "off"]),
         setting("bases", ["360", "180"]),
         setting("date", ["iso", "day", "day-point", "month"]),
