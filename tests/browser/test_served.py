@@ -238,7 +238,7 @@ def test_the_browser_would_install_it(served: Server, page: Page, engine_ready: 
     open_kept(page, served, engine_ready)
     page.locator("#move-bench").click()
     page.locator("#served a").click()
-    expect(page.get_by_role("heading")).to_have_text("Install Wedgewright")
+    expect(page.get_by_role("heading")).to_have_text(["Wedgewright einrichten", "Install Wedgewright"])
     devtools = page.context.new_cdp_session(page)
     manifest = devtools.send("Page.getAppManifest")
     assert manifest["errors"] == []
