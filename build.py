@@ -23,6 +23,7 @@ ROOT = Path(__file__).resolve().parent
 TOOLS = ROOT / ".tools"
 WEB = ROOT / "web"
 DIST = ROOT / "dist"
+RELEASE = ROOT / "release"
 SINGLE = ROOT / "dist-single" / "wedgewright.html"
 WHEELS = TOOLS / "wheels"
 PYODIDE_PYTHON = "3.13"  # the Python inside the page's Pyodide, for which WHEELS are fetched
@@ -237,6 +238,13 @@ def speed() -> None:
     run_python(ROOT / "tests" / "speed" / "speed.py", purposes=("test",))
 
 
+def release() -> None:
+    """Put a release together: zip, single file, wheel, sums, licences, bill of materials, notes, page for IT."""
+    build()
+    arguments = [DIST, SINGLE, install_python("build"), RELEASE]
+    run_python("-m", "delivery.release", *arguments, purposes=("build",))
+
+
 COMMANDS: dict[str, Callable[[], None]] = {
     "build": build,
     "open": build_and_open,
@@ -244,6 +252,7 @@ COMMANDS: dict[str, Callable[[], None]] = {
     "test": test,
     "check": check,
     "speed": speed,
+    "release": release,
 }
 
 

@@ -1,4 +1,4 @@
-"""What the build leaves: a folder that can be copied, the same each time, and a wheel that a stock Pyodide takes."""
+"""What the build leaves: a folder that can be copied, the same each time."""
 
 from __future__ import annotations
 
@@ -41,6 +41,10 @@ def test_folder_holds_what_a_browser_reads_from_disk(dist: Path) -> None:
         "engine/wasm.js",
         "engine/snapshot.js",
         "engine/python.js",
+        "styles.js",
+        "sw.js",
+        "install.html",
+        "install.json",
         "LICENSE.txt",
         "NOTICES.txt",
     }
@@ -55,12 +59,17 @@ def test_single_file_stands_alone(single_file: Path) -> None:
     assert single_file.stat().st_size <= 11 * MEGABYTE
 
 
+def common_start(one: bytes, other: bytes) -> int:
+    """How many bytes are the same at the beginning."""
+    return next((index for index, (a, b) in enumerate(zip(one, other, strict=False)) if a != b), min(len(one), len(other)))
+
+
 def test_program_is_pyodides_with_fewer_exports(dist: Path) -> None:
     """Before and after the list of exports (WebAssembly Core Specification 2.0, section 5.5.10) every byte is the same."""
     stock = (build.WEB / "node_modules" / "pyodide" / "pyodide.asm.wasm").read_bytes()
     ours = read_payload(dist / "engine" / "wasm.js")
-    before = len(os.path.commonprefix([stock, ours]))
-    after = len(os.path.commonprefix([stock[:before:-1], ours[:before:-1]]))
+    before = common_start(stock, ours)
+    after = common_start(stock[:before:-1], ours[:before:-1])
     assert before + after > len(ours) - 0.02 * MEGABYTE
     assert len(stock) - before - after < 0.6 * MEGABYTE
 
@@ -142,17 +151,3 @@ def test_bundle_computes_the_demonstration_as_the_core_does(dist: Path, source: 
     job = json.loads(handle('{"format": "wedgewright.request/1", "do": "demonstration"}'))["job"]
     request = {"format": "wedgewright.request/1", "do": "report", "job": job, "text": True}
     assert shown.rstrip("\n") == json.loads(handle(json.dumps(request)))["text"].rstrip("\n")
-
-
-@pytest.mark.slow
-def test_a_stock_pyodide_installs_the_wheel(tmp_path: Path) -> None:
-    """micropip, of the very version that this Pyodide's own lock file names, installs the core's wheel, which then answers."""
-    (micropip,) = build.WHEELS.glob("micropip-*.whl")
-    lock = json.loads((build.WEB / "node_modules" / "pyodide" / "pyodide-lock.json").read_text("utf-8"))
-    assert micropip.name.split("-")[1] == lock["packages"]["micropip"]["version"]
-    make = [sys.executable, "-m", "hatchling", "build", "--target", "wheel", "--directory", tmp_path]
-    subprocess.run(make, cwd=build.ROOT, check=True, capture_output=True, env={**os.environ, **build.python_with("build")})
-    (wheel,) = tmp_path.glob("wedgewright-*.whl")
-    script = build.ROOT / "tests" / "web" / "install_wheel.mjs"
-    done = subprocess.run([build.node(), script, micropip, wheel], capture_output=True, text=True, encoding="utf-8", check=True)
-    assert json.loads(done.stdout)["format"] == "wedgewright.demonstration/1"

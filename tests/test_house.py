@@ -89,7 +89,7 @@ def test_what_is_public_is_described(path: Path) -> None:
 # --- the page's scripts ----------------------------------------------------------------------------------------------
 
 SCRIPTS = sorted(
-    path for folder in ("app", "worker") for path in (ROOT / "web" / folder).rglob("*.js") if "generated" not in path.parts
+    path for folder in ("app", "worker", "served") for path in (ROOT / "web" / folder).rglob("*.js") if "generated" not in path.parts
 )
 
 BANNED = {
@@ -109,6 +109,8 @@ MEANT = {
     "app/dial.js": (r"toFixed", "the place of a touch, told to the core as text"),
     "app/job.js": (r"Number\(step\)", "a place in a list"),
     "app/prism-rows.js": (r"Number\.parseInt\(place", "a place in a list"),
+    "app/served.js": (r"navigator\.serviceWorker", "keeps the page that came from a server, and is not begun elsewhere"),
+    "served/sw.js": (r"fetch\(addressOf\(name\)|fetch\(request\)|fetch(?=\")", "reads the page's own files from its own server"),
     "worker/python.js": (r'"https://offline\.invalid/"|fetch', "what Pyodide sees in place of the network"),
 }
 
@@ -157,7 +159,7 @@ def test_the_page_refers_to_its_own_files_only() -> None:
 
 # --- what is never written down --------------------------------------------------------------------------------------
 
-IGNORED = {".git", ".tools", "dist", "dist-single", "node_modules", "test-results", "generated", "__pycache__"}
+IGNORED = {".git", ".tools", "dist", "dist-single", "release", "node_modules", "test-results", "generated", "__pycache__"}
 # Written in pieces, so that this file is free of them as well.
 UNWANTED = re.compile(
     "|".join(
@@ -200,6 +202,6 @@ def test_packages_are_pinned() -> None:
         assert all("==" in block and "--hash=sha256:" in block for block in blocks if not block.startswith("#")), path.name
     package = json.loads((ROOT / "web" / "package.json").read_text("utf-8"))
     versions = [*package["dependencies"].values(), *package["devDependencies"].values()]
-    assert all(re.fullmatch(r"\d+\.\d+\.\d+", version) for version in versions)
+    assert all(re.fullmatch(r"(?:npm:pyodide@)?\d+\.\d+\.\d+", version) for version in versions)
     lock = json.loads((ROOT / "web" / "package-lock.json").read_text("utf-8"))
     assert all("integrity" in entry and "resolved" not in entry for name, entry in lock["packages"].items() if name)

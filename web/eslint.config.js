@@ -20,6 +20,7 @@ const rules = {
 export default [
   { ignores: ["node_modules/**", "app/generated/**"] },
   { files: ["app/**/*.js"], languageOptions: { globals: globals.browser }, rules },
+  { files: ["served/**/*.js"], languageOptions: { globals: { ...globals.serviceworker, BUILD: "readonly" } }, rules },
   { files: ["worker/**/*.js"], languageOptions: { globals: { ...globals.worker, PYODIDE_LOCK_INFO: "readonly" } }, rules },
   { files: ["build/**/*.mjs", "*.config.js"], languageOptions: { globals: globals.node }, rules },
 ];

@@ -47,7 +47,7 @@ class Bench:
     `held` are the lenses ordered, `gauges` those of which something was read: what is ordered for
     the other one counts where both were exchanged. `zero` is the standard uncertainty of the
     instrument's zero in prism dioptres; `free_height` where the height read at is common to both
-    but not known.
+    but not known, `free_thinning` where the thinning of a lens is not known.
     """
 
     held: Mapping[Eye, Held]
@@ -55,6 +55,7 @@ class Bench:
     table: CauseTable
     zero: float
     free_height: bool
+    free_thinning: bool
     _last: tuple[object, Variants] = (None, [])
 
     def lens(self, common: Common, eye: Eye, own: Own) -> Lens | None:
@@ -80,8 +81,10 @@ class Bench:
         columns = []
         zero = math.hypot(self.zero, common.zero)
         if zero:
-            columns += [Column((zero, 0.0), (zero, 0.0)), Column((0.0, zero), (0.0, zero))]
-        if lens.t_spread:
+            # What is due beside an existing lens has the zero in its own vertical: it cancels.
+            up = 0.0 if self.held[eye].site.partnered else zero
+            columns += [Column((zero, 0.0), (zero, 0.0)), Column((0.0, up), (0.0, up))]
+        if self.free_thinning:
             columns.append(Column((0.0, lens.t_spread), (0.0, lens.t_spread)))
         if self.free_height:
             moved = lens.moved(0.0, HEIGHT_SPREAD_MM) if lens.has_power else nothing
@@ -176,4 +179,5 @@ def bench_of(job: Job, dues: Mapping[Eye, Due]) -> Bench | None:
         held = {eye: one._replace(site=one.site._replace(second=0.0)) for eye, one in held.items()}
     gauges = {eye: Gauge(one.seen, one.due.prism, table.scatter) for eye, one in seen.items()}
     zero = float(job.instrument.uncertainty.zero)
-    return Bench(held, gauges, table, zero, height_is_free(job))
+    free_thinning = any(one.due.t_spread for one in held.values())
+    return Bench(held, gauges, table, zero, height_is_free(job), free_thinning)

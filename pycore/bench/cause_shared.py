@@ -114,8 +114,8 @@ def _wrong_sense(cause: Cause, held: Mapping[Eye, Held], due: Pair) -> list[Comm
     return _one(cause, due, after=after)
 
 
-def _upside_down(cause: Cause, held: Mapping[Eye, Held], due: Pair) -> list[Common]:
-    by_name = cause.of("by_name") if len(held) == len(OTHER) else 1.0
+def _upside_down(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Common]:
+    by_name = cause.of("by_name") if _can_be_swapped(due) else 1.0
     found = [_variant(cause, 0, by_name, due, after=_turned_over)]
     if by_name < 1.0:
         swapped = _swapped(due)
@@ -177,12 +177,17 @@ def _both_rotated(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Co
     return found
 
 
+def _can_be_swapped(due: Pair) -> bool:
+    """Two lenses, of which both or neither have a written power."""
+    return len(due) == len(OTHER) and len({lens.has_power for lens in due.values()}) == 1
+
+
 def _swapped(due: Pair) -> Pair:
     return {eye: due[OTHER[eye]] for eye in due}
 
 
 def _bodies_swapped(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Common]:
-    return _one(cause, _swapped(due)) if len(due) == len(OTHER) else []
+    return _one(cause, _swapped(due)) if _can_be_swapped(due) else []
 
 
 def _words_swapped(cause: Cause, _held: Mapping[Eye, Held], due: Pair) -> list[Common]:

@@ -5,6 +5,7 @@ from __future__ import annotations
 import contextlib
 import os
 import re
+import shutil
 import signal
 import time
 from pathlib import Path
@@ -104,3 +105,69 @@ def test_where_storage_is_refused_it_is_said_and_the_page_works(dist: Path, page
     expect(page.locator(".save")).to_contain_text("not saved")
     page.locator("#f-line").fill("R -1.00 L -1.00")
     expect(page.locator(".line-echo .understood").first).to_be_visible(timeout=60_000)
+
+
+def test_replacing_the_folder_keeps_the_data(page_from_disk: Page, dist: Path, tmp_path: Path) -> None:
+    page_from_disk.locator("#f-id").fill("T-1")
+    expect(page_from_disk.locator(".save")).to_have_text("saved")
+    context = page_from_disk.context
+    page_from_disk.close()
+    shutil.copytree(dist, tmp_path / "a newer folder")
+    page = context.new_page()
+    page.goto((tmp_path / "a newer folder" / "index.html").as_uri())
+    expect(page.locator(".save")).to_have_text("taken up where it was left")
+    expect(page.locator("#f-id")).to_have_value("T-1")
+
+
+# What a newer program may leave: the same data, one version further, with a store of which this one knows nothing.
+LEAVE_NEWER = """() => new Promise((done) => {
+    indexedDB.open("wedgewright").onsuccess = ({target: {result: now}}) => {
+        now.close();
+        const request = indexedDB.open("wedgewright", now.version + 1);
+        request.onupgradeneeded = () => request.result.createObjectStore("later");
+        request.onsuccess = () => { request.result.close(); done(); };
+    };
+})"""
+# Everything that is kept, as text.
+EVERYTHING = """() => new Promise((done) => {
+    const request = indexedDB.open("wedgewright");
+    request.onsuccess = async () => {
+        const database = request.result, found = {version: database.version};
+        for (const name of database.objectStoreNames) {
+            const place = database.transaction(name).objectStore(name);
+            found[name] = await new Promise((resolve) => { place.getAll().onsuccess = ({target}) => resolve(target.result); });
+        }
+        database.close();
+        done(JSON.stringify(found));
+    };
+})"""
+
+
+def test_what_a_newer_program_keeps_is_shown_and_left_alone(page_from_disk: Page, dist: Path, tmp_path: Path) -> None:
+    page_from_disk.locator("#f-id").fill("T-1")
+    expect(page_from_disk.locator(".save")).to_have_text("saved")
+    context = page_from_disk.context
+    page_from_disk.close()
+    empty = tmp_path / "empty.html"
+    empty.write_text("<!doctype html><title>empty</title>")
+    outside = context.new_page()
+    outside.goto(empty.as_uri())
+    outside.evaluate(LEAVE_NEWER)
+    before = outside.evaluate(EVERYTHING)
+    assert '"later":[]' in before
+    assert "T-1" in before
+
+    page = context.new_page()
+    page.goto((dist / "index.html").as_uri())
+    expect(page.locator("#f-id")).to_have_value("T-1")
+    expect(page.locator(".save")).to_contain_text("of a newer version")
+    page.locator("#f-id").fill("T-2")
+    page.get_by_role("button", name="Load the demonstration job").first.click()
+    expect(page.locator("#strip")).to_contain_text("Within", timeout=60_000)
+    page.locator("#move-decide").click()
+    page.locator("#f-initials").fill("XY")
+    page.locator("#sign").click()
+    expect(page.get_by_text("Signed XY")).to_be_visible()
+    expect(page.locator(".save")).to_contain_text("of a newer version")
+    page.wait_for_timeout(500)  # more than any pause before a change is saved
+    assert outside.evaluate(EVERYTHING) == before

@@ -273,6 +273,16 @@ def test_a_new_lens_not_matched_to_the_old_partner() -> None:
     assert leading(read((PR[0], PR[1] + THIN), (PL[0], PL[1] + THIN), job)) == {(AS_ORDERED, R)}
 
 
+def test_beside_an_existing_partner_the_zero_cancels_vertically() -> None:
+    """What is due in the new lens was read on the same instrument: only its horizontal may be off by the zero."""
+    job = patched(PROGRESSIVE, left__partner=True, instrument__zero_uncertainty="0.5")
+    partner = (PL[0], PL[1] + THIN)
+    aside = chance(read((PR[0] + 0.9, PR[1] + THIN), partner, job), AS_ORDERED, "right")
+    upwards = chance(read((PR[0], PR[1] + THIN + 0.9), partner, job), AS_ORDERED, "right")
+    assert aside > 0.9
+    assert upwards < 0.3
+
+
 def test_read_at_the_fitting_cross() -> None:
     """p − F r, r = (0, 4) mm: right F = S + C sin²A … by hand."""
     job = patched(PROGRESSIVE, right__cross_above_prp_mm="4", left__cross_above_prp_mm="4")

@@ -7,10 +7,11 @@ import math
 from typing import Any
 
 import pytest
+from hypothesis import given
 
 from pycore.imagine import imaginable
 from pycore.words import say, table
-from tests.core.strategies import Job, ask, demonstration, errors_of, patched, report_on
+from tests.core.strategies import Job, ask, demonstration, errors_of, jobs, patched, report_on
 from tests.door.pairs import words
 
 ENTRY = {"code", "eyes", "with", "probability", "residual", "estimate", "tied_with", "place", "tell_apart", "sentence", "shown"}
@@ -173,6 +174,27 @@ def test_every_cause_look_and_result_has_its_words() -> None:
     assert set(said["cause_places"]) == PLACES
     assert set(said["looks"]) == set(LOOKS)
     assert set(said["look_results"]) == {f"{look}.{result}" for look, results in LOOKS.items() for result in results}
+
+
+@given(jobs())
+def test_any_job_is_weighed(job: Job) -> None:
+    """Whatever is ordered and read: probabilities that sum to 1, causes, groups and places alike, and a look that can be said."""
+    report = causes(job)
+    if not report["causes"]:
+        return
+    for parts in (report["causes"], report["cause_places"]):
+        assert math.isclose(sum(part["probability"] for part in parts), 1.0, abs_tol=1e-9)
+    assert all(0.0 <= entry["probability"] <= 1.0 for entry in report["causes"])
+    assert all(0.0 <= group["probability"] <= 1.0 + 1e-9 for group in report["cause_groups"])
+    json.dumps(report, allow_nan=False)
+
+
+def test_a_lens_without_a_written_power_is_swapped_with_nothing() -> None:
+    """Bodies can be weighed against each other only where both powers are known."""
+    job = patched(REVERSED, right__sphere=None, right__cylinder=None, right__axis=None)
+    codes = {entry["code"] for entry in causes(job)["causes"]}
+    assert "lenses-swapped" not in codes
+    assert "base-reversed" in codes
 
 
 # --- what would be seen if ----------------------------------------------------------------------------------------------

@@ -12,6 +12,8 @@ from pycore.api import handle
 from pycore.sections import SECTIONS
 
 JOBS = 60
+WHY = ("causes", "look", "remedy")  # measured by themselves
+BODY = [name for name in SECTIONS if name not in WHY]
 REQUEST = {"format": "wedgewright.request/1", "do": "report"}
 
 
@@ -38,5 +40,5 @@ def measure_sections() -> tuple[float, float]:
     plain, added = [], []
     for job in complete_jobs():
         plain.append(milliseconds(job, []))
-        added.append(milliseconds(job, list(SECTIONS)) - plain[-1])
+        added.append(milliseconds(job, BODY) - plain[-1])
     return statistics.median(plain), statistics.median(added)

@@ -226,7 +226,7 @@ test("a question that has not begun can be taken back; one that is being answere
 test("a keystroke waits behind one section at most", async () => {
   const engine = await startAsked();
   const worker = FakeWorker.last;
-  const keeper = createKeeper({ engine, names: NAMES, first: () => [], changed: () => {}, pauseMs: 1 });
+  const keeper = createKeeper({ lane: "sections", engine, names: NAMES, first: () => [], changed: () => {}, pauseMs: 1 });
   keeper.follow({ id: "a" }, []);
   await settle();
   assert.deepEqual(worker.asked.at(-1).sections, ["layout"]);

@@ -51,7 +51,7 @@ export function benchRecord({ state }) {
     keep(found) {
       record = found;
       draw();
-      store?.put("bench", KEY, found);
+      store?.put("bench", KEY, found).catch(() => {}); // not kept, as the page says
     },
     /** @param {import("./store.js").Store} opened brings the bench back where the draft does not know it */
     async open(opened) {

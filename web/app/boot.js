@@ -18,9 +18,12 @@ const PAYLOADS = {
   python: { file: "engine/python.js", id: "wedgewright-python", global: "wedgewrightPython" },
 };
 
-/** The addresses a script or a worker may have: our own payloads, and a Blob made here. */
+/** What else is read from the folder: the service worker, and the styles where a server sends them under a wrong type. */
+const OTHERS = ["sw.js", "styles.js"];
+
+/** The addresses a script or a worker may have: our own files, and a Blob made here. */
 const isOurs = (/** @type {string} */ url) =>
-  url.startsWith("blob:") || Object.values(PAYLOADS).some(({ file }) => url === file);
+  url.startsWith("blob:") || OTHERS.includes(url) || Object.values(PAYLOADS).some(({ file }) => url === file);
 
 const trusted = /** @type {any} */ (globalThis).trustedTypes?.createPolicy("rt", {
   createScriptURL(/** @type {string} */ url) {
@@ -39,6 +42,20 @@ const trusted = /** @type {any} */ (globalThis).trustedTypes?.createPolicy("rt",
  */
 export function scriptUrl(url) {
   return trusted ? trusted.createScriptURL(url) : url;
+}
+
+/**
+ * @param {string} file one of ours
+ * @returns {Promise<unknown>}
+ */
+export function loadScript(file) {
+  return new Promise((resolve, reject) => {
+    const script = document.createElement("script");
+    script.src = scriptUrl(file);
+    script.onload = resolve;
+    script.onerror = () => reject(new Error(`${file} cannot be read.`));
+    document.head.append(script);
+  });
 }
 
 /** Resolves when something of the page has been painted, or soon where that is not reported or the page is not shown. */
@@ -80,17 +97,12 @@ export async function payload(name) {
   const { file, id, global } = PAYLOADS[name];
   if (document.documentElement.dataset.single !== undefined) {
     await wholePage();
+    performance.mark(`payload-${name}`);
     return id ? document.getElementById(id)?.textContent : /** @type {any} */ (globalThis)[global];
   }
   if (!(global in globalThis)) {
     performance.mark(`payload-${name}`);
-    await new Promise((resolve, reject) => {
-      const script = document.createElement("script");
-      script.src = scriptUrl(file);
-      script.onload = resolve;
-      script.onerror = () => reject(new Error(`${file} cannot be read.`));
-      document.head.append(script);
-    });
+    await loadScript(file);
   }
   return /** @type {any} */ (globalThis)[global];
 }

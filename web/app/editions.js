@@ -46,14 +46,14 @@ export function shopEditions({ engine, listed }) {
       if (given["errors"]) return given["errors"];
       const taken = /** @type {ShopEdition} */ (edition);
       editions = [...editions.filter(({ id }) => id !== taken.id), taken];
-      await store?.put("editions", taken.id, taken);
+      await store?.put("editions", taken.id, taken).catch(() => {}); // not kept, as the page says: it holds until it is closed
       await list();
       return [];
     },
     /** @param {string} id */
     async remove(id) {
       editions = editions.filter((edition) => edition.id !== id);
-      await store?.remove("editions", id);
+      await store?.remove("editions", id).catch(() => {});
       await list();
     },
   };

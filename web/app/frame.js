@@ -115,6 +115,10 @@ export function frame({ state, views, settings, toggleKeypad, drawView }) {
       // While it starts, the strip says so; here stands only what lasts.
       starting.textContent = startStatus(code, start);
     },
+    /** Whether something typed is still on its way into the store. */
+    get saving() {
+      return save.dataset["status"] === "saving";
+    },
     /** @param {import("./keeping.js").SaveStatus} status */
     saved(status) {
       save.textContent = say(`page.saving.${status}`);

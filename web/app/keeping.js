@@ -5,7 +5,7 @@
  * @typedef {import("./store.js").Store} Store
  * @typedef {{version: number, entries: Entries, hash: string}} Draft
  * @typedef {{key: string, id: string, at: string, initials: string, outcome: string, sentence: string, edition: string, entries: Entries}} KeptJob
- * @typedef {"saving"|"saved"|"recovered"|"elsewhere"|"off"} SaveStatus
+ * @typedef {"saving"|"saved"|"recovered"|"elsewhere"|"newer"|"off"} SaveStatus
  */
 
 const PAUSE_MS = 150;
@@ -61,6 +61,10 @@ export async function keepDraft(state, store, tell) {
     state.recover(draft.entries);
     if (untouched) saved = state.version;
     tell("recovered");
+  }
+  if (store.newer) {
+    tell("newer");
+    return;
   }
   if (!(await onlyWindow())) {
     tell("elsewhere");

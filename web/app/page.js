@@ -19,6 +19,7 @@ import { drawSheet } from "./print.js";
 import { applyLook, eraseSettings, saveSettings } from "./settings.js";
 import { createState } from "./state.js";
 import { createSteps } from "./steps.js";
+import { serverFollower } from "./served.js";
 import { openStore } from "./store.js";
 import { outcomeOf, sentenceOf, verdictStrip } from "./verdict.js";
 import { benchView } from "./views/bench.js";
@@ -65,8 +66,10 @@ export function startPage(startEngine, settings) {
       standing.engine = code;
       if (head) showStart();
       foot?.draw(standing);
+      if (code === "ready") server.follow();
     },
   });
+  const server = serverFollower({ state, unsaved: () => head?.saving ?? false });
   const steps = createSteps(engine, state, (faults) => refuse(faults));
   const line = orderLine({ engine, state, settings });
   const invented = demonstration({ engine, state, refuse, loaded: () => head?.show("read"), host: byId("banner") });
@@ -172,6 +175,7 @@ export function startPage(startEngine, settings) {
   }
 
   function newJob() {
+    server.update();
     state.replace(nextJob(state.entries));
     top.show("order");
     byId("f-id").focus();
@@ -215,7 +219,7 @@ export function startPage(startEngine, settings) {
       edition: standing.report?.verdict?.edition.name ?? "",
       entries,
     };
-    store?.put("jobs", kept.key, kept).then(showJobs);
+    store?.put("jobs", kept.key, kept).then(showJobs, () => top.saved(store?.newer ? "newer" : "off"));
   }
 
   async function showJobs() {

@@ -5,15 +5,20 @@
  */
 
 const NAME = "wedgewright";
-const VERSION = 2; // 1 had no place for the bench
 const STORES = ["drafts", "jobs", "editions", "bench"];
 
 /** @typedef {Awaited<ReturnType<typeof openStore>>} Store */
 
-/** @returns {Promise<IDBDatabase>} */
-function open() {
+/**
+ * Of the way in which all this is laid down: one more with each change that an older program would not understand.
+ * 1 had no place for the bench.
+ */
+const DATA_VERSION = 2;
+
+/** @param {number} [version] without it, whatever is there @returns {Promise<IDBDatabase>} */
+function open(version) {
   return new Promise((resolve, reject) => {
-    const request = indexedDB.open(NAME, VERSION);
+    const request = indexedDB.open(NAME, version);
     request.onupgradeneeded = () => {
       const { objectStoreNames: there } = request.result;
       for (const name of STORES) if (!there.contains(name)) request.result.createObjectStore(name);
@@ -24,8 +29,19 @@ function open() {
   });
 }
 
+/** What a newer program has laid down is opened all the same, to be shown. @returns {Promise<IDBDatabase>} */
+async function openAny() {
+  try {
+    return await open(DATA_VERSION);
+  } catch (error) {
+    if (error instanceof DOMException && error.name === "VersionError") return open();
+    throw error;
+  }
+}
+
 export async function openStore() {
-  const database = await open();
+  const database = await openAny();
+  const newer = database.version > DATA_VERSION;
   // Another window may erase the data; holding on would block it.
   database.onversionchange = () => database.close();
 
@@ -38,6 +54,7 @@ export async function openStore() {
    */
   function transact(store, mode, act) {
     return new Promise((resolve, reject) => {
+      if (newer && mode === "readwrite") throw new DOMException("What is kept is newer than this program.", "ReadOnlyError");
       const transaction = database.transaction(store, mode, { durability: "strict" });
       const request = act(transaction.objectStore(store));
       transaction.oncomplete = () => resolve(request.result);
@@ -47,6 +64,8 @@ export async function openStore() {
   }
 
   return {
+    /** Whether what is kept was laid down by a newer program: then it is shown and nothing is written, erasing apart. */
+    newer,
     /** @param {string} store @param {IDBValidKey} key @param {unknown} value */
     put: (store, key, value) => transact(store, "readwrite", (place) => place.put(value, key)),
     /** @param {string} store @returns {Promise<any[]>} */

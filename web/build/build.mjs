@@ -14,6 +14,7 @@ import { buildScripts, folderPage, singlePage } from "./page.mjs";
 import { namesOf, withUsedExports } from "./program.mjs";
 import { buildPythonZip } from "./python.mjs";
 import { usedScripts } from "./scripts.mjs";
+import { servedFiles } from "./served.mjs";
 import { buildSnapshot } from "./snapshot.mjs";
 import { engineSource } from "./worker.mjs";
 import { writeWords } from "./words.mjs";
@@ -37,6 +38,13 @@ async function notices(folder) {
   const names = ["bundled.txt", "mpl-2.0.txt", "python-3.13.txt"];
   const texts = await Promise.all(names.map((name) => readFile(join(folder, name), "utf8")));
   return texts.join(`\n${"=".repeat(120)}\n\n`);
+}
+
+/** The program's version, as the core says it. @param {string} core */
+async function versionOf(core) {
+  const found = /^__version__ = "([^"]+)"$/m.exec(await readFile(join(core, "__init__.py"), "utf8"));
+  if (!found) throw new Error("__init__.py does not say the program's version.");
+  return found[1];
 }
 
 /**
@@ -81,18 +89,20 @@ async function main() {
     snapshot: packed(await buildSnapshot(maker, program, library)),
     python: packed(library),
   };
-  await writeFolder(resolve(values.out), {
+  const files = {
     "index.html": folderPage(page),
     "app.js": page.app,
     "app.css": page.style,
     "print.css": page.printStyle,
+    "styles.js": `globalThis.wedgewrightStyles = ${JSON.stringify({ screen: page.style, print: page.printStyle })};\n`,
     "engine/worker.js": engine,
     "engine/wasm.js": wide(`globalThis.wedgewrightWasm = "${page.wasm}";\n`),
     "engine/snapshot.js": wide(`globalThis.wedgewrightSnapshot = "${page.snapshot}";\n`),
     "engine/python.js": wide(`globalThis.wedgewrightPython = "${page.python}";\n`),
     "LICENSE.txt": await readFile(resolve(values.licence), "utf8"),
     "NOTICES.txt": await notices(resolve(values.notices)),
-  });
+  };
+  await writeFolder(resolve(values.out), { ...files, ...(await servedFiles(web, files, await versionOf(core))) });
   await writeFolder(resolve(values.single), { "wedgewright.html": wide(singlePage(page)) });
 }
 

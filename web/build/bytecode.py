@@ -11,6 +11,7 @@ import io
 import sys
 import zipfile
 from pathlib import Path, PurePosixPath
+from types import CodeType
 
 CORE = Path("/core")
 # Imported by the library itself at the moment of use, so not seen in sys.modules after a start.
@@ -55,10 +56,22 @@ def without_docstrings(tree: ast.Module) -> ast.Module:
     return tree
 
 
+def without_lines(code: CodeType) -> CodeType:
+    """The same code with a table that says of no instruction on which line it was: there are no sources to look into.
+
+    An entry of the table is one byte for up to eight units of code (CPython 3.13, InternalDocs/code_objects.md: 15 is "no
+    location"); with the lines in it the table is a third of what is packed.
+    """
+    inner = tuple(without_lines(value) if isinstance(value, CodeType) else value for value in code.co_consts)
+    full, rest = divmod(len(code.co_code) // 2, 8)
+    table = b"\xff" * full + (bytes([0xF8 | (rest - 1)]) if rest else b"")
+    return code.replace(co_consts=inner, co_linetable=table)
+
+
 def byte_code(source: bytes, name: str) -> bytes:
     """The unchecked .pyc of a source: never compared with a source file, since there is none."""
     tree = without_docstrings(ast.parse(source, name))
-    code = compile(tree, name, "exec", dont_inherit=True, optimize=0)
+    code = without_lines(compile(tree, name, "exec", dont_inherit=True, optimize=0))
     digest = importlib.util.source_hash(source)
     return bytes(importlib._bootstrap_external._code_to_hash_pyc(code, digest, False))  # type: ignore[attr-defined]
 

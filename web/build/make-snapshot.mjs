@@ -19,8 +19,8 @@ const page = /** @type {any} */ (globalThis);
 const NOW = 315532800000; // 1980-01-01, as in the zip
 page.Date = class extends Date {
   static now = () => NOW;
-  constructor(/** @type {any[]} */ ...given) {
-    super(...(given.length > 0 ? given : [NOW]));
+  constructor(/** @type {any} */ moment = NOW) {
+    super(moment);
   }
 };
 performance.now = () => 0;

@@ -36,7 +36,7 @@ export async function serve({ program, library, warm }, pyodideBehind) {
     untouched = new Uint32Array(memory.buffer.slice(0));
   };
   const load = offlinePyodide(pyodideBehind, WebAssembly.compile(program));
-  const pyodide = await load({ library, fresh }, { _makeSnapshot: true });
+  const pyodide = await load({ modules: library, fresh }, { _makeSnapshot: true });
   pyodide.runPython(warm);
   clearFreeMemory(pyodide._module);
   const snapshot = pyodide.makeMemorySnapshot();

@@ -9,7 +9,7 @@ import { addFresh } from "./memory.js";
 /** @typedef {(request: string) => string} Handle the core's door */
 /**
  * What there is when Pyodide is loaded: the library's zip, if any, and who sees the memory before the program has run.
- * @typedef {{library?: Uint8Array<ArrayBuffer>, fresh?: (memory: WebAssembly.Memory) => void}} World
+ * @typedef {{modules?: Uint8Array<ArrayBuffer>, fresh?: (memory: WebAssembly.Memory) => void}} World
  */
 /** @typedef {(world: World, options?: object) => Promise<any>} Load */
 
@@ -40,7 +40,7 @@ function withoutGraphics(addresses) {
  */
 export function offlinePyodide(pyodideBehind, program) {
   /** @type {Required<World>} */
-  const world = { library: new Uint8Array(), fresh: () => {} };
+  const world = { modules: new Uint8Array(), fresh: () => {} };
   // Where the program cannot be made, Pyodide waits for ever; so it is said here.
   /** @type {(error: unknown) => void} */
   let fail = () => {};
@@ -52,7 +52,7 @@ export function offlinePyodide(pyodideBehind, program) {
       return new Response(null, { headers: { "Content-Type": "application/wasm" } });
     }
     if (String(url).endsWith("python_stdlib.zip")) {
-      return new Response(world.library);
+      return new Response(world.modules);
     }
     throw new TypeError("There is no network here.");
   };
@@ -134,7 +134,7 @@ export async function startFromSnapshot(load, kept) {
  */
 export async function startFromLibrary(load, python) {
   const library = await readAll(inflated(bytesOf(python)));
-  const pyodide = await load({ library });
+  const pyodide = await load({ modules: library });
   performance.mark("pyodide-loaded");
   // What is loaded now stays; looking it over again and again would only make the start and some keystrokes late.
   const collector = pyodide.pyimport("gc");

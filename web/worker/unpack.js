@@ -21,7 +21,7 @@ export function bytesOf(text) {
     units[length] = unit;
     length += 1;
   }
-  return new Uint8Array(units.buffer, 0, 2 * length - Number(text[0]));
+  return new Uint8Array(units.buffer, 0, 2 * length - (text[0] === "1" ? 1 : 0));
 }
 
 /**
@@ -46,7 +46,7 @@ export async function readAll(stream) {
 }
 
 /** Some milliseconds of work. */
-const PIECE = 200_000;
+const PIECE = 60_000;
 
 /** Lets everything else that waits for this thread go first. */
 function others() {
@@ -72,8 +72,8 @@ export async function inflatedInPieces(bytes) {
   const write = async () => {
     const writer = gunzip.writable.getWriter();
     for (let at = 0; at < bytes.length; at += PIECE) {
-      await writer.write(bytes.subarray(at, at + PIECE));
       await others();
+      await writer.write(bytes.subarray(at, at + PIECE));
     }
     await writer.close();
   };

@@ -99,7 +99,14 @@ export function benchView({ form, state, engine, settings, settingsChanged, eras
         setting("paper", ["any", "a4", "letter"]),
       ),
       card("bench-start", say("page.bench.start"), started),
-      card("bench-data", say("page.bench.data"), el("p", { class: "help" }, say("page.bench.data_help")), eraseKey, confirm),
+      card(
+        "bench-data",
+        say("page.bench.data"),
+        el("p", { class: "help" }, say("page.bench.data_help")),
+        el("div", { id: "served" }),
+        eraseKey,
+        confirm,
+      ),
     ),
   };
 }
