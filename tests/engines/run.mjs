@@ -21,6 +21,7 @@ async function runOnce(driver, name, { origin, start, url }) {
   const marks = [];
   const fail = (/** @type {string} */ what) => wrong.push(`${where}: ${what}`);
   await driver.open(url);
+  const began = await driver.evaluate("document.documentElement.dataset.engine");
   for (const [step, act] of STEPS) {
     try {
       await act(driver);
@@ -36,7 +37,7 @@ async function runOnce(driver, name, { origin, start, url }) {
   for (const error of errors) fail(`console: ${error}`);
   for (const address of elsewhere) fail(`loaded: ${address}`);
   const said = await driver.evaluate('document.getElementById("started")?.textContent ?? ""');
-  console.log(`${where.padEnd(52)} ${marks.join("").padEnd(STEPS.length)} ${errors.length} errors, ${elsewhere.length} loaded; ${said}`);
+  console.log(`${where.padEnd(52)} ${marks.join("").padEnd(STEPS.length)} ${errors.length} errors, ${elsewhere.length} loaded; typed while ${began}; ${said}`);
 }
 
 console.log(`Steps: ${STEPS.map(([step], index) => `${index + 1} ${step}`).join("; ")}.\n`);

@@ -48,7 +48,7 @@ async function touchDial(driver, x, y) {
 
 /** @type {[string, (driver: Driver) => Promise<void>][]} */
 export const STEPS = [
-  ["typed before it is ready", async (driver) => {
+  ["order typed at once", async (driver) => {
     await driver.evaluate('document.getElementById("f-line").focus()');
     await driver.type(LINE);
     await until(driver, `${value("f-line")} === ${JSON.stringify(LINE)}`);
