@@ -12,7 +12,7 @@ import sys
 from pathlib import Path
 
 sys.path.insert(0, str(Path(__file__).resolve().parents[1] / "browser"))
-import chromium  # noqa: E402 (found beside the browser's tests)
+import chromium
 
 PACKAGES = {"firefox-esr": "firefox-esr", "WebKitWebDriver": "webkit2gtk-driver", "xvfb-run": "xvfb", "xauth": "xauth"}
 
