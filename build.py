@@ -231,6 +231,14 @@ def check() -> None:
     )
 
 
+def engines() -> None:
+    """Run the same job in Chromium, Firefox and WebKit, from disk and served, and list what differs."""
+    install_browser()
+    run([sys.executable, ROOT / "tests" / "engines" / "install.py"])
+    build()
+    run_node(ROOT / "tests" / "engines" / "run.mjs", DIST)
+
+
 def speed() -> None:
     """Measure the start and a keystroke, as ratios within one run, and the sizes."""
     install_browser()
@@ -252,6 +260,7 @@ COMMANDS: dict[str, Callable[[], None]] = {
     "test": test,
     "check": check,
     "speed": speed,
+    "engines": engines,
     "release": release,
 }
 

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import functools
+import http.server
 import re
 import shutil
 import socketserver
@@ -119,6 +121,7 @@ DAMAGES: dict[str, Callable[[Path], object]] = {
     "missing": Path.unlink,
     "cut short": lambda file: file.write_bytes(file.read_bytes()[: file.stat().st_size // 4 * 2]),
     "of another build": of_another_build,
+    "of another program": lambda file: write_payload(file, read_payload(file), "01234567"),
     "something else": lambda file: write_payload(file, b"PK" + bytes(100_000)),
 }
 
@@ -142,6 +145,31 @@ def test_starts_from_the_library_when_asked(dist: Path, single_file: Path, page:
     engine_ready(page)
     demonstration_drawn(page)
     assert "as the page’s address asks" in how_it_started(page)
+
+
+class SayingCharset(http.server.SimpleHTTPRequestHandler):
+    """A server that names one character set for every file."""
+
+    charset = ""
+
+    def guess_type(self, path: Any) -> str:
+        """The type, with a character set that is not the file's."""
+        return f"{super().guess_type(path)}; charset={self.charset}"
+
+    def log_message(self, format: str, *arguments: object) -> None:
+        """Say nothing."""
+
+
+@pytest.mark.parametrize("charset", ["utf-8", "windows-1252"])
+def test_a_server_may_name_another_character_set(dist: Path, page: Page, engine_ready: Ready, charset: str) -> None:
+    """The first bytes of a payload's file are heeded before a server's word (WHATWG Encoding Standard, "decode")."""
+    handler = functools.partial(type("Handler", (SayingCharset,), {"charset": charset}), directory=str(dist))
+    with http.server.ThreadingHTTPServer(("127.0.0.1", 0), handler) as server:
+        threading.Thread(target=server.serve_forever, daemon=True).start()
+        page.goto(f"http://127.0.0.1:{server.server_port}/index.html")
+        engine_ready(page)
+        assert how_it_started(page) == "Started from the memory kept in the program."
+        server.shutdown()
 
 
 # --- the policy ------------------------------------------------------------------------------------------------------

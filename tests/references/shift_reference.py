@@ -132,7 +132,7 @@ def groups_of(pair: Pair) -> list[Group]:
     respond = pair.responses()
     difference = respond["right"] - respond["left"]
     mounted = pair.state == "mounted"
-    uncertainty = 0.08 * np.sqrt(sum(1.0 / pair.count[eye] for eye in EYES))
+    uncertainty = float(np.sqrt(sum(variance(pair.count[eye]) for eye in EYES)))
     for row, direction in ((1, "vertical"), (0, "horizontal")):
         only_the_pair = direction == "vertical" and not pair.lens_vertical
         limit = _pair_limit(pair, direction)
@@ -154,6 +154,15 @@ def _alternatives(pair: Pair, prism: list[Ball] | None, other: tuple[bool, list[
     if mode == "both" and millimetres:
         return [prism + millimetres] if prism else [None]
     return [prism, millimetres] if millimetres else [prism]
+
+
+def variance(count: int) -> float:
+    """Of the mean of one or two readings, each good to 0.08 prism dioptres on a scale in steps of 0.25.
+
+    What the step leaves open, step squared over 12, is in both alike (JCGM 100:2008, F.2.2.1); only the rest is averaged.
+    """
+    step = 0.25**2 / 12.0
+    return (0.08**2 - step) / count + step
 
 
 def _strip(pair: Pair, row: Array, error: float, limit: float, uncertainty: float) -> Ball | None:
@@ -244,7 +253,7 @@ def _mounted_each(pair: Pair, respond: dict[str, Array], eye: str) -> list[Group
 
 
 def _component(pair: Pair, respond: dict[str, Array], eye: str, row: int, limit: D) -> Group:
-    uncertainty = 0.08 / np.sqrt(pair.count[eye])
+    uncertainty = float(np.sqrt(variance(pair.count[eye])))
     strip = _strip(pair, respond[eye][row], pair.error[eye][row], float(limit), uncertainty)
     return [[strip] if strip else None]
 
@@ -260,7 +269,7 @@ def _single(pair: Pair, respond: dict[str, Array], eye: str) -> list[Group]:
     vector = pair.edition in ref.ANSI and pair.lens_vertical and pair.option("lens-prism") == "vector"
     if not vector:
         return [_component(pair, respond, eye, row, limit) for row in rows if (limit := limits[row]) is not None]
-    disc = _disc(pair, respond[eye], pair.error[eye], 0.33, 0.08 / np.sqrt(pair.count[eye]))
+    disc = _disc(pair, respond[eye], pair.error[eye], 0.33, float(np.sqrt(variance(pair.count[eye]))))
     return [_alternatives(pair, [disc] if disc else None, _position(pair, eye))]
 
 

@@ -15,8 +15,8 @@ from playwright.sync_api import Page, sync_playwright
 ROOT = Path(__file__).resolve().parents[2]
 sys.path.insert(0, str(ROOT / "tests" / "browser"))
 sys.path.insert(0, str(ROOT / "tests" / "speed"))
-from chromium import FLAGS, find  # noqa: E402
 from causes import measure_causes  # noqa: E402
+from chromium import FLAGS, find  # noqa: E402
 from remedy import measure_remedy  # noqa: E402
 from sections import measure_sections  # noqa: E402
 from starts import FOLDER, measure_and_report, our_start, plain_site, show  # noqa: E402

@@ -7,6 +7,8 @@ import { textOf } from "../../web/build/payload.mjs";
 import { createKeeper } from "../../web/app/panels/keeper.js";
 import { NAMES } from "../../web/app/section-names.js";
 
+const PROGRAM = "001234567 the program";
+
 /** Stands in for a browser's worker: keeps what it is sent, answers when the test says so. */
 class FakeWorker {
   static made = [];
@@ -55,7 +57,7 @@ async function start(options = {}) {
   states = [];
   const engine = startEngine({ onState: (state) => states.push(state), ...options });
   do await settle();
-  while (!FakeWorker.refuse && (FakeWorker.last?.sent.length ?? 0) < 2);
+  while (!FakeWorker.refuse && engine.start.why === "" && (FakeWorker.last?.sent.length ?? 0) < 2);
   return engine;
 }
 
@@ -75,8 +77,8 @@ beforeEach(() => {
   globalThis.Worker = FakeWorker;
   globalThis.document = { visibilityState: "hidden", readyState: "complete", documentElement: { dataset: {} } };
   globalThis.wedgewrightEngine = function () {};
-  globalThis.wedgewrightWasm = "the program";
-  globalThis.wedgewrightSnapshot = textOf(gzipSync("the memory"));
+  globalThis.wedgewrightWasm = PROGRAM;
+  globalThis.wedgewrightSnapshot = textOf(gzipSync("the memory"), "01234567");
   globalThis.wedgewrightPython = "the library";
 });
 
@@ -90,7 +92,7 @@ test("the worker is given both payloads, and what was asked before it was ready 
   const engine = await start();
   const answer = engine.ask({ do: "early" }, { lane: "a" });
   assert.deepEqual(FakeWorker.last.sent, [
-    { kind: "wasm", body: "the program" },
+    { kind: "wasm", body: PROGRAM },
     { kind: "snapshot", body: new TextEncoder().encode("the memory") },
   ]);
   FakeWorker.last.say({ kind: "ready" });
@@ -243,7 +245,7 @@ test("a keystroke waits behind one section at most", async () => {
 });
 
 const LIBRARY = [
-  { kind: "wasm", body: "the program" },
+  { kind: "wasm", body: PROGRAM },
   { kind: "python", body: "the library" },
 ];
 
@@ -273,6 +275,14 @@ test("a kept memory that takes too long is given up for the library", async () =
 test("a kept memory that is not there is given up for the library", async () => {
   delete globalThis.wedgewrightSnapshot;
   const engine = await start();
+  assert.deepEqual(FakeWorker.last.sent, LIBRARY);
+  assert.equal(engine.start.why, "failed");
+});
+
+test("a kept memory of another program is given up for the library", async () => {
+  globalThis.wedgewrightSnapshot = textOf(gzipSync("the memory"), "89abcdef");
+  const engine = await start();
+  while (engine.start.source !== "python" || FakeWorker.last.sent.length < 2) await settle();
   assert.deepEqual(FakeWorker.last.sent, LIBRARY);
   assert.equal(engine.start.why, "failed");
 });

@@ -8,15 +8,15 @@ import { guestJob, nextJob, settleBench, toJob } from "../../web/app/job.js";
 
 const SEEN = {
   "right.sphere": "-2.00",
-  "page.check.begun": "true",
-  "page.check.zero.x": "0",
-  "page.check.zero.y": "0",
-  "page.check.known.amount": "3",
-  "page.check.known.base": "40",
-  "page.check.seen[0].x": "2.25",
-  "page.check.seen[0].y": "2",
-  "page.check.seen[2].x": "2.50",
-  "page.check.seen[2].y": "2",
+  "page-check.begun": "true",
+  "page-check.zero.x": "0",
+  "page-check.zero.y": "0",
+  "page-check.known.amount": "3",
+  "page-check.known.base": "40",
+  "page-check.seen[0].x": "2.25",
+  "page-check.seen[0].y": "2",
+  "page-check.seen[2].x": "2.50",
+  "page-check.seen[2].y": "2",
 };
 
 test("what was seen goes to the core as text, dropped places closed up, and is no part of the job", () => {

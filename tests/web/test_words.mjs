@@ -9,9 +9,12 @@ import { dateText, say, shown, useWords, writeWith } from "../../web/app/words.j
 
 const ROOT = new URL("../../web/", import.meta.url).pathname;
 const own = JSON.parse(readFileSync(join(ROOT, "words-page.en.json"), "utf8"));
+// The page to install from has no script: its codes stand in it as {{page.…}}.
+const installPage = readFileSync(join(ROOT, "served", "install.html"), "utf8").replace(/\{\{([\w.]+)\}\}/g, '"$1"');
 const sources = readdirSync(join(ROOT, "app"), { recursive: true })
   .filter((name) => String(name).endsWith(".js") && !String(name).startsWith("generated"))
   .map((name) => readFileSync(join(ROOT, "app", String(name)), "utf8"))
+  .concat(installPage)
   .join("\n");
 
 /** @param {any} node @param {string} path @returns {string[]} */

@@ -135,15 +135,20 @@ export function startEngine({
     }
   };
 
+  const openFromLibrary = (/** @type {"failed" | "slow"} */ why) => {
+    closeLink();
+    leaveSnapshot(why);
+    open();
+  };
+
   // The question that was being answered is asked once more of the new worker, unless a newer one has come.
   const crashed = () => {
-    const hope = start.source === "snapshot" && !ready; // it has not run yet, and there is another way to start it
-    closeLink();
-    leaveSnapshot("failed");
-    if (hope) {
-      open();
+    if (start.source === "snapshot" && !ready) {
+      openFromLibrary("failed");
       return;
     }
+    closeLink();
+    leaveSnapshot("failed");
     crashes += 1;
     if (crashes > 1) {
       giveUp();
@@ -159,15 +164,7 @@ export function startEngine({
     open();
   };
 
-  const startOverTime = () => {
-    if (start.source !== "snapshot") {
-      crashed();
-      return;
-    }
-    closeLink();
-    leaveSnapshot("slow");
-    open();
-  };
+  const startOverTime = () => (start.source === "snapshot" ? openFromLibrary("slow") : crashed());
 
   const overTime = () => {
     closeLink();
@@ -226,11 +223,10 @@ export function startEngine({
       if (source !== start.source) {
         return; // given up already
       }
-      closeLink();
       if (source === "snapshot") {
-        leaveSnapshot("failed");
-        open();
+        openFromLibrary("failed");
       } else {
+        closeLink();
         giveUp();
       }
     }

@@ -118,7 +118,7 @@ export const INSTRUMENT_TARGET = [
   field("instrument.mirrored", "flag"),
 ];
 
-export const CHECK_COMPENSATOR = choice("page.check.compensator", ["", "none"], { label: "check_compensator", words: "check_compensator" });
+export const CHECK_COMPENSATOR = choice("page-check.compensator", ["", "none"], { label: "check_compensator", words: "check_compensator" });
 
 export const INSTRUMENT_ZERO = [
   field("instrument.zero.x", "number", { label: "zero_x" }),

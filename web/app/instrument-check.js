@@ -21,7 +21,7 @@ import { say, shown } from "./words.js";
  *   suggested: {amount: string, base: string}, instrument: object, scene: import("./types.js").Scene}} Answer
  */
 
-const PLACE = "page.check";
+const PLACE = "page-check";
 const LARGE = { marks: 0.8, target: 2.5 };
 const LOOKS = ["zero", "known", "scale", "again"];
 

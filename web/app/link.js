@@ -1,5 +1,5 @@
 /** Opens the engine: in a worker or on this thread, from the kept memory or from the library's byte code. */
-import { bytesOf, inflatedInPieces } from "../worker/unpack.js";
+import { bytesOf, inflatedInPieces, markOf } from "../worker/unpack.js";
 import { payload, scriptUrl } from "./boot.js";
 
 /** @typedef {"worker" | "main-thread"} Mode */
@@ -38,9 +38,19 @@ function linkTo(engine, listener) {
   }
 }
 
-/** The memory kept by the build, inflated here while the worker is busy with the program. */
-async function keptMemory() {
-  return inflatedInPieces(bytesOf(await payload("snapshot")));
+/**
+ * The memory kept by the build, inflated here while the worker is busy with the program; refused beside another program,
+ * as a folder has it that was copied in part.
+ *
+ * @param {Promise<string>} wasm
+ */
+async function keptMemory(wasm) {
+  const text = await payload("snapshot");
+  const kept = await inflatedInPieces(bytesOf(text));
+  if (markOf(text) !== markOf(await wasm)) {
+    throw new Error("The kept memory is not of this program.");
+  }
+  return kept;
 }
 
 /**
@@ -51,8 +61,8 @@ async function keptMemory() {
 export async function openLink(source, listener) {
   // Read side by side, the one that is needed first begun first.
   const engine = payload("worker");
-  const start = source === "snapshot" ? keptMemory() : payload("python");
   const program = payload("wasm");
+  const start = source === "snapshot" ? keptMemory(program) : payload("python");
   for (const read of [start, program]) {
     read.catch(() => {}); // said where it is awaited, below
   }

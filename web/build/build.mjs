@@ -9,7 +9,7 @@ import { mkdir, readFile, rm, writeFile } from "node:fs/promises";
 import { createRequire } from "node:module";
 import { dirname, join, resolve } from "node:path";
 import { parseArgs } from "node:util";
-import { packed, wide } from "./payload.mjs";
+import { markFor, packed, wide } from "./payload.mjs";
 import { buildScripts, folderPage, singlePage } from "./page.mjs";
 import { namesOf, withUsedExports } from "./program.mjs";
 import { buildPythonZip } from "./python.mjs";
@@ -58,7 +58,7 @@ async function buildEngine(web) {
   const { info } = JSON.parse(await read("pyodide-lock.json"));
   const whole = `${await read("pyodide.asm.js")}\n${await read("pyodide.js")}`;
   const worker = join(web, "worker", "main.js");
-  const other = join(web, "build", "snapshot-entry.js");
+  const other = join(web, "worker", "snapshot.js");
   const exported = withUsedExports(await readFile(join(pyodideFolder, "pyodide.asm.wasm")), whole + (await readFile(other, "utf8")));
   const scripts = await usedScripts(whole, namesOf(exported));
   const [engine, maker] = [await engineSource(scripts, info, worker), await engineSource(scripts, info, other)];
@@ -81,13 +81,14 @@ async function main() {
   await writeWords(core, web);
   const { program, engine, maker } = await buildEngine(web);
   const library = await buildPythonZip(pyodideFolder, core);
+  const mark = markFor(program);
   const page = {
     html: await readFile(join(web, "index.html"), "utf8"),
     ...(await buildScripts(web)),
     engine,
-    wasm: packed(program),
-    snapshot: packed(await buildSnapshot(maker, program, library)),
-    python: packed(library),
+    wasm: packed(program, mark),
+    snapshot: packed(await buildSnapshot(maker, program, library), mark),
+    python: packed(library, mark),
   };
   const files = {
     "index.html": folderPage(page),

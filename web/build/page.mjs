@@ -88,6 +88,7 @@ export function singlePage(page) {
   let html = replaceOnce(page.html, "<!-- policy -->", policy(scripts, styles));
   html = replaceOnce(html, '<meta charset="utf-8">', ""); // its first bytes say it
   html = replaceOnce(html, "<html ", "<html data-single ");
+  html = replaceOnce(html, '<link rel="icon" href="data:,">', ""); // without it a browser asks a server for one
   html = replaceOnce(html, '<link rel="stylesheet" href="app.css">', `<style>${page.style}</style>`);
   html = replaceOnce(html, '<link rel="stylesheet" href="print.css" media="print">', `<style media="print">${page.printStyle}</style>`);
   html = replaceOnce(html, '<script src="app.js" defer></script>', "");

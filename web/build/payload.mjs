@@ -1,5 +1,6 @@
 /** From bytes to the text that a payload is in the page: gzip, two bytes to each character. Undone by worker/unpack.js. */
 import { execFileSync } from "node:child_process";
+import { createHash } from "node:crypto";
 import { ESCAPE, MASK } from "../worker/unpack.js";
 
 const LARGEST = 64_000_000;
@@ -24,16 +25,22 @@ const isForbidden = (unit) =>
   (unit >= 0xd800 && unit <= 0xdfff) ||
   [0, 0x0a, 0x0d, 0x22, 0x3c, 0x5c, 0x2028, 0x2029, 0xfeff, 0xfffe, 0xffff, ESCAPE].includes(unit);
 
+/** What tells a program from every other, in eight characters. @param {Uint8Array} program */
+export function markFor(program) {
+  return createHash("sha256").update(program).digest("hex").slice(0, 8);
+}
+
 /**
- * The text of a payload: whether the last byte is only there to make a pair, then the pairs.
+ * The text of a payload: whether the last byte is only there to make a pair, the mark, then the pairs.
  *
  * @param {Uint8Array} bytes
+ * @param {string} mark
  */
-export function textOf(bytes) {
+export function textOf(bytes, mark) {
   const odd = bytes.length % 2;
   const even = Buffer.alloc(bytes.length + odd);
   even.set(bytes);
-  const characters = [String(odd)];
+  const characters = [String(odd), mark];
   for (let index = 0; index < even.length; index += 2) {
     const unit = even.readUInt16LE(index);
     characters.push(isForbidden(unit) ? String.fromCharCode(ESCAPE, unit ^ MASK) : String.fromCharCode(unit));
@@ -41,9 +48,9 @@ export function textOf(bytes) {
   return characters.join("");
 }
 
-/** @param {Uint8Array} bytes */
-export function packed(bytes) {
-  return textOf(gzip(bytes));
+/** @param {Uint8Array} bytes @param {string} mark */
+export function packed(bytes, mark) {
+  return textOf(gzip(bytes), mark);
 }
 
 /** A file's bytes: two to a character, with the mark that every browser heeds before whatever a server says. @param {string} text */

@@ -1,9 +1,20 @@
-/** From the text of a payload to its bytes: each character is two bytes of gzip. Made by build/payload.mjs. */
+/**
+ * From the text of a payload to its bytes. Made by build/payload.mjs: whether the last byte is only there to make a pair, the
+ * mark of the program that it was built with, then gzip, two bytes to a character.
+ */
+
+const MARK_BEGIN = 1;
+const MARK_END = 9;
 
 /** Before a character that stands for one that cannot be in a text. */
 export const ESCAPE = 0xe000;
 /** What makes the one of the other. */
 export const MASK = 0x4a00;
+
+/** The mark of a payload: those with the same belong together. @param {string} text */
+export function markOf(text) {
+  return text.slice(MARK_BEGIN, MARK_END);
+}
 
 /**
  * @param {string} text
@@ -12,7 +23,7 @@ export const MASK = 0x4a00;
 export function bytesOf(text) {
   const units = new Uint16Array(text.length);
   let length = 0;
-  for (let index = 1; index < text.length; index += 1) {
+  for (let index = MARK_END; index < text.length; index += 1) {
     let unit = text.charCodeAt(index);
     if (unit === ESCAPE) {
       index += 1;

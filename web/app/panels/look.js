@@ -14,7 +14,7 @@ const lookText = (code, eye) => say(`looks.${code}`, { eye: eye ? say(`eyes.${ey
 export function lookCard({ state }) {
   const next = el("div", { class: "look-next" });
   const found = el("div", { class: "look-found" });
-  const node = el("div", { class: "look" }, next, found);
+  const node = el("div", { class: "look-card" }, next, found);
 
   /** @param {any} look @param {string} result */
   function enter(look, result) {

@@ -52,7 +52,7 @@ export function keepView({ newJob, demonstrate, exportFile, importText, copy, pr
         button(say("page.actions.copy"), copy, { id: "copy-result" }),
         printKey,
         button(say("page.actions.export"), exportFile, { id: "export" }),
-        button(say("page.actions.demonstration"), demonstrate),
+        button(say("page.actions.demonstration"), demonstrate, { id: "demonstration-kept" }),
       ),
       copied,
     ),

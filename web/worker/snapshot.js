@@ -1,6 +1,6 @@
-/** Bundled in place of worker/main.js where the snapshot is made: the same Pyodide, started the same way. */
-import { takeFresh } from "../worker/memory.js";
-import { offlinePyodide } from "../worker/python.js";
+/** Bundled in place of main.js where the snapshot is made: the same Pyodide, started the same way. */
+import { takeFresh } from "./memory.js";
+import { offlinePyodide } from "./python.js";
 
 /**
  * Fills the memory that Python has given back with zeros, so that the snapshot packs well: takes piece after piece, the
@@ -27,7 +27,7 @@ function clearFreeMemory(runtime) {
 
 /**
  * @param {{program: Uint8Array<ArrayBuffer>, library: Uint8Array<ArrayBuffer>, warm: string}} given
- * @param {import("../worker/python.js").PyodideBehind} pyodideBehind
+ * @param {import("./python.js").PyodideBehind} pyodideBehind
  * @returns {Promise<Uint8Array>}
  */
 export async function serve({ program, library, warm }, pyodideBehind) {
