@@ -72,9 +72,10 @@ def _title(ranking: Ranking) -> tuple[str, Mapping[str, str]]:
     first = ranking.causes[0]
     if first.label[0].code == AS_ORDERED:
         return "as-ordered", {"probability": percent(first.probability)}
-    if first.tied_with:
+    alone = [label for label in first.tied_with if len(label) == 1]  # two at once go without saying
+    if alone:
         together = ranking.groups[0].probability
-        params = {"count": str(len(first.tied_with)), "probability": percent(together)}
+        params = {"count": str(len(alone)), "probability": percent(together)}
         return "tied", {"cause": cause_text(first.label), **params}
     return "likely", {"cause": cause_text(first.label), "probability": percent(first.probability)}
 

@@ -16,6 +16,7 @@ import { say, shown } from "../words.js";
  */
 
 const MOST = 6;
+const MOST_TIES = 3;
 /** What has no picture of its own. */
 const UNSEEN = new Set(["as-ordered", "none-of-these", "all-others"]);
 
@@ -33,13 +34,12 @@ function partName({ code, eyes }) {
   return say(`causes.${code}`, { eye: say(`eyes.${eyes.length > 1 ? "both" : eyes[0]}`) });
 }
 
-/** @param {Name} name */
-const causeName = (name) => [name, ...name.with].map(partName).join(" + ");
-
 /** @param {Cause} cause @param {(cause: Cause) => void} imagine */
 function causeNode(cause, imagine) {
   const { code, eyes, probability, estimate, tied_with: ties, shown: texts } = cause;
-  const tied = ties.map(causeName).join("; ");
+  const alone = ties.filter((name) => !name.with.length);
+  const tied = alone.slice(0, MOST_TIES).map(partName).join("; ");
+  const more = ties.length - Math.min(alone.length, MOST_TIES);
   return el(
     "li",
     { class: "cause" },
@@ -49,7 +49,7 @@ function causeNode(cause, imagine) {
       { class: "cause-said" },
       el("span", {}, shown(texts["text"])),
       estimate ? el("span", { class: "more" }, shown(estimate.shown)) : null,
-      tied ? el("span", { class: "more" }, say("page.causes.ties", { causes: tied })) : null,
+      tied ? el("span", { class: "more" }, say(more ? "page.causes.ties_more" : "page.causes.ties", { causes: tied, count: more })) : null,
     ),
     UNSEEN.has(code)
       ? null
