@@ -123,6 +123,7 @@ def test_nothing_is_asked_of_the_server_but_its_own_files(served: Server, page: 
     asked = {tuple(line.split(" ")[:2]) for line in served.asked}
     assert asked <= {("GET", name) for name in {"/", *files}}
     assert ("GET", "/sw.js") in asked
+    expect(page.locator(".save")).to_have_text("saved")  # so that it is there again after the page is opened anew
     before = len(served.asked)
     page.reload()
     engine_ready(page)

@@ -55,7 +55,7 @@ def key_times(page: Page) -> tuple[list[float], list[float]]:
     keys, trips = [], []
     field = page.locator("#f-readings-right-prism-0-amount")
     field.click()
-    page.wait_for_timeout(500)
+    page.wait_for_timeout(3000)  # a lens is laid before it is read: the page warms up meanwhile
     for index in range(KEYS):
         trips.append(float(page.evaluate(EMPTY_ROUND_TRIP)))
         field.evaluate("(input) => input.select()")

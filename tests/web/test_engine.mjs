@@ -114,9 +114,12 @@ test("when it is quiet, the first calls are spent on the demonstration, section 
   worker.say({ kind: "answer", id, text: JSON.stringify({ job: { id: "DEMO" } }) });
   await settle();
   assert.deepEqual(worker.asked.at(-1).job, { id: "DEMO" });
-  assert.deepEqual(worker.asked.at(-1).sections, []);
-  worker.answer();
-  await settle();
+  let calls = 0;
+  for (; worker.asked.at(-1).sections.length === 0 && calls < 100; calls += 1) {
+    worker.answer();
+    await settle();
+  }
+  assert.ok(calls > 10, "the report itself until it is quick");
   assert.deepEqual(worker.asked.at(-1).sections, ["layout"]);
 });
 

@@ -20,7 +20,9 @@ export function watchDock() {
     const inTheWay = !open && height > MOST_OF_SCREEN * window.innerHeight;
     root.classList.toggle("dock-flows", inTheWay);
     root.style.setProperty("--dock", inTheWay ? "0px" : `${height}px`);
-    fieldInUse()?.scrollIntoView({ block: "nearest" });
+    const field = fieldInUse();
+    const box = field?.getBoundingClientRect();
+    if (box && (box.top < 0 || box.bottom > window.innerHeight - (inTheWay ? 0 : height))) field?.scrollIntoView({ block: "nearest" });
   };
   new ResizeObserver(measure).observe(dock);
   window.addEventListener("resize", measure);
