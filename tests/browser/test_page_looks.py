@@ -164,6 +164,23 @@ def test_targets_are_large_and_apart(opened: Opener, size: str) -> None:
     assert page.evaluate(TARGETS) == {"small": [], "near": []}, "keypad"
 
 
+def test_the_keypad_leaves_the_field_in_sight_with_entries_to_mend(opened: Opener) -> None:
+    page = opened(viewport={"width": 360, "height": 740}, has_touch=True)
+    page.locator("#move-read").click()
+    for eye in ("right", "left"):
+        for row in (0, 1):
+            page.locator(f"#f-readings-{eye}-prism-{row}-amount").fill("2,2,5")
+    expect(page.locator(".problems-title")).to_contain_text("4 entries to mend")
+    expect(page.locator("#keypad")).to_be_visible()
+    field, dock = page.locator("#f-readings-left-prism-1-amount").bounding_box(), page.locator("#dock").bounding_box()
+    assert field is not None
+    assert dock is not None
+    assert field["y"] >= 0
+    assert field["y"] + field["height"] <= dock["y"]
+    page.evaluate("scrollTo(0, 0)")
+    page.locator("#move-decide").click(timeout=5_000)
+
+
 def test_the_theme_is_switched_and_stays(opened: Opener) -> None:
     page = opened(demonstration=False, color_scheme="light")
     ground = "getComputedStyle(document.documentElement).backgroundColor"
