@@ -70,7 +70,11 @@ def unpack_here() -> bool:
     shutil.rmtree(HERE / "cache")
     libraries = sorted({str(file.parent) for file in UNPACKED.rglob("*.so*")})
     program = UNPACKED / "usr" / "lib" / "chromium" / "chromium"
-    LAUNCHER.write_text(f'#!/bin/sh\nLD_LIBRARY_PATH="{":".join(libraries)}" exec "{program}" "$@"\n')
+    # A machine without a browser may be without letters as well: these came along, and are said where to be found.
+    fonts = HERE / "fonts.conf"
+    fonts.write_text(f"<fontconfig><dir>{UNPACKED / 'usr' / 'share' / 'fonts'}</dir><dir>/usr/share/fonts</dir></fontconfig>\n")
+    settings = f'FONTCONFIG_FILE="{fonts}" LD_LIBRARY_PATH="{":".join(libraries)}"'
+    LAUNCHER.write_text(f'#!/bin/sh\n{settings} exec "{program}" "$@"\n')
     LAUNCHER.chmod(0o755)
     return True
 
